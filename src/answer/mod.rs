@@ -1,0 +1,1 @@
+//! What an answer is made of: numbers as text, tables, figures, write-ups. It knows no statistics.

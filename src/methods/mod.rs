@@ -1,0 +1,1 @@
+//! Published procedures: data in, result struct out. Nothing here knows a cell or a page.

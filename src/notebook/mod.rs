@@ -1,0 +1,1 @@
+//! The notebook: document, cells, fields, graph, engine, diagnostics; `kinds` holds one file per cell kind.

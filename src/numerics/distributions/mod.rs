@@ -1,0 +1,1 @@
+//! Probability distributions, one a file, each with `cdf`, `sf` (upper tail) and `quantile`.

@@ -1,0 +1,1 @@
+//! Reading tables: delimited text, columns, missing values, exclusions. It knows no study.
