@@ -1,0 +1,33 @@
+//! Reads the tables in `data/values` and measures agreement.
+
+use serde_json::Value;
+
+/// The cases of `data/values/NAME.json`.
+pub fn cases(name: &str) -> Vec<Value> {
+    let path = format!("{}/tests/reference/data/values/{name}.json", env!("CARGO_MANIFEST_DIR"));
+    let text = std::fs::read_to_string(&path).unwrap_or_else(|error| panic!("{path}: {error}"));
+    let file: Value = serde_json::from_str(&text).unwrap_or_else(|error| panic!("{path}: {error}"));
+    file["cases"].as_array().cloned().unwrap_or_else(|| panic!("{path} has no list of cases"))
+}
+
+/// A number that the tables write as a number, as a decimal string, or as "inf".
+pub fn number(value: &Value) -> f64 {
+    match value {
+        Value::Number(number) => number.as_f64().expect("a finite number"),
+        Value::String(text) => text.parse().unwrap_or_else(|_| panic!("\"{text}\" is not a number")),
+        other => panic!("{other} is not a number"),
+    }
+}
+
+/// |computed - expected| / |expected|, or the absolute error where zero is expected.
+pub fn relative_error(computed: f64, expected: f64) -> f64 {
+    let error = (computed - expected).abs();
+    if expected == 0.0 { error } else { error / expected.abs() }
+}
+
+/// Log relative error: the number of correct significant digits, capped at 15 (the measure used with the NIST
+/// StRD sets).
+pub fn log_relative_error(computed: f64, expected: f64) -> f64 {
+    let error = relative_error(computed, expected);
+    if error == 0.0 { 15.0 } else { (-error.log10()).min(15.0) }
+}

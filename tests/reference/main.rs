@@ -1,0 +1,4 @@
+//! Checks against values from outside, one file per distribution or procedure. Each file's head names its
+//! source; `data/` holds the longer tables with theirs.
+
+mod cases;
