@@ -1,1 +1,11 @@
-//! What an answer is made of: numbers as text, tables, figures, write-ups. It knows no statistics.
+//! What an answer is made of: a headline, tables, figures, text, a write-up and cautions, and how these become
+//! HTML, plain text, delimited text and a saved report. Only this layer rounds.
+//!
+//! It knows no statistics: it takes numbers and words and lays them out. It imports no other layer.
+//! On purpose not here: what a number means, which row is emphasised, how a caution is worded.
+
+mod parts;
+mod table;
+
+pub use parts::{Answer, Block, Figure};
+pub use table::{Align, Cell, Column, Emphasis, Row, Table};
