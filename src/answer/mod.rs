@@ -4,8 +4,10 @@
 //! It knows no statistics: it takes numbers and words and lays them out. It imports no other layer.
 //! On purpose not here: what a number means, which row is emphasised, how a caution is worded.
 
+pub mod number;
 mod parts;
 mod table;
 
+pub use number::Precision;
 pub use parts::{Answer, Block, Figure};
 pub use table::{Align, Cell, Column, Emphasis, Row, Table};

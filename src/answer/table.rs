@@ -1,5 +1,7 @@
 //! A table: a caption, columns with an alignment, rows of cells, and notes below.
 
+use super::number::{self, Precision};
+
 /// A table of an answer. The first column names the row.
 ///
 /// A row may be shorter than the columns (the rest stays empty); cells beyond the last column are left out.
@@ -158,6 +160,38 @@ impl Cell {
     /// A count.
     pub fn count(n: usize) -> Cell {
         Cell { text: n.to_string(), value: Some(n as f64), absent: false }
+    }
+
+    /// A number rounded to a precision; absent where it is not a number.
+    pub fn estimate(value: f64, precision: Precision) -> Cell {
+        Cell::of(value, number::estimate(value, precision))
+    }
+
+    /// A p-value with three decimals; absent where it is not a number.
+    pub fn p_value(p: f64) -> Cell {
+        Cell::of(p, number::p_value(p))
+    }
+
+    /// A test statistic with two decimals; absent where it is not a number.
+    pub fn statistic(value: f64) -> Cell {
+        Cell::of(value, number::statistic(value))
+    }
+
+    /// Degrees of freedom; absent where they are not a number.
+    pub fn df(value: f64) -> Cell {
+        Cell::of(value, number::df(value))
+    }
+
+    /// An interval in brackets; absent where a limit is not a number.
+    pub fn interval(lower: f64, upper: f64, precision: Precision) -> Cell {
+        if lower.is_nan() || upper.is_nan() {
+            return Cell::absent();
+        }
+        Cell::text(number::interval(lower, upper, precision))
+    }
+
+    fn of(value: f64, text: String) -> Cell {
+        if value.is_nan() { Cell::absent() } else { Cell::number(text, value) }
     }
 
     /// A quantity that does not exist in this row: shown as a dash and read out as "not available".
