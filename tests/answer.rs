@@ -3,5 +3,7 @@
 //! The expected texts are this project's own rules (design.md, "The page"), so they are stated here and not taken from
 //! an outside source.
 
+#[path = "answer/markup.rs"]
+mod markup;
 #[path = "answer/number.rs"]
 mod number;

@@ -4,9 +4,15 @@
 //! It knows no statistics: it takes numbers and words and lays them out. It imports no other layer.
 //! On purpose not here: what a number means, which row is emphasised, how a caution is worded.
 
+mod clean;
+pub mod delimited;
+pub mod html;
+pub mod note;
 pub mod number;
 mod parts;
+pub mod report;
 mod table;
+pub mod text;
 
 pub use number::Precision;
 pub use parts::{Answer, Block, Figure};

@@ -184,7 +184,7 @@ pub fn percent(fraction: f64) -> String {
     let percentage = fraction * 100.0;
     let number = if percentage > 0.0 && percentage < 0.005 {
         "<0.01".to_owned()
-    } else if percentage < 100.0 && percentage >= 99.995 {
+    } else if (99.995..100.0).contains(&percentage) {
         // 0.999999999999 that is meant as 1 differs by less than any share that is counted.
         if percentage > 100.0 - 1e-9 { "100".to_owned() } else { ">99.99".to_owned() }
     } else {
