@@ -1,6 +1,7 @@
 //! Pure numbers: exact decimals, sums, distributions, quadrature, roots. Nothing here knows a level, a
 //! study or a cell. Elementary functions come from `libm` by name, so that every target gives the same bits.
 
+pub mod decimal;
 pub mod distributions;
 pub mod sums;
 

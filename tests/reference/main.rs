@@ -2,3 +2,4 @@
 //! source; `data/` holds the longer tables with theirs.
 
 mod cases;
+mod nist_strd;
