@@ -3,6 +3,9 @@
 
 pub mod decimal;
 pub mod distributions;
+pub mod quadrature;
+pub mod roots;
+pub mod special;
 pub mod sums;
 
 /// An argument outside the range for which a function is defined.

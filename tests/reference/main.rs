@@ -1,5 +1,8 @@
 //! Checks against values from outside, one file per distribution or procedure. Each file's head names its
 //! source; `data/` holds the longer tables with theirs.
 
+mod accuracy;
 mod cases;
 mod nist_strd;
+mod central;
+mod properties;

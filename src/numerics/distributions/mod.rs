@@ -1,1 +1,67 @@
-//! Probability distributions, one a file, each with `cdf`, `sf` (upper tail) and `quantile`.
+//! Probability distributions, one a file, each with `cdf`, `sf` (upper tail), `quantile` (argument: lower-tail
+//! probability) and `upper_quantile` (argument: upper-tail probability). The value or the probability comes
+//! first, then the parameters.
+//!
+//! Tails are computed as tails, never as 1 minus the other side. Every function answers for every f64 that its
+//! documentation allows, and names the argument otherwise.
+
+pub mod beta;
+pub mod chi_squared;
+pub mod fisher_f;
+pub mod normal;
+pub mod student_t;
+
+use crate::numerics::OutOfDomain;
+
+/// `value` if it is a finite number.
+fn finite(argument: &'static str, value: f64) -> Result<f64, OutOfDomain> {
+    if value.is_finite() {
+        Ok(value)
+    } else {
+        Err(OutOfDomain { argument, value, allowed: "a finite number" })
+    }
+}
+
+/// `value` if it is finite and at least 0.
+fn not_negative(argument: &'static str, value: f64) -> Result<f64, OutOfDomain> {
+    if value.is_finite() && value >= 0.0 {
+        Ok(value)
+    } else {
+        Err(OutOfDomain { argument, value, allowed: "a finite number, at least 0" })
+    }
+}
+
+/// `value` if it is from 0 to 1.
+fn probability(argument: &'static str, value: f64) -> Result<f64, OutOfDomain> {
+    if (0.0..=1.0).contains(&value) {
+        Ok(value)
+    } else {
+        Err(OutOfDomain { argument, value, allowed: "from 0 to 1" })
+    }
+}
+
+/// Shapes and degrees of freedom below this are refused: the distributions there are all but two points, and
+/// intermediate results would leave the range of doubles.
+const SMALLEST_SHAPE: f64 = 1e-10;
+
+/// `value` if it can be a shape parameter.
+fn shape(argument: &'static str, value: f64) -> Result<f64, OutOfDomain> {
+    if (SMALLEST_SHAPE..=1e30).contains(&value) {
+        Ok(value)
+    } else {
+        Err(OutOfDomain { argument, value, allowed: "greater than 0 (from 1e-10 to 1e30)" })
+    }
+}
+
+/// `value` if it can be degrees of freedom: positive, infinity included.
+///
+/// From 10³⁰ on the answer is infinity: down to probabilities of 1e-300 the limit then differs by less than rounding.
+fn degrees_of_freedom(argument: &'static str, value: f64) -> Result<f64, OutOfDomain> {
+    if value >= 1e30 {
+        Ok(f64::INFINITY)
+    } else if value >= SMALLEST_SHAPE {
+        Ok(value)
+    } else {
+        Err(OutOfDomain { argument, value, allowed: "greater than 0 (at least 1e-10; infinity is allowed)" })
+    }
+}

@@ -1,0 +1,92 @@
+//! Roots of monotone functions of one variable. Every quantile and every solved-for parameter goes through here.
+//!
+//! Newton's iteration, kept inside the bracket that the signs seen so far give; where the slope is not known
+//! in closed form, the chord through the last two points takes its place (the secant method).
+//! Callers pose the equation so that it is nearly straight, log p against log x for a tail, for example.
+
+/// Largest number of evaluations: bisection alone would exhaust the doubles of one sign in about as many.
+const MAX_EVALUATIONS: usize = 200;
+/// A step below this fraction of the root ends the iteration; the step itself is still taken, so that the root
+/// is better than that: the error after a Newton step is of the order of its square.
+const STEP: f64 = 1e-9;
+
+/// What a function is at a point.
+#[derive(Debug, Clone, Copy)]
+pub struct Value {
+    /// Its value; infinite values are allowed and only tell the side.
+    pub value: f64,
+    /// Its derivative.
+    pub slope: f64,
+}
+
+/// The root of the increasing function `f` on the line, from `start`; `scale` is a length over which the
+/// function is expected to change noticeably. Steps are small or large relative to `max(scale, |x|)`.
+pub fn increasing(mut f: impl FnMut(f64) -> Value, start: f64, scale: f64) -> f64 {
+    let (mut low, mut high) = (f64::NEG_INFINITY, f64::INFINITY);
+    let mut x = start;
+    let mut leap = scale;
+    for _ in 0..MAX_EVALUATIONS {
+        let Value { value, slope } = f(x);
+        if value == 0.0 {
+            return x;
+        }
+        if value < 0.0 {
+            low = x;
+        } else {
+            high = x;
+        }
+        let step = -value / slope;
+        let newton = x + step;
+        let usable = step.is_finite() && newton > low && newton < high;
+        if usable && step.abs() <= STEP * x.abs().max(STEP * scale) {
+            return newton;
+        }
+        let next = if usable {
+            newton
+        } else if low.is_finite() && high.is_finite() {
+            0.5 * low + 0.5 * high
+        } else {
+            // One side is still open: leap outwards, twice as far each time.
+            leap *= 2.0;
+            if low.is_finite() { low + leap } else { high - leap }
+        };
+        if next == x || next <= low || next >= high {
+            return next.clamp(low, high);
+        }
+        x = next;
+    }
+    x
+}
+
+/// The root of the increasing function `f`, known by its values alone.
+pub fn increasing_secant(mut f: impl FnMut(f64) -> f64, start: f64, scale: f64) -> f64 {
+    let mut last: Option<(f64, f64)> = None;
+    increasing(
+        |x| {
+            let value = f(x);
+            let (x0, value0) = match last {
+                Some(last) => last,
+                None => (x + 1e-3 * scale, f(x + 1e-3 * scale)),
+            };
+            last = Some((x, value));
+            Value { value, slope: (value - value0) / (x - x0) }
+        },
+        start,
+        scale,
+    )
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_root_is_found_from_far_away_and_with_a_useless_slope() {
+        let cube = increasing(|x| Value { value: x * x * x - 8.0, slope: 3.0 * x * x }, -50.0, 1.0);
+        assert!((cube - 2.0).abs() < 1e-14, "{cube}");
+        let flat = increasing(|x| Value { value: libm::atan(x - 3.0), slope: 0.0 }, 1e6, 1.0);
+        assert!((flat - 3.0).abs() < 1e-12, "{flat}");
+        let secant = increasing_secant(|x| libm::exp(x) - 5.0, 0.0, 1.0);
+        assert!((secant - libm::log(5.0)).abs() < 1e-14, "{secant}");
+    }
+}

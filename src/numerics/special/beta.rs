@@ -1,0 +1,113 @@
+//! Regularised incomplete beta function, both tails: I(x; a, b) = ∫₀ˣ tᵃ⁻¹ (1-t)ᵇ⁻¹ dt / B(a, b) and 1 - I.
+//!
+//! x and y = 1 - x are separate arguments, each exact: near x = 1 the digits are in y. The series of positive
+//! terms serves where it is short, the integral of the log-concave density tᵃ(1-t)ᵇ in logit t, from x away from
+//! its peak at a/(a+b), everything else; the smaller tail is computed directly. The factor xᵃyᵇ/B(a, b) comes from
+//! Stirling's formula with its error, so that large a and b cost no digits.
+//!
+//! # References
+//! 1. Abramowitz and Stegun (1964), 26.5.4 (series, in the form of 6.6.8 with 15.3.3).
+//! 2. Loader (2000), Fast and accurate computation of binomial probabilities (the factor).
+
+use super::gamma::solve_tail;
+use super::{
+    Tail, Tails, exp_minus_linear, log_minus_linear, log_ratio_minus_linear, stirling_error, tail_integral,
+};
+use std::f64::consts::PI;
+
+/// Longest series used; beyond it rounding errors in the terms would add up, and the integral is as fast.
+const MAX_TERMS: usize = 300;
+
+/// I(x; a, b), its complement, and the derivative of I by logit x.
+///
+/// `a`, `b` must be positive and finite, `x`, `y` in [0, 1] with x + y = 1 up to rounding: callers check.
+///
+/// # Accuracy
+/// Relative error about 1e-14 in the middle, growing to 1e-13 · |log p| / 700 in the tails, beside what the
+/// rounding of x and y does to the exact function.
+pub fn incomplete_beta(a: f64, b: f64, x: f64, y: f64) -> Tails {
+    if x == 0.0 {
+        return Tails { lower: 0.0, upper: 1.0, slope: 0.0 };
+    }
+    if y == 0.0 {
+        return Tails { lower: 1.0, upper: 0.0, slope: 0.0 };
+    }
+    let slope = libm::exp(log_density(a, b, x, y));
+    if a * y >= b * x {
+        let lower = (slope * lower_over_density(a, b, x, y)).min(1.0);
+        Tails { lower, upper: 1.0 - lower, slope }
+    } else {
+        let upper = (slope * lower_over_density(b, a, y, x)).min(1.0);
+        Tails { lower: 1.0 - upper, upper, slope }
+    }
+}
+
+/// The logit of the x, log(x/y), at which the given tail has probability `p`, for 0 < p < 1.
+pub fn logit_of_beta_tail(a: f64, b: f64, p: f64, tail: Tail) -> f64 {
+    if tail == Tail::Upper {
+        return -logit_of_beta_tail(b, a, p, Tail::Lower);
+    }
+    let log_p = libm::log(p);
+    let scale = (1.0 / a + 1.0 / b).sqrt();
+    let peak = libm::log(a) - libm::log(b);
+    // For small x the lower tail is xᵃ / (a B(a, b)); in the middle logit x is roughly normal.
+    let middle = peak - scale * crate::numerics::distributions::normal::upper_quantile_unchecked(p);
+    let log_a_beta =
+        0.5 * libm::log(2.0 * PI * scale * scale * a * a) - a * libm::log1p(b / a) - b * libm::log1p(a / b)
+            + stirling_error(a)
+            + stirling_error(b)
+            - stirling_error(a + b);
+    let leading = (log_p + log_a_beta) / a;
+    if leading < -40.0 - libm::log1p(b) {
+        return leading;
+    }
+    let start = middle.max(leading.min(peak));
+    solve_tail(
+        |w| incomplete_beta(a, b, 1.0 / (1.0 + libm::exp(-w)), 1.0 / (1.0 + libm::exp(w))),
+        log_p,
+        tail,
+        start,
+        scale,
+    )
+}
+
+/// log of xᵃ yᵇ / B(a, b).
+///
+/// With x = (1 + u) a/(a+b) and y = (1 + v) b/(a+b) the terms a u and b v cancel exactly, which leaves
+/// two terms of one sign.
+fn log_density(a: f64, b: f64, x: f64, y: f64) -> f64 {
+    let n = a + b;
+    let excess = b * x - a * y;
+    a * log_ratio_minus_linear(x * (1.0 + b / a), excess / a)
+        + b * log_ratio_minus_linear(y * (1.0 + a / b), -excess / b)
+        + (stirling_error(n) - stirling_error(a) - stirling_error(b))
+        + 0.5 * libm::log(a / n * b / (2.0 * PI))
+}
+
+/// I(x; a, b) divided by xᵃ yᵇ / B(a, b), for x at most a/(a+b).
+fn lower_over_density(a: f64, b: f64, x: f64, y: f64) -> f64 {
+    let (mut term, mut sum) = (1.0 / a, 1.0 / a);
+    for n in 0..MAX_TERMS {
+        let n = n as f64;
+        let ratio = (a + b + n) / (a + 1.0 + n) * x;
+        term *= ratio;
+        sum += term;
+        // The ratios fall towards x (b > 1) or rise towards it: the rest is below term r / (1 - r).
+        let bound = ratio.max(x);
+        if term * bound < 1e-17 * sum * (1.0 - bound) {
+            return sum;
+        }
+    }
+    let (n, slope) = (a + b, a * y - b * x);
+    // Towards x = 0 by h in logit: the logarithm of the density falls by this much. Two forms, so that neither
+    // x nor y near 1 makes its terms cancel.
+    let energy = |h: f64| {
+        let rest = if x <= 0.5 {
+            log_minus_linear(x * libm::expm1(-h)) + x * exp_minus_linear(-h)
+        } else {
+            log_minus_linear(y * libm::expm1(h)) + y * exp_minus_linear(h)
+        };
+        slope * h + n * rest
+    };
+    tail_integral(energy, slope, n * x * y)
+}
