@@ -6,9 +6,9 @@
 
 /// Largest number of evaluations: bisection alone would exhaust the doubles of one sign in about as many.
 const MAX_EVALUATIONS: usize = 200;
-/// A step below this fraction of the root ends the iteration; the step itself is still taken, so that the root
-/// is better than that: the error after a Newton step is of the order of its square.
-const STEP: f64 = 1e-9;
+/// A step below this fraction of the caller's scale ends the iteration; the step itself is still taken, so that
+/// the root is better than that: the error after a Newton step is of the order of its square.
+const STEP: f64 = 1e-8;
 
 /// What a function is at a point.
 #[derive(Debug, Clone, Copy)]
@@ -19,8 +19,8 @@ pub struct Value {
     pub slope: f64,
 }
 
-/// The root of the increasing function `f` on the line, from `start`; `scale` is a length over which the
-/// function is expected to change noticeably. Steps are small or large relative to `max(scale, |x|)`.
+/// The root of the increasing function `f` on the line, from `start`; `scale` is a length over which its
+/// slope changes noticeably.
 pub fn increasing(mut f: impl FnMut(f64) -> Value, start: f64, scale: f64) -> f64 {
     let (mut low, mut high) = (f64::NEG_INFINITY, f64::INFINITY);
     let mut x = start;
@@ -38,7 +38,7 @@ pub fn increasing(mut f: impl FnMut(f64) -> Value, start: f64, scale: f64) -> f6
         let step = -value / slope;
         let newton = x + step;
         let usable = step.is_finite() && newton > low && newton < high;
-        if usable && step.abs() <= STEP * x.abs().max(STEP * scale) {
+        if usable && step.abs() <= (STEP * scale).max(f64::EPSILON * x.abs()) {
             return newton;
         }
         let next = if usable {

@@ -3,6 +3,6 @@
 
 mod accuracy;
 mod cases;
-mod nist_strd;
 mod central;
+mod nist_strd;
 mod properties;
