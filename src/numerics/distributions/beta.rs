@@ -5,7 +5,7 @@
 
 use super::{probability, shape};
 use crate::numerics::OutOfDomain;
-use crate::numerics::special::{Tail, incomplete_beta, logit_of_beta_tail};
+use crate::numerics::special::{Tail, incomplete_beta, log_beta_quantile};
 
 /// Lower-tail probability P(X <= `x`) with shapes `a` and `b`.
 ///
@@ -59,6 +59,6 @@ fn at_tail(p: f64, a: f64, b: f64, tail: Tail) -> Result<f64, OutOfDomain> {
     Ok(match tail {
         Tail::Lower if p == 0.0 => 0.0,
         Tail::Upper if p == 0.0 => 1.0,
-        _ => 1.0 / (1.0 + libm::exp(-logit_of_beta_tail(a, b, p, tail))),
+        _ => 1.0 / (1.0 + b / a * libm::exp(-log_beta_quantile(a, b, p, tail))),
     })
 }

@@ -7,7 +7,7 @@
 
 use super::{not_negative, probability, shape};
 use crate::numerics::OutOfDomain;
-use crate::numerics::special::{Tail, incomplete_gamma, log_of_gamma_tail};
+use crate::numerics::special::{Tail, incomplete_gamma, log_gamma_quantile};
 
 /// Lower-tail probability P(X <= `x`) with `df` degrees of freedom.
 ///
@@ -60,6 +60,6 @@ fn at_tail(p: f64, df: f64, tail: Tail) -> Result<f64, OutOfDomain> {
     Ok(match tail {
         Tail::Lower if p == 0.0 => 0.0,
         Tail::Upper if p == 0.0 => f64::INFINITY,
-        _ => 2.0 * libm::exp(log_of_gamma_tail(0.5 * df, p, tail)),
+        _ => df * libm::exp(log_gamma_quantile(0.5 * df, p, tail)),
     })
 }

@@ -9,7 +9,7 @@
 
 use super::{chi_squared, degrees_of_freedom, not_negative, probability};
 use crate::numerics::OutOfDomain;
-use crate::numerics::special::{Tail, Tails, incomplete_beta, incomplete_gamma, logit_of_beta_tail};
+use crate::numerics::special::{Tail, Tails, incomplete_beta, incomplete_gamma, log_beta_quantile};
 
 /// Lower-tail probability P(F <= `f`) with `df1` and `df2` degrees of freedom.
 ///
@@ -96,6 +96,6 @@ fn at_tail(p: f64, df1: f64, df2: f64, tail: Tail) -> Result<f64, OutOfDomain> {
         ((false, true), Tail::Upper) => chi_squared::upper_quantile(p, df1)? / df1,
         ((true, false), Tail::Lower) => df2 / chi_squared::upper_quantile(p, df2)?,
         ((true, false), Tail::Upper) => df2 / chi_squared::quantile(p, df2)?,
-        ((false, false), _) => df2 / df1 * libm::exp(logit_of_beta_tail(0.5 * df1, 0.5 * df2, p, tail)),
+        ((false, false), _) => libm::exp(log_beta_quantile(0.5 * df1, 0.5 * df2, p, tail)),
     })
 }

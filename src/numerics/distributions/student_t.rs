@@ -9,7 +9,7 @@
 
 use super::{degrees_of_freedom, finite, normal, probability};
 use crate::numerics::OutOfDomain;
-use crate::numerics::special::{Tail, incomplete_beta, logit_of_beta_tail, stirling_error};
+use crate::numerics::special::{Tail, incomplete_beta, log_beta_quantile, stirling_error};
 use std::f64::consts::PI;
 
 /// Lower-tail probability P(T <= `t`) with `df` degrees of freedom.
@@ -74,7 +74,7 @@ pub fn upper_quantile(upper_p: f64, df: f64) -> Result<f64, OutOfDomain> {
     }
     // P(|T| > t) = 2p; close to the middle its complement has the digits.
     let (p, tail) = if p < 0.25 { (2.0 * p, Tail::Upper) } else { (1.0 - 2.0 * p, Tail::Lower) };
-    Ok(df.sqrt() * libm::exp(0.5 * logit_of_beta_tail(0.5, 0.5 * df, p, tail)))
+    Ok(libm::exp(0.5 * log_beta_quantile(0.5, 0.5 * df, p, tail)))
 }
 
 /// The incomplete beta function of t²/(df+t²), with r = |t|/√df.

@@ -42,33 +42,33 @@ pub fn incomplete_beta(a: f64, b: f64, x: f64, y: f64) -> Tails {
     }
 }
 
-/// The logit of the x, log(x/y), at which the given tail has probability `p`, for 0 < p < 1.
-pub fn logit_of_beta_tail(a: f64, b: f64, p: f64, tail: Tail) -> f64 {
+/// The logarithm of (x/y)/(a/b) at which the given tail has probability `p`, for 0 < p < 1.
+///
+/// The odds x/y relative to those at the peak keep their digits however large a and b are.
+pub fn log_beta_quantile(a: f64, b: f64, p: f64, tail: Tail) -> f64 {
     if tail == Tail::Upper {
-        return -logit_of_beta_tail(b, a, p, Tail::Lower);
+        return -log_beta_quantile(b, a, p, Tail::Lower);
     }
     let log_p = libm::log(p);
     let scale = (1.0 / a + 1.0 / b).sqrt();
-    let peak = libm::log(a) - libm::log(b);
     // For small x the lower tail is xᵃ / (a B(a, b)); in the middle logit x is roughly normal.
-    let middle = peak - scale * crate::numerics::distributions::normal::upper_quantile_unchecked(p);
     let log_a_beta =
         0.5 * libm::log(2.0 * PI * scale * scale * a * a) - a * libm::log1p(b / a) - b * libm::log1p(a / b)
             + stirling_error(a)
             + stirling_error(b)
             - stirling_error(a + b);
     let leading = (log_p + log_a_beta) / a;
+    let peak = libm::log(a / b);
     if leading < -40.0 - libm::log1p(b) {
-        return leading;
+        return leading - peak;
     }
-    let start = middle.max(leading.min(peak));
-    solve_tail(
-        |w| incomplete_beta(a, b, 1.0 / (1.0 + libm::exp(-w)), 1.0 / (1.0 + libm::exp(w))),
-        log_p,
-        tail,
-        start,
-        scale,
-    )
+    let middle = -scale * crate::numerics::distributions::normal::upper_quantile_unchecked(p);
+    let start = middle.max((leading - peak).min(0.0));
+    let tails = |w: f64| {
+        let odds = libm::exp(w) * (a / b);
+        incomplete_beta(a, b, 1.0 / (1.0 + 1.0 / odds), 1.0 / (1.0 + odds))
+    };
+    solve_tail(tails, log_p, tail, start, scale)
 }
 
 /// log of xᵃ yᵇ / B(a, b).

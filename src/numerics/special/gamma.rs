@@ -41,8 +41,10 @@ pub fn incomplete_gamma(a: f64, x: f64) -> Tails {
     }
 }
 
-/// The logarithm of the x at which the given tail has probability `p`, for 0 < p < 1.
-pub fn log_of_gamma_tail(a: f64, p: f64, tail: Tail) -> f64 {
+/// The logarithm of x/a at which the given tail has probability `p`, for 0 < p < 1.
+///
+/// x relative to the peak at a keeps its digits however large a is.
+pub fn log_gamma_quantile(a: f64, p: f64, tail: Tail) -> f64 {
     let log_p = libm::log(p);
     let normal = crate::numerics::distributions::normal::upper_quantile_unchecked(p);
     // For small x the lower tail is xᵃ / Γ(a + 1) up to a factor 1 - x; elsewhere the cube root is nearly normal
@@ -51,13 +53,13 @@ pub fn log_of_gamma_tail(a: f64, p: f64, tail: Tail) -> f64 {
         Tail::Lower => {
             let leading = (log_p + libm::lgamma(a + 1.0)) / a;
             if leading < -40.0 {
-                return leading;
+                return leading - libm::log(a);
             }
-            leading.max(wilson_hilferty(a, -normal))
+            (leading - libm::log(a)).max(wilson_hilferty(a, -normal))
         }
         Tail::Upper => wilson_hilferty(a, normal),
     };
-    solve_tail(|w| incomplete_gamma(a, libm::exp(w)), log_p, tail, start, (1.0 / a).sqrt())
+    solve_tail(|w| incomplete_gamma(a, a * libm::exp(w)), log_p, tail, start, (1.0 / a).sqrt())
 }
 
 /// The w at which the logarithm of a tail equals `log_p`, by Newton's iteration on that logarithm: log-concave
@@ -82,11 +84,11 @@ pub(super) fn solve_tail(
     )
 }
 
-/// log x of the approximate quantile at normal deviate `z`; far below where the cube would be negative.
+/// log(x/a) of the approximate quantile at normal deviate `z`; far below where the cube would be negative.
 fn wilson_hilferty(a: f64, z: f64) -> f64 {
     let c = 1.0 / (9.0 * a);
     let root = 1.0 - c + z * c.sqrt();
-    libm::log(a) + if root > 0.0 { 3.0 * libm::log(root) } else { f64::NEG_INFINITY }
+    if root > 0.0 { 3.0 * libm::log(root) } else { f64::NEG_INFINITY }
 }
 
 /// log of xᵃ e⁻ˣ / Γ(a).

@@ -4,9 +4,9 @@ mod beta;
 mod elementary;
 mod gamma;
 
-pub use beta::{incomplete_beta, logit_of_beta_tail};
+pub use beta::{incomplete_beta, log_beta_quantile};
 pub use elementary::{exp_minus_linear, log_minus_linear, log_ratio_minus_linear, stirling_error};
-pub use gamma::{incomplete_gamma, log_of_gamma_tail};
+pub use gamma::{incomplete_gamma, log_gamma_quantile};
 
 use crate::numerics::quadrature;
 
