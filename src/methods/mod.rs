@@ -1,1 +1,3 @@
 //! Published procedures: data in, result struct out. Nothing here knows a cell or a page.
+
+pub mod contrasts;
