@@ -1,3 +1,4 @@
 //! Published procedures: data in, result struct out. Nothing here knows a cell or a page.
 
 pub mod contrasts;
+pub mod multiplicity;

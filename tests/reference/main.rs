@@ -2,6 +2,7 @@
 //! source; `data/` holds the longer tables with theirs.
 
 mod accuracy;
+mod adjustments;
 mod cases;
 mod central;
 mod nist_strd;
