@@ -8,17 +8,8 @@ use levelwise::methods::multiplicity::PValueMethod::{self, *};
 use levelwise::methods::multiplicity::p_values::{adjusted, alpha_per_comparison};
 use proptest::prelude::*;
 
-const ALL: [PValueMethod; 9] = [
-    None,
-    Bonferroni,
-    Sidak,
-    Holm,
-    HolmSidak,
-    Hochberg,
-    Hommel,
-    BenjaminiHochberg,
-    BenjaminiYekutieli,
-];
+const ALL: [PValueMethod; 9] =
+    [None, Bonferroni, Sidak, Holm, HolmSidak, Hochberg, Hommel, BenjaminiHochberg, BenjaminiYekutieli];
 
 fn assert_close(computed: &[f64], expected: &[f64], tolerance: f64, what: &str) {
     for (c, e) in computed.iter().zip(expected) {
@@ -45,8 +36,8 @@ fn six_p_values_are_adjusted_as_computed_independently() {
 #[test]
 fn benjamini_and_hochberg_reject_four_of_their_fifteen_and_the_family_wise_methods_three() {
     let p = [
-        0.0001, 0.0004, 0.0019, 0.0095, 0.0201, 0.0278, 0.0298, 0.0344, 0.0459, 0.3240, 0.4262, 0.5719, 0.6528, 0.7590,
-        1.0,
+        0.0001, 0.0004, 0.0019, 0.0095, 0.0201, 0.0278, 0.0298, 0.0344, 0.0459, 0.3240, 0.4262, 0.5719,
+        0.6528, 0.7590, 1.0,
     ];
     let rejections = |method| adjusted(&p, method).iter().filter(|p| **p <= 0.05).count();
     assert_eq!(rejections(BenjaminiHochberg), 4);
@@ -72,7 +63,11 @@ fn all_pairs_of_the_twelve_data_sets_are_adjusted_to_fourteen_digits() {
         for (name, method) in names {
             for (pair, computed) in pairs.iter().zip(adjusted(&raw, method)) {
                 let expected = number(&pair["adjusted_p"][name]);
-                assert!(relative_error(computed, expected) < 2e-14, "{} {name}: {computed} {expected}", case["name"]);
+                assert!(
+                    relative_error(computed, expected) < 2e-14,
+                    "{} {name}: {computed} {expected}",
+                    case["name"]
+                );
                 checked += 1;
             }
         }

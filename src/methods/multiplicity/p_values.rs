@@ -81,9 +81,9 @@ pub fn alpha_per_comparison(p: &[f64], method: PValueMethod, alpha: f64) -> Opti
     }
 }
 
-/// 1 - (1 - p)^m without the loss of small p.
+/// 1 - (1 - p)^m without the loss of small p, and never below p by rounding.
 fn sidak(p: f64, m: f64) -> f64 {
-    if p >= 1.0 { 1.0 } else { -libm::expm1(m * libm::log1p(-p)) }
+    if p >= 1.0 { 1.0 } else { (-libm::expm1(m * libm::log1p(-p))).max(p) }
 }
 
 /// 1 - (1 - alpha)^(1/m): the level per comparison.
