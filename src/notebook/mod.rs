@@ -1,1 +1,16 @@
-//! The notebook: document, cells, fields, graph, engine, diagnostics; `kinds` holds one file per cell kind.
+//! The notebook: a document of cells, what each cell may ask, which cell reads from which, and the engine that
+//! keeps the answers current. `kinds/` holds one file per cell kind: it reads the ask, calls the methods and
+//! lays out the answer. Nothing here knows a browser.
+
+pub mod ask;
+pub mod diagnostics;
+pub mod document;
+pub mod edit;
+pub mod engine;
+pub mod fields;
+pub mod graph;
+pub mod history;
+pub mod kept;
+pub mod kinds;
+pub mod outcome;
+pub mod sentence;

@@ -1,0 +1,5 @@
+//! Small notebooks and what they give: one file per kind. `expect` reads a notebook whose lines may end in
+//! `# ! part of a message`: the diagnostics must stand on exactly those lines and say so.
+
+mod expect;
+mod note;
