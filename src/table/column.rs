@@ -140,6 +140,23 @@ impl Source {
 }
 
 impl Column {
+    /// A column of computed values, NaN where missing. Its texts are the shortest that give the same numbers.
+    pub(super) fn derived(name: &str, values: Vec<f64>) -> Self {
+        let n_missing = values.iter().filter(|value| value.is_nan()).count();
+        let text = |value: &f64| if value.is_nan() { String::new() } else { shortest(*value) };
+        let cells = Arc::new(Cells::single_column(values.iter().map(text)));
+        Self {
+            name: name.to_owned(),
+            kind: ColumnKind::Number,
+            numbers: Some(Numbers::new(Decimal::ZERO, values)),
+            not_numbers: Vec::new(),
+            n_not_numbers: 0,
+            n_missing,
+            forced: false,
+            source: Source { cells, index: 0, missing: Arc::from([String::new()]), mark: DecimalMark::Point },
+        }
+    }
+
     /// The text of `row`, without the spaces around it. `row` must be below the table's number of rows.
     pub fn text(&self, row: usize) -> &str {
         self.source.text(row)
@@ -183,4 +200,10 @@ impl Column {
             "Column \"{name}\" is declared to hold labels. Set it to \"number\" under columns, or choose another column."
         ))
     }
+}
+
+/// The shortest text that gives the same number, with a power of ten only for very large and very small ones.
+fn shortest(value: f64) -> String {
+    let size = value.abs();
+    if size == 0.0 || (1e-5..1e16).contains(&size) { format!("{value}") } else { format!("{value:e}") }
 }

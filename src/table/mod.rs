@@ -5,14 +5,17 @@
 //! guess that could change a value silently; where a table can be read in two ways, a remark or an error says so.
 
 mod column;
+mod condition;
 mod edit;
 #[cfg(not(target_arch = "wasm32"))]
 pub mod encoding;
+mod expression;
 mod infer;
 mod nearest;
 mod read;
 mod select;
 mod split;
+mod tokens;
 
 pub use column::{Column, ColumnKind, NotANumber, Numbers};
 pub use edit::{quoted, replace_value};

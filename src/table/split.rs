@@ -53,6 +53,16 @@ impl Cells {
         self.text[start..self.ends[at] as usize].trim()
     }
 
+    /// Cells of one column, from their texts.
+    pub fn single_column(texts: impl Iterator<Item = String>) -> Self {
+        let (mut text, mut ends) = (String::new(), Vec::new());
+        for part in texts {
+            text.push_str(&part);
+            ends.push(text.len() as u32);
+        }
+        Self { text, ends, columns: 1 }
+    }
+
     pub fn rows(&self) -> usize {
         self.ends.len() / self.columns.max(1)
     }
