@@ -13,4 +13,6 @@ pub mod history;
 pub mod kept;
 pub mod kinds;
 pub mod outcome;
+pub mod report;
+pub mod results;
 pub mod sentence;
