@@ -6,6 +6,7 @@
 
 mod clean;
 pub mod delimited;
+pub mod figure;
 pub mod html;
 pub mod note;
 pub mod number;

@@ -30,6 +30,11 @@ impl Precision {
         Precision { decimals: i32::from(decimals) }
     }
 
+    /// The place itself: decimals after the point, or, where negative, before it.
+    pub(in crate::answer) fn at_place(decimals: i32) -> Precision {
+        Precision { decimals }
+    }
+
     /// The precision at which `spread` (a standard error, the half-width of an interval) has two significant digits.
     /// A spread that is zero, negative or not finite tells nothing: two decimals.
     pub fn from_spread(spread: f64) -> Precision {

@@ -1,0 +1,69 @@
+//! Figures as SVG, each from plain numbers and words.
+//!
+//! A drawing is [`WIDTH`](drawing::WIDTH) units wide and scales with its place; it has classes for the style sheet and
+//! presentation attributes for when it stands alone. Colour repeats what shape, weight or words already say.
+//! The same numbers give the same drawing: points are spread by their rank, never by chance. A number that is not
+//! finite is left out of the drawing and said to be missing in the description.
+
+mod axis;
+mod curve;
+mod drawing;
+mod groups;
+mod intervals;
+mod label;
+mod trend;
+
+pub use curve::{Curve, curve};
+pub use groups::{Group, Groups, groups};
+pub use intervals::{IntervalRow, Intervals, Mark, intervals};
+pub use trend::{Trend, TrendPoint, trend};
+
+use super::number::{self, Precision};
+
+/// An interval. A side without a limit is infinite and drawn as an arrow.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Span {
+    pub lower: f64,
+    pub upper: f64,
+}
+
+/// A point of a curve.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Point {
+    pub x: f64,
+    pub y: f64,
+}
+
+impl Span {
+    /// The interval, unless a limit is not a number or the limits are the wrong way round: then there is nothing to draw.
+    fn usable(self) -> Option<Span> {
+        (self.lower <= self.upper).then_some(self)
+    }
+
+    /// The limits that are finite.
+    fn limits(self) -> impl Iterator<Item = f64> {
+        [self.lower, self.upper].into_iter().filter(|limit| limit.is_finite())
+    }
+
+    fn half_width(self) -> f64 {
+        self.upper / 2.0 - self.lower / 2.0
+    }
+}
+
+/// One precision for the numbers in a description: from the intervals, or else from the numbers' own range.
+fn precision_of(numbers: &[f64], spans: impl Iterator<Item = Option<Span>>) -> Precision {
+    let half_widths: Vec<f64> =
+        spans.flatten().map(Span::half_width).filter(|w| w.is_finite() && *w > 0.0).collect();
+    if half_widths.is_empty() { Precision::for_values(numbers) } else { Precision::for_column(half_widths) }
+}
+
+/// "1.25, interval 0.3 to 2.2".
+fn in_words(estimate: f64, span: Option<Span>, precision: Precision) -> String {
+    let shown = number::estimate(estimate, precision);
+    match span {
+        Some(span) => {
+            format!("{shown}, interval {}", number::interval_in_words(span.lower, span.upper, precision))
+        }
+        None => shown,
+    }
+}
