@@ -1,0 +1,228 @@
+/** One cell of the protocol: its head, its sentence and its text, what is wrong with it, and its answer. */
+
+import { createAnswer } from './answer.js';
+import { conditionMark } from './condition.js';
+import { drawing, freshId, h, setText } from './dom.js';
+import { createGrid } from './grid.js';
+import { cellTitle, kindTitle } from './kinds.js';
+import { createPastePlace } from './paste-place.js';
+import { createSentence } from './sentence.js';
+import { isStale } from './state.js';
+import { createTextFace } from './text.js';
+
+/** @typedef {import('./state.js').State} State */
+/** @typedef {import('./messages.js').CellView} CellView */
+/** @typedef {import('./messages.js').Diagnostic} Diagnostic */
+/** @typedef {import('./actions.js').Actions} Actions */
+
+const UP = 'M8 13V3.5M4 7.5l4-4 4 4';
+const DOWN = 'M8 3v9.5M4 8.5l4 4 4-4';
+const TWIN = 'M5.5 5.5h8v8h-8zM10.5 5.5v-3h-8v8h3';
+const BIN = 'M3 4.5h10M6.5 4.5v-2h3v2M4.5 4.5l.7 9h5.6l.7-9';
+
+/**
+ * @param {number} id
+ * @param {() => State} state
+ * @param {Actions} actions
+ */
+export function createCell(id, state, actions) {
+  const view = () => state().cells.get(id);
+  const mark = conditionMark();
+  const head = createHead(id, mark.element, actions);
+  const sentence = createSentence((field, value) => actions.setField(id, field, value));
+  const problems = h('ul', { class: 'problems' });
+  const faces = h('div', { class: 'faces' }, sentence.element, sentence.help);
+  const table = h('div', { class: 'table-place' });
+  const answer = createAnswer(actions.say);
+  const content = h('div', { class: 'content' }, faces, problems, table, answer.element);
+  const element = h('section', { class: 'cell', 'aria-labelledby': head.titleId, id: `cell-${id}` }, head.element, content);
+  element.addEventListener('keydown', (event) => {
+    const direction = { ArrowUp: -1, ArrowDown: 1 }[event.key];
+    if (!direction || !event.altKey || event.defaultPrevented) return;
+    event.preventDefault();
+    actions.moveBy(id, direction);
+  });
+
+  /** @type {ReturnType<typeof createTextFace>|null} */
+  let text = null;
+  /** @type {ReturnType<typeof createGrid>|null} */
+  let grid = null;
+  /** @type {ReturnType<typeof createPastePlace>|null} */
+  let place = null;
+  /** @type {CellView|null} */
+  let drawn = null;
+
+  /**
+   * @param {CellView} cell
+   * @param {boolean} open
+   */
+  function drawText(cell, open) {
+    if (open && !text) {
+      text = createTextFace({ label: `Text of ${cellTitle(cell)}`, cell: view, onText: (typed) => actions.editText(id, typed) });
+      faces.append(text.element);
+    } else if (!open && text) {
+      text.destroy();
+      text.element.remove();
+      text = null;
+    }
+    text?.draw(cell);
+  }
+
+  /**
+   * @param {CellView} cell
+   * @param {State} now
+   */
+  function drawTable(cell, now) {
+    if (cell.kind !== 'data') return;
+    const rows = cell.table_rows ?? 0;
+    if (rows === 0 && !place) {
+      grid = null;
+      place = createPastePlace({ label: 'Paste or drop a table', onTable: (pasted) => actions.setTable(id, pasted), onOpen: () => actions.chooseFile(id) });
+      table.replaceChildren(place.element);
+    } else if (rows > 0 && !grid) {
+      place = null;
+      grid = createGrid(`Table of ${cellTitle(cell)}`, {
+        ask: (from, count) => actions.askRows(id, from, count),
+        setValue: (row, column, value) => actions.setValue(id, row, column, value),
+        setTable: (pasted) => actions.setTable(id, pasted),
+        copy: actions.copyText,
+      });
+      table.replaceChildren(grid.element, h('p', { class: 'table-hint' }, 'Type over a value to change it. A table pasted here replaces this one; undo brings it back.'));
+    }
+    grid?.draw(rows, cell.revision, now.windows.get(id));
+  }
+
+  return {
+    element,
+    /** @param {State} now */
+    draw(now) {
+      const cell = now.cells.get(id);
+      if (!cell) return;
+      head.draw(cell, now);
+      mark.draw(cell.condition);
+      element.dataset['kind'] = cell.kind;
+      sentence.draw(cell.sentence, cell.diagnostics, isStale(now, id));
+      if (cell.diagnostics !== drawn?.diagnostics) drawProblems(problems, cell.diagnostics, (at) => actions.showInText(id, at));
+      // A stopped engine cannot write a blank into the text; the text itself can still be edited and is kept.
+      sentence.element.inert = now.engine === 'stopped';
+      drawText(cell, now.texts.has(id));
+      drawTable(cell, now);
+      answer.draw(cell, now.fileName);
+      drawn = cell;
+    },
+    /** @param {import('./state.js').FocusWish} wish */
+    focus(wish) {
+      element.scrollIntoView({ block: 'nearest' });
+      if (wish.part === 'text' && text) text.focus(wish.at);
+      else if (wish.part === 'sentence' && (place?.area ?? null)) place?.area.focus();
+      else if (wish.part === 'head' || !sentence.focus()) head.focus();
+    },
+    flush() {
+      sentence.flush();
+      text?.flush();
+    },
+    destroy() {
+      text?.destroy();
+    },
+  };
+}
+
+/**
+ * The head: kind, name, condition, and what can be done with the cell as a whole.
+ * @param {number} id
+ * @param {HTMLElement} mark
+ * @param {Actions} actions
+ */
+function createHead(id, mark, actions) {
+  const titleId = freshId('title');
+  const title = h('h2', { id: titleId, tabIndex: -1 });
+  const name = h('input', { type: 'text', class: 'name', autocomplete: 'off', spellcheck: false, placeholder: 'name' });
+  const nameBox = h('span', { class: 'blank typed name-box' }, name);
+  const fit = () => {
+    nameBox.dataset['shown'] = name.value || name.placeholder;
+  };
+  let known = '';
+  const rename = () => {
+    if (name.value.trim() !== known) actions.rename(id, name.value.trim());
+  };
+  name.addEventListener('input', fit);
+  name.addEventListener('change', rename);
+  name.addEventListener('keydown', (event) => {
+    if (event.key === 'Enter') rename();
+    if (event.key === 'Escape') {
+      name.value = known;
+      fit();
+    }
+  });
+  const textButton = h('button', { type: 'button', class: 'quiet', onclick: () => actions.toggleText(id) }, 'Text');
+  const up = iconButton(UP, () => actions.moveBy(id, -1));
+  const down = iconButton(DOWN, () => actions.moveBy(id, 1));
+  const twin = iconButton(TWIN, () => actions.duplicate(id));
+  const bin = iconButton(BIN, () => actions.remove(id));
+  const tools = h('div', { class: 'cell-tools', role: 'group' }, textButton, up, down, twin, bin);
+  const element = h('header', { class: 'cell-head' }, h('div', { class: 'cell-title' }, title, nameBox, mark), tools);
+
+  return {
+    element,
+    titleId,
+    focus: () => title.focus(),
+    /**
+     * @param {CellView} cell
+     * @param {State} now
+     */
+    draw(cell, now) {
+      const words = cellTitle(cell);
+      setText(title, kindTitle(cell.kind));
+      name.setAttribute('aria-label', `Name of this cell (${kindTitle(cell.kind)})`);
+      if (document.activeElement !== name || (cell.name ?? '') !== known) name.value = cell.name ?? '';
+      known = cell.name ?? '';
+      fit();
+      tools.setAttribute('aria-label', words);
+      textButton.setAttribute('aria-expanded', String(now.texts.has(id)));
+      textButton.setAttribute('aria-label', `Text of ${words}`);
+      labelled(up, `Move up: ${words}`, now.order[0] === id);
+      labelled(down, `Move down: ${words}`, now.order.at(-1) === id);
+      labelled(twin, `Duplicate: ${words}`, false);
+      labelled(bin, `Delete: ${words} (undo brings it back)`, false);
+    },
+  };
+}
+
+/**
+ * @param {string} path
+ * @param {() => void} onClick
+ */
+function iconButton(path, onClick) {
+  const button = h('button', { type: 'button', class: 'icon-button' }, drawing(path));
+  button.addEventListener('click', () => {
+    if (button.getAttribute('aria-disabled') !== 'true') onClick();
+  });
+  return button;
+}
+
+/**
+ * A button that cannot act now stays reachable, so that the keyboard is not lost when a cell arrives at an end.
+ * @param {HTMLButtonElement} button
+ * @param {string} label
+ * @param {boolean} idle
+ */
+function labelled(button, label, idle) {
+  button.setAttribute('aria-label', label);
+  button.title = label;
+  if (idle) button.setAttribute('aria-disabled', 'true');
+  else button.removeAttribute('aria-disabled');
+}
+
+/**
+ * @param {HTMLElement} list
+ * @param {readonly Diagnostic[]} diagnostics
+ * @param {(at: number) => void} show
+ */
+function drawProblems(list, diagnostics, show) {
+  list.hidden = diagnostics.length === 0;
+  list.replaceChildren(
+    ...diagnostics.map(({ message, start, line }) =>
+      h('li', {}, h('span', {}, message), ' ', h('button', { type: 'button', class: 'quiet', onclick: () => show(start), 'aria-label': `Show in the text, line ${line}` }, 'Show in the text')),
+    ),
+  );
+}

@@ -1,0 +1,22 @@
+/** The privacy line, always in sight, and how to check that it is true. */
+
+import { h } from './dom.js';
+
+/** @param {HTMLElement} element */
+export function createPrivacy(element) {
+  const dialog = h(
+    'dialog',
+    { class: 'sheet', 'aria-labelledby': 'privacy-title' },
+    h('h2', { id: 'privacy-title' }, 'How to check that nothing is sent'),
+    h('p', {}, 'The page is one file with everything in it. It computes here, in this browser, and its security policy tells the browser to refuse every connection: no server, no account, no fonts or scripts from elsewhere.'),
+    h('ol', {},
+      h('li', {}, 'Take the machine off the network, or open the file from a memory stick. Everything works as before.'),
+      h('li', {}, 'Open the browser’s developer tools (F12), choose the network panel and work: after the page itself, no request appears.'),
+      h('li', {}, 'Look at the source of the page: the line “Content-Security-Policy” near its top says default-src ‘none’ and connect-src ‘none’. The browser enforces it, whatever the page’s code does; a changed script does not run at all.'),
+    ),
+    h('p', {}, 'A policy cannot stop a browser from following a link to another page, so this page has none. It keeps nothing in the browser either: what you do not save is gone when you close it. Files that you save are yours to look after.'),
+    h('p', { class: 'answers' }, h('button', { type: 'button', onclick: () => dialog.close() }, 'Close')),
+  );
+  const button = h('button', { type: 'button', class: 'quiet', onclick: () => dialog.showModal() }, 'How to check');
+  element.replaceChildren(h('p', {}, h('strong', {}, 'This page cannot send anything'), ': its security policy forbids every connection. ', button), dialog);
+}

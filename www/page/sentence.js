@@ -1,0 +1,258 @@
+/**
+ * The sentence face: words with blanks in them. Every blank is a native control as wide as what stands in it.
+ *
+ * What a person is typing is not overwritten: a control with unsent typing keeps it until it has been sent.
+ */
+
+import { arrange, freshId, h, setText } from './dom.js';
+
+/** @typedef {import('./messages.js').Part} Part */
+/** @typedef {import('./messages.js').Blank} Blank */
+/** @typedef {import('./messages.js').Diagnostic} Diagnostic */
+/** @typedef {HTMLInputElement|HTMLSelectElement|HTMLTextAreaElement} Control */
+
+/** How long a pause in typing is before it is sent, in milliseconds. */
+const PAUSE = 450;
+
+/**
+ * @typedef {object} Field
+ * @property {HTMLElement} element
+ * @property {Control} control
+ * @property {string} shape two blanks with the same shape can share a control
+ * @property {(blank: Blank, problem: string, stale: boolean) => void} draw
+ * @property {() => void} send what has been typed and not been sent
+ */
+
+/**
+ * The sentence of one cell.
+ * @param {(field: string, value: string) => void} onChange
+ */
+export function createSentence(onChange) {
+  const element = h('div', { class: 'sentence' });
+  const help = h('p', { class: 'help', id: freshId('help'), hidden: true });
+  /** @type {Map<string, Field>} */
+  let fields = new Map();
+  /** @type {Text[]} */
+  let words = [];
+
+  /**
+   * @param {readonly Part[]} parts
+   * @param {readonly Diagnostic[]} diagnostics
+   * @param {boolean} stale the engine has not yet answered the newest change of this cell
+   */
+  function draw(parts, diagnostics, stale) {
+    /** @type {Map<string, Field>} */
+    const next = new Map();
+    const oldWords = words;
+    words = [];
+    const nodes = parts.map((part) => {
+      if (part.type === 'words') {
+        const node = oldWords[words.length] ?? document.createTextNode('');
+        setText(node, part.text);
+        words.push(node);
+        return node;
+      }
+      const shape = shapeOf(part);
+      const old = fields.get(part.field);
+      const field = old?.shape === shape ? old : makeField(part, shape, help, onChange);
+      next.set(part.field, field);
+      return field.element;
+    });
+    const back = focusKeeper(element);
+    for (const [name, field] of fields) if (next.get(name) !== field) field.send();
+    fields = next;
+    arrange(element, nodes);
+    for (const part of parts) {
+      if (part.type !== 'blank') continue;
+      const problem = diagnostics.find((diagnostic) => diagnostic.field === part.field)?.message ?? '';
+      fields.get(part.field)?.draw(part, problem, stale);
+    }
+    back(fields);
+  }
+
+  return {
+    element,
+    help,
+    draw,
+    /** Puts the keyboard into the first blank that has a problem, else the first one. */
+    focus() {
+      const all = [...fields.values()].map((field) => field.control);
+      const first = all.find((control) => control.getAttribute('aria-invalid') === 'true') ?? all[0];
+      first?.focus();
+      return first !== undefined;
+    },
+    /** Sends what has been typed and not been sent yet. */
+    flush() {
+      for (const field of fields.values()) field.send();
+    },
+  };
+}
+
+/**
+ * Remembers which blank has the keyboard; the function it returns gives it back if the drawing took it away.
+ * @param {HTMLElement} element
+ */
+function focusKeeper(element) {
+  const active = /** @type {Control|null} */ (element.contains(document.activeElement) ? document.activeElement : null);
+  const name = active?.dataset['field'];
+  return (/** @type {ReadonlyMap<string, Field>} */ fields) => {
+    if (!active || name === undefined || document.activeElement === active) return;
+    fields.get(name)?.control.focus();
+  };
+}
+
+/** @param {Blank} blank */
+function shapeOf(blank) {
+  return blank.control === 'choice' ? 'choice' : blank.control;
+}
+
+/**
+ * @param {Blank} blank
+ * @param {string} shape
+ * @param {HTMLElement} help
+ * @param {(field: string, value: string) => void} onChange
+ * @returns {Field}
+ */
+function makeField(blank, shape, help, onChange) {
+  const field = shape === 'choice' ? choiceField(blank, onChange) : typedField(blank, onChange);
+  const { control } = field;
+  control.dataset['field'] = blank.field;
+  control.addEventListener('focus', () => {
+    setText(help, control.title);
+    help.hidden = control.title === '';
+    control.setAttribute('aria-describedby', help.id);
+  });
+  control.addEventListener('blur', () => {
+    help.hidden = true;
+  });
+  return { ...field, shape };
+}
+
+/**
+ * What all controls show alike.
+ * @param {Control} control
+ * @param {Blank} blank
+ * @param {string} problem
+ */
+function drawCommon(control, blank, problem) {
+  control.setAttribute('aria-label', blank.label);
+  control.title = problem || blank.help;
+  if (blank.problem || problem) control.setAttribute('aria-invalid', 'true');
+  else control.removeAttribute('aria-invalid');
+  control.classList.toggle('default', blank.is_default);
+}
+
+/**
+ * @param {Blank} blank
+ * @param {(field: string, value: string) => void} onChange
+ */
+function choiceField(blank, onChange) {
+  const select = h('select');
+  const element = h('span', { class: 'blank choice' }, select);
+  select.addEventListener('change', () => onChange(blank.field, select.value));
+  let options = '';
+  return {
+    element,
+    control: select,
+    /**
+     * @param {Blank} now
+     * @param {string} problem
+     */
+    draw(now, problem) {
+      const wanted = JSON.stringify([now.choices, now.value, now.shown]);
+      if (wanted !== options) {
+        options = wanted;
+        select.replaceChildren(...choiceOptions(now));
+        select.value = now.value;
+      }
+      element.dataset['shown'] = select.selectedOptions[0]?.textContent ?? now.shown;
+      drawCommon(select, now, problem);
+    },
+    send() {},
+  };
+}
+
+/**
+ * The options of a choice. Leaving the field to its default is one of them, apart from the others; a value that is no
+ * choice is shown as it stands.
+ * @param {Blank} blank
+ */
+function choiceOptions(blank) {
+  const choices = blank.choices.filter((choice) => choice.value !== '');
+  const offered = blank.choices.find((choice) => choice.value === '');
+  const atDefault = blank.value === '';
+  const rest = offered?.label ?? (atDefault ? blank.shown : 'leave it to the default');
+  const list = choices.map(({ value, label }) => h('option', { value }, label));
+  if (!atDefault && !choices.some((choice) => choice.value === blank.value)) {
+    list.unshift(h('option', { value: blank.value }, blank.shown || blank.value));
+  }
+  const title = atDefault && !blank.is_default ? 'not chosen yet' : 'default';
+  return [
+    h('optgroup', { label: title }, h('option', { value: '' }, rest || 'choose')),
+    h('optgroup', { label: 'choose' }, ...list),
+  ];
+}
+
+/**
+ * @param {Blank} blank
+ * @param {(field: string, value: string) => void} onChange
+ */
+function typedField(blank, onChange) {
+  const long = blank.control === 'long';
+  const control = long
+    ? h('textarea', { rows: 1, spellcheck: blank.field === 'text' })
+    : h('input', { type: 'text', autocomplete: 'off', spellcheck: false, inputMode: blank.control === 'number' ? 'decimal' : 'text' });
+  const suggestions = h('datalist', { id: freshId('suggestions') });
+  const element = h('span', { class: `blank ${long ? 'long' : 'typed'}` }, control, !long && suggestions);
+  /** @type {ReturnType<typeof setTimeout>|undefined} */
+  let pause;
+  let sent = blank.value;
+  let listed = '';
+
+  const fit = () => {
+    element.dataset['shown'] = (control.value || control.placeholder) + (long ? '\n' : '');
+  };
+  const send = () => {
+    clearTimeout(pause);
+    pause = undefined;
+    if (control.value === sent) return;
+    sent = control.value;
+    onChange(blank.field, control.value);
+  };
+  control.addEventListener('input', () => {
+    fit();
+    clearTimeout(pause);
+    pause = setTimeout(send, PAUSE);
+  });
+  control.addEventListener('change', send);
+  control.addEventListener('blur', send);
+  return {
+    element,
+    control,
+    /**
+     * @param {Blank} now
+     * @param {string} problem
+     * @param {boolean} stale
+     */
+    draw(now, problem, stale) {
+      // While the keyboard is in the blank the person's own spelling stays, and so does the place of the caret.
+      const active = document.activeElement === control;
+      const typing = pause !== undefined || (active && (stale || now.value.trim() === control.value.trim()));
+      if (!typing) {
+        sent = now.value;
+        if (control.value !== now.value) control.value = now.value;
+      }
+      control.placeholder = now.value === '' ? now.shown || '…' : '';
+      fit();
+      drawCommon(control, now, problem);
+      const list = JSON.stringify(now.choices);
+      if (!long && list !== listed) {
+        listed = list;
+        suggestions.replaceChildren(...now.choices.map(({ value, label }) => h('option', { value, label: label === value ? undefined : label })));
+        if (now.choices.length > 0) control.setAttribute('list', suggestions.id);
+        else control.removeAttribute('list');
+      }
+    },
+    send,
+  };
+}

@@ -1,0 +1,145 @@
+/**
+ * The engine and the store together: what the engine says becomes state, and an engine that fails is replaced.
+ */
+
+import { ask } from './ask.js';
+import { compiledEngine, workerSource } from './blocks.js';
+import { createEngine } from './engine.js';
+import { saveNotebook, saveReport } from './files.js';
+import { notebookFile, preambleOf } from './keep.js';
+import { afterFailure, afterRecovery, afterUpdate, cellsInOrder, withRows } from './state.js';
+
+/** @typedef {import('./messages.js').Message} Message */
+/** @typedef {import('./messages.js').Request} Request */
+
+/** Two failures within this time, in milliseconds, and the page no longer starts a fresh engine unasked. */
+const SOON = 20_000;
+
+/** @typedef {ReturnType<typeof createSession>} Session */
+
+/**
+ * @param {import('./store.js').Store<import('./state.js').State>} store
+ */
+export function createSession(store) {
+  /** @type {import('./engine.js').Engine|null} */
+  let engine = null;
+  let preamble = '';
+  let failedAt = -Infinity;
+  let tell = (/** @type {string} */ _words) => {};
+  /** The request with which a fresh engine is being given the cells; 0 otherwise. */
+  let recovery = 0;
+
+  const keptText = () => notebookFile(preamble, cellsInOrder(store.get()));
+
+  /** The number of the newest request that changes the notebook. */
+  let changed = 0;
+  /** Saves that have been asked for and not come back, in order. @type {{ name: string, changed: number }[]} */
+  const saving = [];
+
+  function send(/** @type {Request} */ request) {
+    const seq = engine?.send(request) ?? 0;
+    if (request.type === 'save') saving.push({ name: store.get().fileName, changed });
+    else if (request.type !== 'rows' && request.type !== 'report') changed = seq;
+    return seq;
+  }
+
+  function saved(/** @type {string} */ text) {
+    const asked = saving.shift();
+    saveNotebook(asked?.name ?? store.get().fileName, text);
+    // What was typed while the engine wrote the file is not in it.
+    if (asked?.changed === changed) store.update((state) => ({ ...state, unsaved: false }));
+  }
+
+  function onMessage(/** @type {Message} */ message) {
+    switch (message.type) {
+      case 'ready':
+        if (!recovery) store.update((state) => ({ ...state, engine: 'ready' }));
+        break;
+      case 'update':
+        // What a fresh engine says before it has the cells would take them off the page.
+        if (message.seq < recovery) break;
+        if (recovery) store.update((state) => afterRecovery(state, message.order));
+        recovery = 0;
+        store.update((state) => afterUpdate(state, message));
+        if (message.settled && message.recomputed.length > 0) tell(renewed(message.recomputed.length));
+        break;
+      case 'rows':
+        store.update((state) => withRows(state, message));
+        break;
+      case 'saved':
+        saved(message.text);
+        break;
+      case 'report':
+        saveReport(`${store.get().fileName}-report`, message.html);
+        break;
+      case 'refused':
+        store.update((state) => ({ ...state, notice: { text: message.message, tone: 'problem' } }));
+        break;
+      default:
+    }
+  }
+
+  function restart() {
+    if (!engine) return;
+    const text = keptText();
+    engine.restart();
+    recovery = send({ type: 'open', text });
+    store.update((state) => ({ ...state, engine: 'starting' }));
+  }
+
+  function onFailure(/** @type {string} */ words) {
+    const again = performance.now() - failedAt < SOON;
+    failedAt = performance.now();
+    recovery = 0;
+    saving.length = 0;
+    store.update(afterFailure);
+    if (again) {
+      store.update((state) => ({ ...state, notice: { text: `What the engine said last: ${words}`, tone: 'problem' } }));
+      return;
+    }
+    restart();
+    store.update((state) => ({ ...state, notice: { text: `The engine stopped (${words}) and a fresh one has taken over. Nothing you typed is lost.`, tone: 'problem' } }));
+  }
+
+  function open(/** @type {string} */ text, /** @type {string} */ name) {
+    preamble = preambleOf(text);
+    send({ type: 'open', text });
+    store.update((state) => ({ ...state, fileName: name, unsaved: false, notice: null, typed: new Map(), texts: new Set(), windows: new Map() }));
+    scrollTo({ top: 0 });
+  }
+
+  return {
+    send,
+    restart,
+    keptText,
+    /** @param {(words: string) => void} say */
+    async start(say) {
+      tell = say;
+      const module = await compiledEngine();
+      engine = createEngine({ source: workerSource(), module, onMessage, onFailure });
+    },
+    /**
+     * Opens a notebook, after asking if changes would be lost.
+     * @param {string} text
+     * @param {string} name
+     * @param {() => void} save
+     */
+    async openGuarded(text, name, save) {
+      if (store.get().unsaved) {
+        const answer = await ask('This notebook has changes that are not saved. Opening another one takes its place.', [
+          { value: 'save', label: 'Save it, then open' },
+          { value: 'open', label: 'Open without saving' },
+          { value: '', label: 'Stay here' },
+        ]);
+        if (answer === '') return;
+        if (answer === 'save') save();
+      }
+      open(text, name);
+    },
+  };
+}
+
+/** @param {number} count */
+function renewed(count) {
+  return count === 1 ? 'One answer renewed.' : `${count} answers renewed.`;
+}
