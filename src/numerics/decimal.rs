@@ -67,6 +67,9 @@ impl Decimal {
     /// # Errors
     /// [`NotADecimal`] where the text is no such number, or the number is outside the range of `f64`.
     pub fn parse(text: &str, mark: DecimalMark) -> Result<Self, NotADecimal> {
+        if let Some(plain) = short(text.as_bytes(), mark) {
+            return Ok(plain);
+        }
         let (negative, unsigned) = split_sign(text);
         let (digits, power) = split_power(unsigned)?;
         let (magnitude, exponent) = read_digits(digits, mark)?;
@@ -135,7 +138,7 @@ impl Decimal {
         }
         let divisor = u32::try_from(i64::from(power) - i64::from(self.exponent))
             .ok()
-            .and_then(|places| 10_i128.checked_pow(places));
+            .and_then(|places| POWERS.get(places as usize));
         match divisor {
             None => Self::ZERO,
             Some(divisor) if self.mantissa / divisor == 0 => Self::ZERO,
@@ -149,7 +152,7 @@ impl Decimal {
             return Some(0);
         }
         let places = u32::try_from(i64::from(self.exponent) - i64::from(exponent)).ok()?;
-        self.mantissa.checked_mul(10_i128.checked_pow(places)?)
+        self.mantissa.checked_mul(*POWERS.get(places as usize)?)
     }
 }
 
@@ -189,6 +192,45 @@ const EXACT_POWERS: [f64; 23] = [
     1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18,
     1e19, 1e20, 1e21, 1e22,
 ];
+
+/// All powers of ten below 2^127.
+const POWERS: [i128; 39] = {
+    let mut powers = [1; 39];
+    let mut i = 1;
+    while i < powers.len() {
+        powers[i] = 10 * powers[i - 1];
+        i += 1;
+    }
+    powers
+};
+
+/// The number, where the text is as nearly all are: at most 18 digits and no power of ten, so that it is in range and
+/// fits into 64 bits. `None` decides nothing.
+fn short(text: &[u8], mark: DecimalMark) -> Option<Decimal> {
+    let mark = mark.character() as u8;
+    let (negative, digits) = match text {
+        [b'-', rest @ ..] => (true, rest),
+        rest => (false, rest),
+    };
+    let (mut magnitude, mut count, mut after_mark) = (0_i64, 0, None);
+    for &b in digits {
+        if b.is_ascii_digit() {
+            magnitude = magnitude.wrapping_mul(10).wrapping_add(i64::from(b - b'0'));
+            count += 1;
+        } else if b == mark && after_mark.is_none() {
+            after_mark = Some(count);
+        } else {
+            return None;
+        }
+    }
+    if count == 0 || count > 18 {
+        return None;
+    }
+    let exponent = after_mark.map_or(0, |before: i32| before - count);
+    let exponent = if magnitude == 0 { 0 } else { exponent };
+    let signed = if negative { -magnitude } else { magnitude };
+    Some(Decimal { mantissa: i128::from(signed), exponent })
+}
 
 /// Whether the text is negative, and the rest of it. The true minus sign (U+2212) is a minus as well.
 fn split_sign(text: &str) -> (bool, &str) {

@@ -58,7 +58,7 @@ pub(super) fn tally(source: &Source) -> Tally {
         not_numbers: Vec::new(),
         n_not_numbers: 0,
     };
-    let mark = source.mark.character();
+    let mark = source.mark.character() as u8;
     for row in 0..rows {
         let text = source.text(row);
         let value = if source.is_missing(text) {
@@ -68,7 +68,7 @@ pub(super) fn tally(source: &Source) -> Tally {
             match Decimal::parse(text, source.mark) {
                 Ok(number) => {
                     tally.numbers += 1;
-                    if text.contains(mark) {
+                    if text.as_bytes().contains(&mark) {
                         tally.marked += 1;
                         tally.marked_as_thousands += usize::from(like_thousands(text, source.mark));
                         tally.first_marked.get_or_insert(row);

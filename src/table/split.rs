@@ -50,7 +50,10 @@ impl Cells {
     pub fn get(&self, row: usize, column: usize) -> &str {
         let at = row * self.columns + column;
         let start = if at == 0 { 0 } else { self.ends[at - 1] as usize };
-        self.text[start..self.ends[at] as usize].trim()
+        let field = &self.text[start..self.ends[at] as usize];
+        let bare = |byte: Option<&u8>| byte.is_none_or(u8::is_ascii_graphic);
+        // Most fields have nothing to remove, and one look at both ends shows it.
+        if bare(field.as_bytes().first()) && bare(field.as_bytes().last()) { field } else { field.trim() }
     }
 
     /// Cells of one column, from their texts.
