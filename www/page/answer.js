@@ -49,7 +49,7 @@ function decorate(body, cell, fileStem, say) {
     (table.closest('.a-table') ?? table).after(takeaway(button('Copy table', `Copy table: ${name}`, async () => report(say, 'Table', await copyTable(table)))));
   });
   [...body.querySelectorAll('svg')].filter((svg) => !svg.parentElement?.closest('svg')).forEach((svg, i) => {
-    const name = `${fileStem}-${cell.name ?? cell.kind}${i > 0 ? `-${i + 1}` : ''}`.replaceAll(/[^\p{L}\p{N}_-]+/gu, '-');
+    const name = `${fileStem}-${cell.name ?? cell.kind ?? 'cell'}${i > 0 ? `-${i + 1}` : ''}`.replaceAll(/[^\p{L}\p{N}_-]+/gu, '-');
     const figure = svg.closest('figure') ?? svg;
     figure.after(
       takeaway(

@@ -26,7 +26,11 @@ const BIN = 'M3 4.5h10M6.5 4.5v-2h3v2M4.5 4.5l.7 9h5.6l.7-9';
  * @param {Actions} actions
  */
 export function createCell(id, state, actions) {
-  const view = () => state().cells.get(id);
+  const known = () => {
+    const { cells, kinds } = state();
+    const cell = cells.get(id);
+    return { sentence: cell?.sentence ?? [], fields: kinds.find((kind) => kind.name === cell?.kind)?.fields ?? [] };
+  };
   const mark = conditionMark();
   const head = createHead(id, mark.element, actions);
   const sentence = createSentence((field, value) => actions.setField(id, field, value));
@@ -58,7 +62,7 @@ export function createCell(id, state, actions) {
    */
   function drawText(cell, open) {
     if (open && !text) {
-      text = createTextFace({ label: `Text of ${cellTitle(cell)}`, cell: view, onText: (typed) => actions.editText(id, typed) });
+      text = createTextFace({ label: `Text of ${cellTitle(cell)}`, text: cell.text, known, onText: (typed) => actions.editText(id, typed) });
       faces.append(text.element);
     } else if (!open && text) {
       text.destroy();
@@ -100,7 +104,8 @@ export function createCell(id, state, actions) {
       if (!cell) return;
       head.draw(cell, now);
       mark.draw(cell.condition);
-      element.dataset['kind'] = cell.kind;
+      element.dataset['kind'] = cell.kind ?? 'unknown';
+      element.classList.toggle('plain', cell.kind === 'note' && cell.answer !== '');
       sentence.draw(cell.sentence, cell.diagnostics, isStale(now, id));
       if (cell.diagnostics !== drawn?.diagnostics) drawProblems(problems, cell.diagnostics, (at) => actions.showInText(id, at));
       // A stopped engine cannot write a blank into the text; the text itself can still be edited and is kept.
@@ -135,7 +140,7 @@ export function createCell(id, state, actions) {
  */
 function createHead(id, mark, actions) {
   const titleId = freshId('title');
-  const title = h('h2', { id: titleId, tabIndex: -1 });
+  const heading = h('h2', { id: titleId, tabIndex: -1 });
   const name = h('input', { type: 'text', class: 'name', autocomplete: 'off', spellcheck: false, placeholder: 'name' });
   const nameBox = h('span', { class: 'blank typed name-box' }, name);
   const fit = () => {
@@ -154,36 +159,39 @@ function createHead(id, mark, actions) {
       fit();
     }
   });
+  const words = h('button', { type: 'button', class: 'quiet', onclick: () => actions.focus(id, 'sentence') }, 'Edit');
   const textButton = h('button', { type: 'button', class: 'quiet', onclick: () => actions.toggleText(id) }, 'Text');
   const up = iconButton(UP, () => actions.moveBy(id, -1));
   const down = iconButton(DOWN, () => actions.moveBy(id, 1));
   const twin = iconButton(TWIN, () => actions.duplicate(id));
   const bin = iconButton(BIN, () => actions.remove(id));
-  const tools = h('div', { class: 'cell-tools', role: 'group' }, textButton, up, down, twin, bin);
-  const element = h('header', { class: 'cell-head' }, h('div', { class: 'cell-title' }, title, nameBox, mark), tools);
+  const tools = h('div', { class: 'cell-tools', role: 'group' }, words, textButton, up, down, twin, bin);
+  const element = h('header', { class: 'cell-head' }, h('div', { class: 'cell-title' }, heading, nameBox, mark), tools);
 
   return {
     element,
     titleId,
-    focus: () => title.focus(),
+    focus: () => heading.focus(),
     /**
      * @param {CellView} cell
      * @param {State} now
      */
     draw(cell, now) {
-      const words = cellTitle(cell);
-      setText(title, kindTitle(cell.kind));
+      const title = cellTitle(cell);
+      words.hidden = cell.kind !== 'note';
+      words.setAttribute('aria-label', `Edit: ${title}`);
+      setText(heading, kindTitle(cell.kind));
       name.setAttribute('aria-label', `Name of this cell (${kindTitle(cell.kind)})`);
       if (document.activeElement !== name || (cell.name ?? '') !== known) name.value = cell.name ?? '';
       known = cell.name ?? '';
       fit();
-      tools.setAttribute('aria-label', words);
+      tools.setAttribute('aria-label', title);
       textButton.setAttribute('aria-expanded', String(now.texts.has(id)));
-      textButton.setAttribute('aria-label', `Text of ${words}`);
-      labelled(up, `Move up: ${words}`, now.order[0] === id);
-      labelled(down, `Move down: ${words}`, now.order.at(-1) === id);
-      labelled(twin, `Duplicate: ${words}`, false);
-      labelled(bin, `Delete: ${words} (undo brings it back)`, false);
+      textButton.setAttribute('aria-label', `Text of ${title}`);
+      labelled(up, `Move up: ${title}`, now.order[0] === id);
+      labelled(down, `Move down: ${title}`, now.order.at(-1) === id);
+      labelled(twin, `Duplicate: ${title}`, false);
+      labelled(bin, `Delete: ${title} (undo brings it back)`, false);
     },
   };
 }

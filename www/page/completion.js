@@ -7,12 +7,13 @@
 /** @typedef {import('./messages.js').Blank} Blank */
 /** @typedef {{ label: string, apply: string, detail?: string, info?: string }} Option */
 /** @typedef {{ from: number, options: Option[] }} Completions */
+/** @typedef {Pick<CellView, 'sentence'> & { fields: readonly string[] }} Known `fields`: every field of the kind, also those outside the sentence */
 
 /**
  * The options at `position` (UTF-16 units) of `text`, or null where nothing sensible can be offered.
  * @param {string} text
  * @param {number} position
- * @param {Pick<CellView, 'sentence'>} cell
+ * @param {Known} cell
  * @returns {Completions|null}
  */
 export function completionsAt(text, position, cell) {
@@ -47,13 +48,14 @@ function openList(above, before) {
 /**
  * @param {string} text
  * @param {number} from
- * @param {Pick<CellView, 'sentence'>} cell
+ * @param {Known} cell
  * @returns {Completions|null}
  */
 function fieldNames(text, from, cell) {
-  const options = blanks(cell)
-    .filter((blank) => !new RegExp(`^\\s*${escaped(blank.field)}\\s*=`, 'm').test(text))
-    .map((blank) => ({ label: blank.field, apply: `${blank.field} = `, detail: blank.label, info: blank.help }));
+  const inSentence = new Map(blanks(cell).map((blank) => [blank.field, blank]));
+  const options = [...new Set([...inSentence.keys(), ...cell.fields])]
+    .filter((field) => !new RegExp(`^\\s*${escaped(field)}\\s*=`, 'm').test(text))
+    .map((field) => ({ label: field, apply: `${field} = `, detail: inSentence.get(field)?.label, info: inSentence.get(field)?.help }));
   return options.length > 0 ? { from, options } : null;
 }
 
@@ -61,7 +63,7 @@ function fieldNames(text, from, cell) {
  * @param {string} field
  * @param {string} typed what stands after the equals sign, up to the place
  * @param {number} position
- * @param {Pick<CellView, 'sentence'>} cell
+ * @param {Known} cell
  * @returns {Completions|null}
  */
 function fieldValues(field, typed, position, cell) {
@@ -102,7 +104,7 @@ function escaped(text) {
 }
 
 /**
- * @param {Pick<CellView, 'sentence'>} cell
+ * @param {Known} cell
  * @returns {Blank[]}
  */
 function blanks(cell) {

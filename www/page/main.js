@@ -56,7 +56,7 @@ async function begin() {
       save,
       report: () => {
         flush();
-        session.send({ type: 'report' });
+        session.send({ type: 'report', date: new Intl.DateTimeFormat('en-GB', { dateStyle: 'long' }).format(new Date()) });
       },
       undo: actions.undo,
       redo: actions.redo,

@@ -43,7 +43,7 @@
  * One cell as the worker tells it.
  * @typedef {object} CellMessage
  * @property {number} id
- * @property {Kind} kind
+ * @property {Kind|null} kind null while its text does not say one
  * @property {string|null} [name]
  * @property {string} [text] left out when it is long and has not changed
  * @property {Condition} condition
@@ -58,7 +58,12 @@
 
 /** @typedef {Readonly<CellMessage & { text: string, name: string|null, writeup: string, table_rows: number|null }>} CellView */
 
-/** @typedef {{ type: 'ready', version: string }} Ready */
+/**
+ * A kind as the engine describes it.
+ * @typedef {{ name: Kind, purpose: string, fields: string[] }} KindInfo
+ */
+
+/** @typedef {{ type: 'ready', version: string, kinds: KindInfo[] }} Ready */
 
 /**
  * @typedef {object} Update
@@ -70,6 +75,7 @@
  * @property {boolean} settled nothing is left to compute
  * @property {boolean} can_undo
  * @property {boolean} can_redo
+ * @property {string|null} [notice] a remark on the file as a whole
  */
 
 /**
@@ -107,7 +113,7 @@
  *   | { type: 'set_table', cell: number|null, text: string }
  *   | { type: 'rows', cell: number, from: number, count: number }
  *   | { type: 'save' }
- *   | { type: 'report' }} Request
+ *   | { type: 'report', date: string }} Request
  */
 
 /** @typedef {Request & { seq: number }} NumberedRequest */

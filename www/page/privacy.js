@@ -18,5 +18,5 @@ export function createPrivacy(element) {
     h('p', { class: 'answers' }, h('button', { type: 'button', onclick: () => dialog.close() }, 'Close')),
   );
   const button = h('button', { type: 'button', class: 'quiet', onclick: () => dialog.showModal() }, 'How to check');
-  element.replaceChildren(h('p', {}, h('strong', {}, 'This page cannot send anything'), ': its security policy forbids every connection. ', button), dialog);
+  element.replaceChildren(h('p', {}, h('strong', {}, 'This page cannot send anything'), h('span', { class: 'reason' }, ': its security policy forbids every connection'), '. ', button), dialog);
 }

@@ -2,7 +2,7 @@
 
 import { createCell } from './cell.js';
 import { arrange, drawing, freshId, h } from './dom.js';
-import { KINDS } from './kinds.js';
+import { kindTitle } from './kinds.js';
 import { createStart } from './start.js';
 
 /** @typedef {import('./state.js').State} State */
@@ -47,7 +47,7 @@ export function createProtocol(element, state, actions, startActions) {
       ...now.order.flatMap((id) => [cells.get(id)?.element, gapAfter(id).element]),
     ];
     arrange(element, nodes.filter((node) => node !== undefined));
-    for (const [after, gap] of gaps) gap.draw(now.adding !== null && now.adding.after === after, after === null && empty);
+    for (const [after, gap] of gaps) gap.draw(now.kinds, now.adding !== null && now.adding.after === after, after === null && empty);
     start.draw(now);
     for (const cell of cells.values()) cell.draw(now);
     if (active instanceof HTMLElement && active !== document.activeElement && active.isConnected) active.focus();
@@ -75,13 +75,9 @@ export function createProtocol(element, state, actions, startActions) {
 function createGap(after, actions) {
   const listId = freshId('kinds');
   const button = h('button', { type: 'button', class: 'quiet add', 'aria-controls': listId, onclick: () => actions.openAdding(after) }, drawing('M8 3v10M3 8h10'), 'Add a cell here');
-  const list = h(
-    'ul',
-    { class: 'kinds', id: listId },
-    ...KINDS.map(({ kind, title, purpose }) =>
-      h('li', {}, h('button', { type: 'button', onclick: () => actions.add(kind, after) }, h('b', {}, title), h('span', {}, purpose))),
-    ),
-  );
+  const list = h('ul', { class: 'kinds', id: listId });
+  /** @type {State['kinds']} */
+  let listed = [];
   const element = h('div', { class: 'gap' }, button, list);
   element.addEventListener('keydown', (event) => {
     if (event.key !== 'Escape' || list.hidden) return;
@@ -91,10 +87,17 @@ function createGap(after, actions) {
   return {
     element,
     /**
+     * @param {State['kinds']} kinds
      * @param {boolean} open
      * @param {boolean} bare the notebook has no cells to stand between
      */
-    draw(open, bare) {
+    draw(kinds, open, bare) {
+      if (open && kinds !== listed) {
+        listed = kinds;
+        list.replaceChildren(
+          ...kinds.map(({ name, purpose }) => h('li', {}, h('button', { type: 'button', onclick: () => actions.add(name, after) }, h('b', {}, kindTitle(name)), h('span', {}, purpose)))),
+        );
+      }
       button.setAttribute('aria-expanded', String(open));
       list.hidden = !open;
       element.classList.toggle('bare', bare);

@@ -5,6 +5,7 @@
  */
 
 import { arrange, freshId, h, setText } from './dom.js';
+import { spaced } from './spacing.js';
 
 /** @typedef {import('./messages.js').Part} Part */
 /** @typedef {import('./messages.js').Blank} Blank */
@@ -43,29 +44,27 @@ export function createSentence(onChange) {
   function draw(parts, diagnostics, stale) {
     /** @type {Map<string, Field>} */
     const next = new Map();
-    const oldWords = words;
-    words = [];
-    const nodes = parts.map((part) => {
-      if (part.type === 'words') {
-        const node = oldWords[words.length] ?? document.createTextNode('');
-        setText(node, part.text);
-        words.push(node);
-        return node;
-      }
-      const shape = shapeOf(part);
-      const old = fields.get(part.field);
-      const field = old?.shape === shape ? old : makeField(part, shape, help, onChange);
-      next.set(part.field, field);
-      return field.element;
+    const { words: stretches, blanks } = spaced(parts);
+    words = stretches.map((stretch, i) => {
+      const node = words[i] ?? document.createTextNode('');
+      setText(node, stretch);
+      return node;
+    });
+    const nodes = words.flatMap((node, i) => {
+      const blank = blanks[i];
+      if (!blank) return [node];
+      const old = fields.get(blank.field);
+      const field = old?.shape === blank.control ? old : makeField(blank, help, onChange);
+      next.set(blank.field, field);
+      return [node, field.element];
     });
     const back = focusKeeper(element);
     for (const [name, field] of fields) if (next.get(name) !== field) field.send();
     fields = next;
     arrange(element, nodes);
-    for (const part of parts) {
-      if (part.type !== 'blank') continue;
-      const problem = diagnostics.find((diagnostic) => diagnostic.field === part.field)?.message ?? '';
-      fields.get(part.field)?.draw(part, problem, stale);
+    for (const blank of blanks) {
+      const problem = diagnostics.find((diagnostic) => diagnostic.field === blank.field)?.message ?? '';
+      fields.get(blank.field)?.draw(blank, problem, stale);
     }
     back(fields);
   }
@@ -101,20 +100,14 @@ function focusKeeper(element) {
   };
 }
 
-/** @param {Blank} blank */
-function shapeOf(blank) {
-  return blank.control === 'choice' ? 'choice' : blank.control;
-}
-
 /**
  * @param {Blank} blank
- * @param {string} shape
  * @param {HTMLElement} help
  * @param {(field: string, value: string) => void} onChange
  * @returns {Field}
  */
-function makeField(blank, shape, help, onChange) {
-  const field = shape === 'choice' ? choiceField(blank, onChange) : typedField(blank, onChange);
+function makeField(blank, help, onChange) {
+  const field = blank.control === 'choice' ? choiceField(blank, onChange) : typedField(blank, onChange);
   const { control } = field;
   control.dataset['field'] = blank.field;
   control.addEventListener('focus', () => {
@@ -125,7 +118,7 @@ function makeField(blank, shape, help, onChange) {
   control.addEventListener('blur', () => {
     help.hidden = true;
   });
-  return { ...field, shape };
+  return { ...field, shape: blank.control };
 }
 
 /**
@@ -182,7 +175,8 @@ function choiceOptions(blank) {
   const offered = blank.choices.find((choice) => choice.value === '');
   const atDefault = blank.value === '';
   const rest = offered?.label ?? (atDefault ? blank.shown : 'leave it to the default');
-  const list = choices.map(({ value, label }) => h('option', { value }, label));
+  // What the default says in the same words need not be offered twice.
+  const list = choices.filter(({ value, label }) => label !== rest || value === blank.value).map(({ value, label }) => h('option', { value }, label));
   if (!atDefault && !choices.some((choice) => choice.value === blank.value)) {
     list.unshift(h('option', { value: blank.value }, blank.shown || blank.value));
   }
@@ -210,7 +204,7 @@ function typedField(blank, onChange) {
   let listed = '';
 
   const fit = () => {
-    element.dataset['shown'] = (control.value || control.placeholder) + (long ? '\n' : '');
+    element.dataset['shown'] = control.value || control.placeholder;
   };
   const send = () => {
     clearTimeout(pause);

@@ -33,13 +33,18 @@ export function createSession(store) {
 
   /** The number of the newest request that changes the notebook. */
   let changed = 0;
+  /** The newest requests that no person made. @type {number[]} */
+  let asides = [];
+  /** The notebook that stands if the newest one cannot be opened. @type {{ seq: number, preamble: string, name: string, unsaved: boolean }|null} */
+  let opening = null;
   /** Saves that have been asked for and not come back, in order. @type {{ name: string, changed: number }[]} */
   const saving = [];
 
   function send(/** @type {Request} */ request) {
     const seq = engine?.send(request) ?? 0;
     if (request.type === 'save') saving.push({ name: store.get().fileName, changed });
-    else if (request.type !== 'rows' && request.type !== 'report') changed = seq;
+    else if (request.type === 'rows') asides = [...asides.slice(-50), seq];
+    else if (request.type !== 'report') changed = seq;
     return seq;
   }
 
@@ -53,7 +58,7 @@ export function createSession(store) {
   function onMessage(/** @type {Message} */ message) {
     switch (message.type) {
       case 'ready':
-        if (!recovery) store.update((state) => ({ ...state, engine: 'ready' }));
+        store.update((state) => ({ ...state, kinds: message.kinds, engine: recovery ? state.engine : 'ready' }));
         break;
       case 'update':
         // What a fresh engine says before it has the cells would take them off the page.
@@ -73,10 +78,21 @@ export function createSession(store) {
         saveReport(`${store.get().fileName}-report`, message.html);
         break;
       case 'refused':
-        store.update((state) => ({ ...state, notice: { text: message.message, tone: 'problem' } }));
+        refused(message.seq, message.message);
         break;
       default:
     }
+  }
+
+  function refused(/** @type {number} */ seq, /** @type {string} */ words) {
+    // Rows of a table that has gone meanwhile were asked for by the page, not by the person.
+    if (asides.includes(seq)) return;
+    if (seq === opening?.seq) {
+      preamble = opening.preamble;
+      store.update((state) => ({ ...state, fileName: opening?.name ?? state.fileName, unsaved: opening?.unsaved ?? state.unsaved }));
+    }
+    // What a blank shows is the person's typing; it goes back to what is in force.
+    store.update((state) => ({ ...state, heard: Math.max(state.heard, seq), notice: { text: words, tone: 'problem' } }));
   }
 
   function restart() {
@@ -102,9 +118,11 @@ export function createSession(store) {
   }
 
   function open(/** @type {string} */ text, /** @type {string} */ name) {
+    const { fileName, unsaved } = store.get();
+    const before = preamble;
     preamble = preambleOf(text);
-    send({ type: 'open', text });
-    store.update((state) => ({ ...state, fileName: name, unsaved: false, notice: null, typed: new Map(), texts: new Set(), windows: new Map() }));
+    opening = { seq: send({ type: 'open', text }), preamble: before, name: fileName, unsaved };
+    store.update((state) => ({ ...state, fileName: name, unsaved: false, notice: null, remark: null, typed: new Map(), texts: new Set(), windows: new Map() }));
     scrollTo({ top: 0 });
   }
 

@@ -32,6 +32,8 @@
  * @property {{ seq: number, known: readonly number[] }|null} expecting a request after which a new cell gets the keyboard
  * @property {FocusWish|null} focus
  * @property {Notice|null} notice
+ * @property {string|null} remark what the engine has to say of the file as a whole
+ * @property {readonly import('./messages.js').KindInfo[]} kinds
  * @property {'starting'|'ready'|'stopped'} engine
  */
 
@@ -52,6 +54,8 @@ export const EMPTY = Object.freeze({
   expecting: null,
   focus: null,
   notice: null,
+  remark: null,
+  kinds: [],
   engine: 'starting',
 });
 
@@ -78,6 +82,7 @@ export function afterUpdate(state, update) {
     canUndo: update.can_undo,
     canRedo: update.can_redo,
     texts: kept(state.texts, present),
+    ...withRemark(state, update.notice ?? null),
   };
   return withNewCellInFocus(next, update);
 }
@@ -109,6 +114,17 @@ function merged(state, message, seq) {
  */
 function kept(ids, present) {
   return [...ids].every((id) => present.has(id)) ? ids : new Set([...ids].filter((id) => present.has(id)));
+}
+
+/**
+ * A remark on the file is shown once; it can be dismissed and then does not come back with every update.
+ * @param {State} state
+ * @param {string|null} remark
+ * @returns {Pick<State, 'remark'|'notice'>}
+ */
+function withRemark(state, remark) {
+  const notice = remark !== null && remark !== state.remark ? { text: remark, tone: /** @type {const} */ ('plain') } : state.notice;
+  return { remark, notice };
 }
 
 /**

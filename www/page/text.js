@@ -16,6 +16,7 @@ import { difference } from './difference.js';
 import { h } from './dom.js';
 
 /** @typedef {import('./messages.js').CellView} CellView */
+/** @typedef {import('./completion.js').Known} Known */
 
 /** How long a pause in typing is before the text is sent, in milliseconds. */
 const PAUSE = 120;
@@ -47,9 +48,9 @@ const colours = HighlightStyle.define([
 
 /**
  * An editor for one cell.
- * @param {{ label: string, cell: () => CellView|undefined, onText: (text: string) => void }} parts
+ * @param {{ label: string, text: string, known: () => Known, onText: (text: string) => void }} parts
  */
-export function createTextFace({ label, cell, onText }) {
+export function createTextFace({ label, text, known, onText }) {
   const element = h('div', { class: 'text-face' });
   const root = element.attachShadow({ mode: 'open' });
   /** @type {ReturnType<typeof setTimeout>|undefined} */
@@ -65,7 +66,7 @@ export function createTextFace({ label, cell, onText }) {
     root,
     parent: root,
     state: EditorState.create({
-      doc: cell()?.text ?? '',
+      doc: text,
       extensions: [
         lineNumbers(),
         lintGutter(),
@@ -76,7 +77,7 @@ export function createTextFace({ label, cell, onText }) {
         StreamLanguage.define(toml),
         syntaxHighlighting(colours),
         look,
-        autocompletion({ override: [completions(cell)], icons: false }),
+        autocompletion({ override: [completions(known)], icons: false }),
         keymap.of([...completionKeymap, ...historyKeymap, ...lintKeymap, ...defaultKeymap]),
         EditorView.updateListener.of((update) => {
           if (!update.docChanged || update.transactions.some((transaction) => transaction.annotation(fromEngine))) return;
@@ -117,15 +118,14 @@ export function createTextFace({ label, cell, onText }) {
 }
 
 /**
- * @param {() => CellView|undefined} cell
+ * @param {() => Known} known
  * @returns {import('@codemirror/autocomplete').CompletionSource}
  */
-function completions(cell) {
+function completions(known) {
   return (context) => {
-    const now = cell();
     const line = context.state.doc.lineAt(context.pos);
-    if (!now || (!context.explicit && line.text.trim() === '')) return null;
-    const found = completionsAt(context.state.doc.toString(), context.pos, now);
+    if (!context.explicit && line.text.trim() === '') return null;
+    const found = completionsAt(context.state.doc.toString(), context.pos, known());
     return found ? { ...found, filter: true } : null;
   };
 }

@@ -4,15 +4,16 @@ import { exampleAsked } from '../page/address.js';
 import { completionsAt } from '../page/completion.js';
 import { difference } from '../page/difference.js';
 import { moved } from '../page/grid-keys.js';
+import { spaced } from '../page/spacing.js';
 import { fileKind, looksLikeTable, notebookName, tabSeparated } from '../page/tables.js';
 
 const blank = (field, choices, control = 'choice') => ({ type: 'blank', field, label: field, value: '', shown: '', control, help: '', is_default: true, problem: false, choices: choices.map((value) => ({ value, label: value })) });
-const study = { sentence: [{ type: 'words', text: 'Compare ' }, blank('outcome', ['words recalled', 'age']), blank('control', ['none', '15 min'], 'text'), blank('alpha', ['0.05'], 'number')] };
+const study = { fields: ['outcome', 'unit'], sentence: [{ type: 'words', text: 'Compare ' }, blank('outcome', ['words recalled', 'age']), blank('control', ['none', '15 min'], 'text'), blank('alpha', ['0.05'], 'number')] };
 const at = (marked) => completionsAt(marked.replace('|', ''), marked.indexOf('|'), study);
 const labels = (found) => found?.options.map((option) => option.label);
 
 test('at the start of a line the fields that are not given yet are offered', () => {
-  assert.deepEqual(labels(at('kind = "study"\noutcome = "age"\nco|')), ['control', 'alpha']);
+  assert.deepEqual(labels(at('kind = "study"\noutcome = "age"\nco|')), ['control', 'alpha', 'unit']);
   assert.equal(at('kind = "study"\nco|').from, 15);
 });
 
@@ -21,6 +22,14 @@ test('after the equals sign the choices of that field are offered, in quotes unl
   assert.deepEqual(labels(at('alpha = |')), ['0.05']);
   assert.equal(at('outcome = "wo|').from, 10);
   assert.deepEqual(labels(at('control = ["none",\n  "1|')), ['"none"', '"15 min"']);
+});
+
+test('the parts of a sentence get their spaces', () => {
+  const words = (text) => ({ type: 'words', text });
+  assert.deepEqual(spaced([words('Study'), blank('outcome', []), words('over the levels of'), blank('groups', []), words('. Levels:'), blank('levels', []), blank('scores', []), words('.')]).words, [
+    'Study ', ' over the levels of ', '. Levels: ', ' ', '.',
+  ]);
+  assert.deepEqual(spaced([blank('text', [])]).words, ['', '']);
 });
 
 test('inside a long text, and for a field without choices, nothing is offered', () => {

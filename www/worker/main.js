@@ -12,6 +12,14 @@
 let session = null;
 let pending = false;
 
+/** What the engine last said about a failure of its own. */
+let lastWords = '';
+const say = console.error;
+console.error = (...words) => {
+  lastWords = words.map(String).join(' ');
+  say(...words);
+};
+
 const turn = new MessageChannel();
 turn.port1.onmessage = slice;
 
@@ -43,7 +51,7 @@ function attempt(step) {
     step();
   } catch (error) {
     session = null;
-    post({ type: 'failed', message: error instanceof Error ? error.message : String(error) });
+    post({ type: 'failed', message: lastWords || (error instanceof Error ? error.message : String(error)) });
     self.close();
   }
 }

@@ -24,10 +24,10 @@ self.onmessage = ({ data: m }) => {
   const at = cells.findIndex((c) => c.id === m.cell);
   const cell = cells[at];
   switch (m.type) {
-    case 'start': return post({ type: 'ready', version: 'fake' });
+    case 'start': return post({ type: 'ready', version: 'fake', kinds: ['data', 'study', 'note'].map((name) => ({ name, purpose: `A ${name} cell`, fields: ['kind', 'name', 'unit'] })) });
     case 'open':
       cells = [];
-      for (const [, kind] of m.text.matchAll(/kind = "(\w+)"/g)) add(kind, cells.length);
+      for (const text of m.text.split(/^\[\[cell\]\]\n/m).slice(1)) add(/kind = "(\w+)"/.exec(text)?.[1] ?? 'note', cells.length, { text });
       return update(m.seq);
     case 'add': add(m.kind, cells.findIndex((c) => c.id === m.after) + 1); return update(m.seq);
     case 'duplicate': add(cell.kind, at + 1); return update(m.seq);
