@@ -49,7 +49,7 @@ pub fn build(project: &Project, metadata: &Value, finish: Finish) -> Result<Engi
 fn compile(project: &Project, metadata: &Value) -> Result<PathBuf> {
     let toolchain = Wasm::find(project)?;
     let mut command = toolchain.cargo_build(project, &remapped_paths(project, metadata)?)?;
-    run(command.args(["--quiet", "--release", "--package", "levelwise", "--lib"]))?;
+    run(command.args(["--release", "--package", "levelwise", "--lib"]))?;
     Ok(project.target.join("web/wasm32-unknown-unknown/release/levelwise.wasm"))
 }
 

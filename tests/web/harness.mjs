@@ -169,14 +169,14 @@ async function watch(page, found, downloads) {
   page.on('pageerror', (error) => found.push(`exception: ${error instanceof Error ? error.message : error}`));
   page.on('error', (error) => found.push(`crash: ${error.message}`));
   page.on('workercreated', (worker) => {
-    // The worker's own event; what it does before this arrives is seen by the audit below.
-    worker
-      .evaluate(() => {
-        self.addEventListener('securitypolicyviolation', (event) => {
-          console.error(`policy in worker: ${event.effectiveDirective} ${event.blockedURI}`);
-        });
-      })
-      .catch(() => undefined);
+    // What the worker did before this moment is kept for whoever switches these on.
+    const session = worker.client;
+    session.on('Log.entryAdded', ({ entry }) => {
+      if (entry.level === 'error') found.push(`console of the worker: ${entry.text}`);
+    });
+    noteIssues(session, found, ' in the worker');
+    void session.send('Log.enable').catch(() => undefined);
+    void session.send('Audits.enable').catch(() => undefined);
   });
   await page.evaluateOnNewDocument(() => {
     /** @type {string[]} */
@@ -187,12 +187,21 @@ async function watch(page, found, downloads) {
     });
   });
   const session = await page.createCDPSession();
-  session.on('Audits.issueAdded', ({ issue }) => {
-    const details = issue.details.contentSecurityPolicyIssueDetails;
-    if (details) found.push(`policy: ${details.violatedDirective} ${details.blockedURL ?? ''}`);
-  });
+  noteIssues(session, found, '');
   await session.send('Audits.enable');
   await session.send('Browser.setDownloadBehavior', { behavior: 'allow', downloadPath: downloads });
+}
+
+/**
+ * @param {import('../../www/node_modules/puppeteer-core').CDPSession} session
+ * @param {string[]} found
+ * @param {string} where
+ */
+function noteIssues(session, found, where) {
+  session.on('Audits.issueAdded', ({ issue }) => {
+    const details = issue.details.contentSecurityPolicyIssueDetails;
+    if (details) found.push(`policy${where}: ${details.violatedDirective} ${details.blockedURL ?? ''}`);
+  });
 }
 
 /**
