@@ -15,5 +15,6 @@ pub fn sum(values: impl IntoIterator<Item = f64>) -> f64 {
         lost += if total.abs() >= value.abs() { (total - next) + value } else { (value - next) + total };
         total = next;
     }
-    total + lost
+    // Beyond the range of numbers the compensation is no number any more.
+    if total.is_finite() { total + lost } else { total }
 }

@@ -48,6 +48,8 @@ pub enum NoEstimates {
     NoVariation { level: String },
     #[error("there is no variation inside any group, so there is no error term to test against")]
     NoErrorTerm,
+    #[error("the squares of the values are beyond the range of numbers; give the outcome in another unit")]
+    OutOfRange,
 }
 
 impl Estimates {
@@ -57,8 +59,8 @@ impl Estimates {
     /// variances each mean has its own variance s²/n on n - 1 df.
     ///
     /// # Errors
-    /// [`NoEstimates`] where a group is empty, the error term is zero, or, with unequal variances, a group has
-    /// fewer than two observations or no variation.
+    /// [`NoEstimates`] where a group is empty, the error term is zero or beyond the range of numbers, or, with
+    /// unequal variances, a group has fewer than two observations or no variation.
     pub fn one_way(labels: &[String], summary: &Summary, variances: Variances) -> Result<Self, NoEstimates> {
         let groups = &summary.groups;
         if groups.len() < 2 {
@@ -67,7 +69,7 @@ impl Estimates {
         if let Some(empty) = groups.iter().position(|group| group.n == 0) {
             return Err(NoEstimates::EmptyLevel { level: labels[empty].clone() });
         }
-        let (diagonal, df) = match variances {
+        let (diagonal, df): (Vec<f64>, _) = match variances {
             Variances::Equal => {
                 let pooled = summary.pooled().filter(|pooled| pooled.variance > 0.0);
                 let pooled = pooled.ok_or(NoEstimates::NoErrorTerm)?;
@@ -76,6 +78,9 @@ impl Estimates {
             }
             Variances::Unequal => (separate(labels, summary)?, per_mean(summary)),
         };
+        if !diagonal.iter().chain(groups.iter().map(|group| &group.mean)).all(|number| number.is_finite()) {
+            return Err(NoEstimates::OutOfRange);
+        }
         Ok(Self {
             labels: labels.to_vec(),
             origin: summary.origin,

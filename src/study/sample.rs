@@ -34,10 +34,17 @@ fn describe(offsets: &[f64]) -> GroupSummary {
     if n == 0 {
         return GroupSummary { n, mean: 0.0, variance: None };
     }
+    // The mean of equal values is that value, not its neighbour: else rounding would pass for variation.
+    if offsets.iter().all(|x| *x == offsets[0]) {
+        return GroupSummary { n, mean: offsets[0], variance: (n > 1).then_some(0.0) };
+    }
     let mean = sums::sum(offsets.iter().copied()) / n as f64;
     // The correction term removes what the rounding of the mean leaves behind (Chan, Golub, LeVeque 1983, eq. 1.7).
     let squares = sums::sum(offsets.iter().map(|x| (x - mean) * (x - mean)));
     let left = sums::sum(offsets.iter().map(|x| x - mean));
-    let variance = (n > 1).then(|| ((squares - left * left / n as f64) / (n - 1) as f64).max(0.0));
+    // Beyond the range of numbers it is infinite, never 0 by the way of NaN.
+    let corrected =
+        if squares.is_finite() { (squares - left * left / n as f64).max(0.0) } else { f64::INFINITY };
+    let variance = (n > 1).then(|| corrected / (n - 1) as f64);
     GroupSummary { n, mean, variance }
 }

@@ -2,4 +2,7 @@
 //! `# ! part of a message`: the diagnostics must stand on exactly those lines and say so.
 
 mod expect;
+mod given;
 mod note;
+mod overall;
+mod profile;

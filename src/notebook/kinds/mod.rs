@@ -12,6 +12,7 @@ mod profile;
 mod study;
 mod summary;
 mod trend;
+mod wording;
 
 use super::ask::Ask;
 use super::fields::KindTable;

@@ -1,0 +1,81 @@
+//! The Kruskal-Wallis test on joint ranks.
+
+use super::{NoOverallTest, check_levels};
+use crate::methods::effect_size::rank_epsilon_squared;
+use crate::numerics::distributions::chi_squared;
+use crate::numerics::sums::sum;
+use crate::study::Sample;
+use serde::Serialize;
+
+/// The Kruskal-Wallis test, corrected for ties, with its large-sample p-value.
+///
+/// Hypothesis: the groups come from one distribution. It is a test of equal medians only if the distributions
+/// have the same shape.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct KruskalWallis {
+    /// The statistic, divided by `tie_correction`.
+    #[serde(rename = "H")]
+    pub h: f64,
+    /// Levels less 1.
+    pub df: f64,
+    /// From chi-squared on `df`: asymptotic, rough where groups are smaller than about five.
+    pub p: f64,
+    /// 1 - Σ(t³ - t)/(N³ - N) over the sets of t tied values; 1 without ties.
+    pub tie_correction: f64,
+    /// H / (N - 1).
+    pub epsilon_squared: f64,
+    /// Mean rank of each level, in the order of the levels.
+    pub mean_ranks: Vec<f64>,
+}
+
+impl KruskalWallis {
+    /// The test of the values in `sample`, the levels being named by `labels`.
+    ///
+    /// # Errors
+    /// [`NoOverallTest::NoEstimates`] for fewer than two levels or an empty level, [`NoOverallTest::AllTied`] if
+    /// all values are equal.
+    ///
+    /// # Source
+    /// Kruskal and Wallis (1952), J. Amer. Statist. Assoc. 47, 583–621, doi 10.1080/01621459.1952.10483441.
+    pub fn of(labels: &[String], sample: &Sample) -> Result<Self, NoOverallTest> {
+        check_levels(labels, sample.groups.iter().map(Vec::len))?;
+        let (ranks, tied) = midranks(&sample.groups);
+        let n = ranks.iter().map(Vec::len).sum::<usize>() as f64;
+        let tie_correction = 1.0 - tied / (n * n * n - n);
+        if tied == n * n * n - n {
+            return Err(NoOverallTest::AllTied);
+        }
+        let mean_ranks: Vec<f64> =
+            ranks.iter().map(|ranks| ranks.iter().sum::<f64>() / ranks.len() as f64).collect();
+        let spread = sum(mean_ranks.iter().zip(&ranks).map(|(mean, ranks)| {
+            let deviation = mean - (n + 1.0) / 2.0;
+            ranks.len() as f64 * deviation * deviation
+        }));
+        let h = 12.0 / (n * (n + 1.0)) * spread / tie_correction;
+        let df = labels.len() as f64 - 1.0;
+        let epsilon_squared = rank_epsilon_squared(h, n as usize);
+        Ok(Self { h, df, p: chi_squared::sf(h, df)?, tie_correction, epsilon_squared, mean_ranks })
+    }
+}
+
+/// Ranks of all values together, in the shape of `groups`, tied values sharing their mean rank; and Σ(t³ - t)
+/// over the sets of t tied values.
+pub fn midranks(groups: &[Vec<f64>]) -> (Vec<Vec<f64>>, f64) {
+    let mut order: Vec<(f64, usize, usize)> = Vec::new();
+    for (level, values) in groups.iter().enumerate() {
+        order.extend(values.iter().enumerate().map(|(place, value)| (*value, level, place)));
+    }
+    order.sort_by(|one, other| one.0.total_cmp(&other.0));
+    let mut ranks: Vec<Vec<f64>> = groups.iter().map(|values| vec![0.0; values.len()]).collect();
+    let (mut tied, mut before) = (0.0, 0);
+    // The == of numbers decides a tie, so that 0 and -0 share their rank.
+    for run in order.chunk_by(|one, other| one.0 == other.0) {
+        let size = run.len() as f64;
+        tied += size * size * size - size;
+        for &(_, level, place) in run {
+            ranks[level][place] = before as f64 + (size + 1.0) / 2.0;
+        }
+        before += run.len();
+    }
+    (ranks, tied)
+}

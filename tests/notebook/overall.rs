@@ -1,0 +1,115 @@
+//! The overall test as a cell: what it says, what it hands over, what it refuses.
+
+use super::given::{blood_counts, evaluated, shown, study, summarised};
+use levelwise::study::{Observed, Variances};
+
+const MEANS: &str = "kind = \"overall\"\nstudy = \"trial\"\n";
+const RANKS: &str = "kind = \"overall\"\nstudy = \"trial\"\ntest = \"ranks\"\n";
+
+#[test]
+fn the_studys_variances_decide_and_both_tests_stand_side_by_side() {
+    let welch = evaluated(MEANS, blood_counts(Variances::Unequal));
+    assert_eq!(
+        welch.answer.headline,
+        "The means of count differ over the 3 levels of drug (Welch's F test, F(2, 7.21) = 5.00, p = 0.043)"
+    );
+    let pooled = evaluated(MEANS, blood_counts(Variances::Equal));
+    assert_eq!(
+        pooled.answer.headline,
+        "The means of count differ over the 3 levels of drug (one-way F test, F(2, 12) = 7.14, p = 0.009)"
+    );
+    for outcome in [&welch, &pooled] {
+        let text = shown(outcome);
+        assert!(text.contains("Welch's F test, variances may differ (Welch 1951)"), "{text}");
+        assert!(text.contains("One-way F test, one pooled variance"), "{text}");
+        assert!(text.contains("decides, as the study says") && text.contains("for comparison"), "{text}");
+    }
+    assert!((welch.results["F"].as_f64().expect("F") - 5.002074).abs() < 1e-6);
+    assert!((welch.results["equal_variances"]["F"].as_f64().expect("F") - 7.136936).abs() < 1e-6);
+    assert!((pooled.results["eta_squared"]["estimate"].as_f64().expect("eta") - 0.543272).abs() < 1e-6);
+    assert!((pooled.results["ms_within"].as_f64().expect("MS") - 1.380523).abs() < 1e-6);
+}
+
+#[test]
+fn the_write_up_names_statistic_df_p_size_and_n() {
+    let writeup = evaluated(MEANS, blood_counts(Variances::Equal)).answer.writeup.expect("a write-up");
+    assert!(
+        writeup.starts_with(
+            "Mean count was compared over control (n = 6), A (n = 4) and B (n = 5) with the one-way F test (one pooled \
+             variance) at 5\u{a0}%. The means differed, F(2, 12) = 7.14, p = 0.009, omega squared = 0.450"
+        ),
+        "{writeup}"
+    );
+}
+
+#[test]
+fn what_was_not_shown_is_never_called_equal() {
+    let alike = study(&[("a", &[1.0, 2.0, 3.5]), ("b", &[1.5, 2.0, 3.0])], Variances::Unequal);
+    for text in [MEANS, RANKS] {
+        let outcome = evaluated(text, alike.clone());
+        assert!(outcome.answer.headline.contains("was not shown"), "{}", outcome.answer.headline);
+        let caution = &outcome.answer.cautions[0];
+        assert!(caution.starts_with("Not shown to differ does not mean equal."), "{caution}");
+        assert!(outcome.answer.writeup.expect("a write-up").contains("were not shown to differ"));
+    }
+}
+
+#[test]
+fn a_single_value_in_a_level_is_refused_with_a_way_out() {
+    let single = study(&[("a", &[1.0, 2.0, 3.5]), ("b", &[1.5])], Variances::Unequal);
+    let outcome = evaluated(MEANS, single.clone());
+    let problem = &outcome.diagnostics[0];
+    assert_eq!(
+        problem.message,
+        "Welch's F test of \"count\" cannot be given: level \"b\" has 1 observation; unequal variances need at least 2. \
+         Add data, leave the level out of the study's levels, or set variances = \"equal\" in the study if one standard \
+         deviation for all levels is credible."
+    );
+    let pooled = evaluated(MEANS, levelwise::study::Study { variances: Variances::Equal, ..single });
+    assert!(pooled.diagnostics.is_empty());
+    assert!(shown(&pooled).contains("cannot be given"), "{}", shown(&pooled));
+}
+
+#[test]
+fn ranks_need_single_values_and_say_so_at_their_field() {
+    let outcome = evaluated(RANKS, blood_counts(Variances::Unequal));
+    assert_eq!(
+        outcome.answer.headline,
+        "The ranks of count differ over the 3 levels of drug (Kruskal-Wallis test, H(2) = 6.75, p = 0.034)"
+    );
+    assert!((outcome.results["epsilon_squared"]["estimate"].as_f64().expect("size") - 0.482143).abs() < 1e-6);
+    let refused = evaluated(RANKS, summarised(blood_counts(Variances::Unequal)));
+    assert_eq!(refused.diagnostics[0].field.as_deref(), Some("test"));
+    assert!(refused.diagnostics[0].message.starts_with("Ranks need the single values"));
+}
+
+#[test]
+fn summaries_give_the_same_answer_as_the_values() {
+    for variances in [Variances::Equal, Variances::Unequal] {
+        let raw = evaluated(MEANS, blood_counts(variances));
+        let typed = evaluated(MEANS, summarised(blood_counts(variances)));
+        assert_eq!(shown(&raw), shown(&typed));
+        assert_eq!(raw.results, typed.results);
+    }
+}
+
+#[test]
+fn a_plan_waits_and_names_its_method() {
+    let plan = levelwise::study::Study { observed: Observed::Plan, ..blood_counts(Variances::Unequal) };
+    let outcome = evaluated(MEANS, plan);
+    assert!(outcome.waiting);
+    assert_eq!(
+        outcome.answer.headline,
+        "Planned: Welch's F test, which does not assume equal variances, over 3 levels at 5\u{a0}%"
+    );
+}
+
+#[test]
+fn pooling_over_unequal_spread_is_cautioned() {
+    let spread = study(
+        &[("a", &[1.0, 9.0, -7.0, 2.0, 4.0, -3.0]), ("b", &[1.5, 2.0, 3.0, 2.2, 2.4, 1.9, 2.1, 2.6])],
+        Variances::Equal,
+    );
+    let cautions = evaluated(MEANS, spread).answer.cautions;
+    assert!(cautions.iter().any(|caution| caution.contains("reject too often")), "{cautions:?}");
+}
