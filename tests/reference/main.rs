@@ -11,3 +11,4 @@ mod one_way;
 mod profile;
 mod properties;
 mod shapiro_wilk;
+mod studentized_range;

@@ -9,7 +9,9 @@ pub mod beta;
 pub mod chi_squared;
 pub mod fisher_f;
 pub mod normal;
+mod scale_mixture;
 pub mod student_t;
+pub mod studentized_range;
 
 use crate::numerics::OutOfDomain;
 

@@ -9,6 +9,7 @@
 use super::{finite, probability};
 use crate::numerics::OutOfDomain;
 use std::f64::consts::{FRAC_1_SQRT_2, PI};
+use std::sync::OnceLock;
 
 /// Lower-tail probability P(X <= `x`) of a standard normal variable.
 ///
@@ -57,6 +58,34 @@ pub(crate) fn density(x: f64) -> f64 {
     libm::exp(-0.5 * x * x) / (2.0 * PI).sqrt()
 }
 
+/// P(X <= x) for any x that is not NaN, faster than [`lower`]: for the inside of integrals.
+///
+/// Taylor's series of degree 10 about the nearest multiple of 1/32, for -10 <= x <= 9; relative error below 6e-15.
+/// The derivatives are those of φ: φ⁽ⁿ⁺¹⁾(g) = -g φ⁽ⁿ⁾(g) - n φ⁽ⁿ⁻¹⁾(g) (Abramowitz and Stegun 26.2.31).
+pub(crate) fn lower_in_integrals(x: f64) -> f64 {
+    static TABLE: OnceLock<Vec<[f64; 11]>> = OnceLock::new();
+    if !(-10.0..9.0).contains(&x) {
+        return lower(x);
+    }
+    let table = TABLE.get_or_init(|| (-320..=288).map(|i| taylor(f64::from(i) / 32.0)).collect());
+    let index = (32.0 * x + 320.5) as usize;
+    let offset = x - (index as f64 - 320.0) / 32.0;
+    table[index].iter().rev().fold(0.0, |sum, coefficient| sum * offset + coefficient)
+}
+
+/// Taylor coefficients of Φ at g.
+fn taylor(g: f64) -> [f64; 11] {
+    let mut coefficients =
+        [lower(g), density(g), -0.5 * g * density(g), 0.0, 0.0, 0.0, 0.0, 0.0, 0.0, 0.0, 0.0];
+    // With cₙ = Φ⁽ⁿ⁾(g)/n! the recurrence above becomes cₙ₊₁ = -(g cₙ + (n-1)/n cₙ₋₁)/(n+1).
+    for n in 2..10 {
+        let order = n as f64;
+        coefficients[n + 1] =
+            -(g * coefficients[n] + (order - 1.0) / order * coefficients[n - 1]) / (order + 1.0);
+    }
+    coefficients
+}
+
 /// P(X <= x) for any x, infinities included.
 pub(crate) fn lower(x: f64) -> f64 {
     0.5 * libm::erfc(-x * FRAC_1_SQRT_2)
@@ -82,4 +111,19 @@ pub(crate) fn upper_quantile_unchecked(p: f64) -> f64 {
         x += newton / (1.0 + 0.5 * newton * (hazard - x));
     }
     x
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_tabulated_distribution_function_agrees_with_the_exact_one() {
+        let mut x = -12.0;
+        while x < 12.0 {
+            let (fast, exact) = (lower_in_integrals(x), lower(x));
+            assert!((fast / exact - 1.0).abs() < 6e-15, "{x}: {fast:e} {exact:e}");
+            x += 0.001_234_567;
+        }
+    }
 }

@@ -1,0 +1,247 @@
+//! The studentized range: Q = (largest - smallest of `groups` independent standard normal variables) / S, where
+//! df·S² is chi-squared with df degrees of freedom.
+//!
+//! P(Q > q) = ∫ h(s) R(q s) ds with the tail of the range for known σ, k groups and n = k - 1,
+//! R(w) = k ∫ φ(z) {Φ(z)ⁿ - [Φ(z) - Φ(z-w)]ⁿ} dz; z is the largest of the variables and Φ(z-w) the chance that
+//! another one lies more than w below it. The difference of powers is formed without cancellation, so the upper tail
+//! keeps its relative accuracy. Both integrals are trapezoidal sums of analytic, bell-shaped integrands.
+//!
+//! Domain: 2 to 1000 groups, any positive df or infinity, q >= 0.
+//!
+//! # References
+//! 1. Copenhaver and Holland (1988), J. Statist. Comput. Simul. 30, 1-15 (the distribution; its tables are reproduced).
+//! 2. Trefethen and Weideman (2014), SIAM Review 56, 385-458 (the quadrature).
+
+use super::{degrees_of_freedom, normal, not_negative, probability, scale_mixture, student_t};
+use crate::numerics::{OutOfDomain, quadrature, roots};
+use std::f64::consts::{FRAC_1_SQRT_2, SQRT_2};
+
+/// Relative error at which the outer integral stops.
+const TOLERANCE: f64 = 1e-13;
+
+/// Lower-tail probability P(Q <= `q`) for `groups` means with `df` degrees of freedom.
+///
+/// # Errors
+/// [`OutOfDomain`] if `q` is negative or not finite, `groups` is not from 2 to 1000, or `df` is not positive.
+///
+/// # Accuracy
+/// As listed in `tests/reference/accuracy.rs`.
+pub fn cdf(q: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
+    let upper = sf(q, groups, df)?;
+    Ok(if upper <= 0.9 { 1.0 - upper } else { Range::new(groups).lower(q, degrees_of_freedom("df", df)?) })
+}
+
+/// Upper-tail probability of the studentized range: P(Q > `q`) for `groups` means with `df` degrees of freedom
+/// for the standard error.
+///
+/// `q` is the range of the means divided by the standard error of one mean (dimensionless). It is computed
+/// directly, not as `1 - cdf`, so the smallest probabilities keep their relative accuracy. `df` may be infinite:
+/// the range of independent standard normal variables.
+///
+/// # Errors
+/// [`OutOfDomain`] if `q` is negative or not finite, `groups` is not from 2 to 1000, or `df` is not positive.
+///
+/// # Accuracy
+/// As listed in `tests/reference/accuracy.rs`.
+///
+/// # Example
+/// ```
+/// # use levelwise::numerics::distributions::studentized_range;
+/// let p = studentized_range::sf(3.876_776_75, 3, 10.0)?; // the upper 5 % point
+/// assert!((p - 0.05).abs() < 1e-8);
+/// # Ok::<(), levelwise::numerics::OutOfDomain>(())
+/// ```
+pub fn sf(q: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
+    let q = not_negative("q", q)?;
+    let groups = number_of_groups(groups)?;
+    Ok(Range::new(groups).upper(q, degrees_of_freedom("df", df)?))
+}
+
+/// The q with P(Q <= q) = `p`; 0 at 0, infinite at 1.
+///
+/// # Errors
+/// [`OutOfDomain`] if `p` is not from 0 to 1, `groups` is not from 2 to 1000, or `df` is not positive.
+pub fn quantile(p: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
+    let p = probability("p", p)?;
+    solve(p, 1.0 - p, groups, df)
+}
+
+/// The q with P(Q > q) = `upper_p`; infinite at 0, 0 at 1.
+///
+/// # Errors
+/// [`OutOfDomain`] if `upper_p` is not from 0 to 1, `groups` is not from 2 to 1000, or `df` is not positive.
+pub fn upper_quantile(upper_p: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
+    let p = probability("upper_p", upper_p)?;
+    solve(1.0 - p, p, groups, df)
+}
+
+/// The q with the given tails, found on the smaller of the two.
+fn solve(lower: f64, upper: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
+    let groups = number_of_groups(groups)?;
+    let df = degrees_of_freedom("df", df)?;
+    if lower == 0.0 || upper == 0.0 {
+        return Ok(if lower == 0.0 { 0.0 } else { f64::INFINITY });
+    }
+    let mut range = Range::new(groups);
+    // Bonferroni's bound for k(k-1)/2 pairs, sharp in the tail.
+    let share = upper / (groups * (groups - 1)) as f64;
+    let start = libm::log(SQRT_2 * student_t::upper_quantile(share, df)?);
+    let log_q = roots::increasing_secant(
+        |log_q| {
+            let q = libm::exp(log_q);
+            if upper <= 0.5 {
+                libm::log(upper / range.upper(q, df))
+            } else {
+                libm::log(range.lower(q, df) / lower)
+            }
+        },
+        start,
+        1.0,
+    );
+    Ok(libm::exp(log_q))
+}
+
+fn number_of_groups(groups: usize) -> Result<usize, OutOfDomain> {
+    if (2..=1000).contains(&groups) {
+        Ok(groups)
+    } else {
+        Err(OutOfDomain { argument: "groups", value: groups as f64, allowed: "from 2 to 1000" })
+    }
+}
+
+/// The range of k standard normal variables, with what its integrals share kept from one to the next.
+struct Range {
+    /// k - 1
+    others: usize,
+    /// Step of the trapezoidal rule in z.
+    step: f64,
+    /// Where the largest variable's density φ(z) Φ(z)ⁿ has its peak.
+    peak: f64,
+    /// What does not depend on w at z = step · i, from `first` on; filled as far as it has been needed.
+    grid: Vec<Node>,
+    first: i32,
+}
+
+/// At one z: k φ(z) Φ(z)ⁿ, Φ(z) and 1/Φ(z).
+#[derive(Clone, Copy)]
+struct Node {
+    density: f64,
+    inverse: f64,
+}
+
+impl Range {
+    fn new(groups: usize) -> Range {
+        let others = groups - 1;
+        let k = groups as f64;
+        // The more groups, the steeper the left flank of φΦⁿ: largest steps with errors of 1e-13 for 2 to 200 groups,
+        // found against a step of 0.05.
+        let step = 1.0 / (1.78 + 1.08 * libm::log(0.5 * k));
+        let peak = normal::upper_quantile_unchecked(1.0 / k).max(0.0);
+        Range { others, step, peak, grid: Vec::new(), first: libm::floor(-9.0 / step) as i32 }
+    }
+
+    /// P(Q > q).
+    fn upper(&mut self, q: f64, df: f64) -> f64 {
+        let pairs = libm::log((self.others * (self.others + 1)) as f64);
+        let log_shape = |s: f64| (pairs + log_lower_normal(-q * s * FRAC_1_SQRT_2)).min(0.0);
+        scale_mixture::mix(df, TOLERANCE, log_shape, |s| self.range_tail(q * s)).value.min(1.0)
+    }
+
+    /// P(Q <= q).
+    fn lower(&mut self, q: f64, df: f64) -> f64 {
+        let n = self.others as f64;
+        // k (2Φ(w/2) - 1)ⁿ bounds the probability; it is concave in w.
+        let log_shape =
+            |s: f64| (libm::log(n + 1.0) + n * libm::log(libm::erf(0.5 * FRAC_1_SQRT_2 * q * s))).min(0.0);
+        scale_mixture::mix(df, TOLERANCE, log_shape, |s| self.range_cdf(q * s)).value.min(1.0)
+    }
+
+    /// R(w), the probability of a range above w when σ is known.
+    fn range_tail(&mut self, w: f64) -> f64 {
+        let n = self.others;
+        let step = self.step;
+        quadrature::trapezoid_outward(self.peak.max(0.5 * w), step, |i| {
+            let Node { density, inverse } = self.node(i);
+            let share = normal::lower_in_integrals(step * i as f64 - w) * inverse;
+            density * one_minus_power(share, n)
+        })
+    }
+
+    /// 1 - R(w) as an integral of its own: k ∫ φ(z) [Φ(z) - Φ(z-w)]ⁿ dz.
+    ///
+    /// The step is halved: the rule's error is relative to 1, and here the small values count.
+    fn range_cdf(&self, w: f64) -> f64 {
+        let k = (self.others + 1) as f64;
+        let step = 0.5 * self.step;
+        quadrature::trapezoid_outward(self.peak.min(0.5 * w), step, |i| {
+            let z = step * i as f64;
+            k * normal::density(z) * power(normal_interval(z, w), self.others)
+        })
+    }
+
+    /// The node at z = step · i.
+    fn node(&mut self, i: i32) -> Node {
+        while self.grid.len() as i32 <= i - self.first {
+            let z = self.step * (self.first + self.grid.len() as i32) as f64;
+            let lower = normal::lower(z);
+            let k = (self.others + 1) as f64;
+            let density = k * normal::density(z) * power(lower, self.others);
+            self.grid.push(Node { density, inverse: 1.0 / lower });
+        }
+        self.grid
+            .get((i - self.first).max(0) as usize)
+            .copied()
+            .unwrap_or(Node { density: 0.0, inverse: 1.0 })
+    }
+}
+
+/// Φ(z) - Φ(z-w), with the digits that a short interval or one far out would lose by subtraction.
+fn normal_interval(z: f64, w: f64) -> f64 {
+    let middle = z - 0.5 * w;
+    if w < 0.02 {
+        // Taylor about the middle: φ(m) w (1 + w² He₂(m)/24 + w⁴ He₄(m)/1920).
+        let (m, w2) = (middle * middle, w * w);
+        let series = 1.0 + w2 * ((m - 1.0) / 24.0 + w2 * ((m - 6.0) * m + 3.0) / 1920.0);
+        return normal::density(middle) * w * series;
+    }
+    if middle > 0.0 {
+        normal::lower_in_integrals(w - z) - normal::lower_in_integrals(-z)
+    } else {
+        normal::lower_in_integrals(z) - normal::lower_in_integrals(z - w)
+    }
+}
+
+/// xⁿ by repeated squaring.
+fn power(x: f64, n: usize) -> f64 {
+    let (mut result, mut square, mut left) = (1.0, x, n);
+    while left > 0 {
+        if left & 1 == 1 {
+            result *= square;
+        }
+        square *= square;
+        left >>= 1;
+    }
+    result
+}
+
+/// 1 - (1-x)ⁿ without cancellation, for 0 <= x <= 1.
+fn one_minus_power(x: f64, n: usize) -> f64 {
+    let count = n as f64;
+    if count * x > 0.1 {
+        return 1.0 - power(1.0 - x, n);
+    }
+    // Binomial series n x (1 - (n-1)/2 x (1 - (n-2)/3 x (...))): the ratios are below 0.1/j.
+    let mut sum = 1.0;
+    for j in (2..=10).rev() {
+        sum = 1.0 - (count - (j - 1) as f64) / j as f64 * x * sum;
+    }
+    count * x * sum
+}
+
+/// log Φ(x), also where Φ underflows.
+fn log_lower_normal(x: f64) -> f64 {
+    if x > -35.0 {
+        return libm::log(normal::lower(x));
+    }
+    -0.5 * x * x - libm::log(-x) - 0.918_938_533_204_672_8
+}
