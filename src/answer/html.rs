@@ -73,7 +73,7 @@ fn table_markup(table: &Table) -> Markup {
             // A wide table scrolls inside its own region, which the keyboard can reach, and not the whole page.
             div.a-scroll role="region" tabindex="0" aria-label=(format!("Table: {}", printable(&table.caption))) {
                 table {
-                    caption { (Shown(&table.caption)) }
+                    caption { span.a-caption { (Shown(&table.caption)) } }
                     @if has_headings {
                         thead { tr { @for column in &table.columns { (heading(column)) } } }
                     }
@@ -105,11 +105,17 @@ fn row_markup(row: &Row, columns: &[Column]) -> Markup {
         tr class=[class] {
             @for (place, column) in columns.iter().enumerate() {
                 @let cell = row.cells.get(place).unwrap_or(&empty);
-                @if place == 0 && !cell.absent { th scope="row" class=[class_of(column.align)] { (content(cell)) } }
+                @if place == 0 && !cell.absent { (row_heading(cell, column)) }
                 @else { td class=[class_of(column.align)] { (content(cell)) } }
             }
         }
     }
+}
+
+fn row_heading(cell: &Cell, column: &Column) -> Markup {
+    // A short name stays on one line; the numbers beside it may scroll.
+    let short = (cell.text.chars().count() <= 24).then_some("a-short");
+    html! { th scope="row" class=[class_of(column.align).or(short)] { (content(cell)) } }
 }
 
 fn content(cell: &Cell) -> Markup {

@@ -133,7 +133,11 @@ fn few_values_are_points_and_many_are_counts() {
     let many = groups(&spec(100_000));
     assert_eq!(count(&many, "a-value"), 2);
     assert!(many.svg().len() < 20_000, "{}", many.svg().len());
-    assert!(texts(&many).iter().any(|t| t.starts_with("Shaded: where the values lie")), "{:?}", texts(&many));
+    assert!(
+        texts(&many).iter().any(|t| t.starts_with("Shaded: where the 150\u{202f}000 values lie")),
+        "{:?}",
+        texts(&many)
+    );
     let means_only = Groups { groups: vec![Group { values: Vec::new(), ..group(2) }], ..spec(2) };
     assert!(!texts(&groups(&means_only)).iter().any(|t| t.contains("value.")));
 }

@@ -30,9 +30,9 @@ fn an_answer_becomes_accessible_html() {
     for expected in [
         "<p class=\"a-headline\">One of 2 comparisons is significant</p>",
         "<div class=\"a-scroll\" role=\"region\" tabindex=\"0\" aria-label=\"Table: Welch t tests, adjusted by Holm\">",
-        "<caption>Welch t tests, adjusted by Holm</caption>",
+        "<caption><span class=\"a-caption\">Welch t tests, adjusted by Holm</span></caption>",
         "<th scope=\"col\">Comparison</th><th scope=\"col\" class=\"a-n\">Difference</th>",
-        "<tr class=\"a-strong\"><th scope=\"row\">b \u{2212} a</th><td class=\"a-n\">1.25</td>",
+        "<tr class=\"a-strong\"><th scope=\"row\" class=\"a-short\">b \u{2212} a</th><td class=\"a-n\">1.25</td>",
         "<span class=\"a-absent\" aria-hidden=\"true\">–</span><span class=\"a-unseen\">not available</span>",
         "<p class=\"a-below\">Holm's procedure has no simultaneous intervals.</p>",
         "<p class=\"a-text\">First.</p><p class=\"a-text\">Second.</p>",
@@ -168,6 +168,45 @@ fn a_report_is_one_document_under_a_policy_that_allows_only_its_own_style() {
     assert!(!STYLE.contains("</") && !STYLE.contains("url(") && !STYLE.contains("@import"));
     let undated = document(&Report { title: " ", date: None, sections: Vec::new() });
     assert!(undated.contains("<title>Report</title>") && !undated.contains("class=\"a-date\""));
+}
+
+/// Relative luminance contrast as WCAG 2.2 defines it (section "contrast ratio" of its glossary).
+fn contrast(a: &str, b: &str) -> f64 {
+    let luminance = |colour: &str| {
+        let digits = colour.trim_start_matches('#');
+        let whole =
+            if digits.len() == 3 { digits.chars().flat_map(|c| [c, c]).collect() } else { digits.to_owned() };
+        let channel = |i: usize| {
+            let c = f64::from(u8::from_str_radix(&whole[2 * i..2 * i + 2], 16).unwrap()) / 255.0;
+            if c <= 0.04045 { c / 12.92 } else { libm::pow((c + 0.055) / 1.055, 2.4) }
+        };
+        0.2126 * channel(0) + 0.7152 * channel(1) + 0.0722 * channel(2)
+    };
+    let (a, b) = (luminance(a), luminance(b));
+    (a.max(b) + 0.05) / (a.min(b) + 0.05)
+}
+
+#[test]
+fn text_has_a_contrast_of_at_least_four_and_a_half_in_every_theme() {
+    assert!(
+        (contrast("#fff", "#000") - 21.0).abs() < 1e-9
+            && (contrast("#777777", "#ffffff") - 4.48).abs() < 0.005
+    );
+    let themes: Vec<&str> = STYLE.split("--a-paper:").skip(1).collect();
+    assert_eq!(themes.len(), 5, "light, dark by wish, dark, light, print");
+    for theme in themes {
+        let theme = format!("--a-paper:{theme}");
+        let colour = |name: &str| {
+            let (_, rest) = theme.split_once(&format!("--a-{name}:")).unwrap();
+            rest.split_once(';').unwrap().0.trim().to_owned()
+        };
+        for ground in ["paper", "raised", "second-ground"] {
+            for ink in ["ink", "soft", "accent", "second"] {
+                let ratio = contrast(&colour(ink), &colour(ground));
+                assert!(ratio >= 4.5, "{ink} {} on {ground} {}: {ratio:.2}", colour(ink), colour(ground));
+            }
+        }
+    }
 }
 
 /// Pieces that would do harm if any of them reached the markup unescaped, and characters that XML forbids.

@@ -53,7 +53,13 @@ pub fn curve(spec: &Curve) -> Figure {
         let y = frame.y_axis.place(target);
         drawing.line(frame.left, y, right, y, Stroke::Guide);
         let shown = label::shorten(&spec.target_words, SMALL, 180.0);
-        drawing.titled(frame.left + 5.0, y - 5.0, &shown, &spec.target_words, Anchor::Start, Words::Small);
+        // At the right, where a rising curve has left the line behind, unless the chosen point's line runs through there.
+        let words_left = right - 2.0 - label::width(&shown, SMALL) - 8.0;
+        let (x, anchor) = match chosen {
+            Some(chosen) if x_axis.place(chosen.x) > words_left => (frame.left + 5.0, Anchor::Start),
+            _ => (right - 2.0, Anchor::End),
+        };
+        drawing.titled(x, y - 5.0, &shown, &spec.target_words, anchor, Words::Small);
     }
     let places = || thinned(&points).into_iter().map(|p| (x_axis.place(p.x), frame.y_axis.place(p.y)));
     drawing.polyline(places(), Stroke::Interval);
@@ -63,7 +69,9 @@ pub fn curve(spec: &Curve) -> Figure {
         }
     }
     if let Some(chosen) = chosen {
-        draw_chosen(&mut drawing, spec, x_axis.place(chosen.x), frame.y_axis.place(chosen.y), &frame);
+        let (x, y) = (x_axis.place(chosen.x), frame.y_axis.place(chosen.y));
+        let line = target.map(|target| frame.y_axis.place(target));
+        draw_chosen(&mut drawing, spec, (x, y), &places().collect::<Vec<_>>(), line, &frame);
     }
     let end = axis_title(&mut drawing, &spec.x_axis, frame.left, frame.bottom + 40.0);
     let description = describe(spec, &points);
@@ -71,30 +79,38 @@ pub fn curve(spec: &Curve) -> Figure {
     Figure::new(spec.title.clone(), description, svg)
 }
 
-/// The chosen point, a line down to its axis, and its words to that side where there is room, below the curve.
-fn draw_chosen(drawing: &mut Drawing, spec: &Curve, x: f64, y: f64, frame: &Frame) {
+/// The chosen point, a line down to its axis, and its words at that side where there is room, below the curve and clear of
+/// the target line.
+fn draw_chosen(
+    drawing: &mut Drawing,
+    spec: &Curve,
+    (x, y): (f64, f64),
+    curve: &[(f64, f64)],
+    target: Option<f64>,
+    frame: &Frame,
+) {
     drawing.line(x, y, x, frame.bottom, Stroke::Guide);
     drawing.circle(x, y, 5.2, Fill::Chosen);
     let shown = label::shorten(&spec.chosen_words, TEXT, WIDTH - frame.left - 40.0);
     let width = label::width(&shown, TEXT);
     let right = WIDTH - 14.0;
-    let middle = frame.bottom - 14.0;
-    // A rising curve leaves the lower right free.
-    let (at, anchor) = if x + 10.0 + width <= right {
+    let (left, anchor) = if x + 10.0 + width <= right {
         (x + 10.0, Anchor::Start)
     } else if x - 10.0 - width >= frame.left {
-        (x - 10.0, Anchor::End)
+        (x - 10.0 - width, Anchor::End)
     } else {
-        (right, Anchor::End)
+        (right - width, Anchor::End)
     };
-    drawing.titled(
-        at,
-        (y + 24.0).clamp(frame.top + 14.0, middle),
-        &shown,
-        &spec.chosen_words,
-        anchor,
-        Words::Chosen,
-    );
+    // The lowest that the curve runs over these words.
+    let over = curve.iter().filter(|(cx, _)| (left - 12.0..=left + width + 12.0).contains(cx));
+    let lowest = over.map(|&(_, cy)| cy).fold(y, f64::max);
+    let mut baseline = lowest + 24.0;
+    if let Some(target) = target.filter(|target| (baseline - 16.0..=baseline + 20.0).contains(target)) {
+        baseline = target + 18.0;
+    }
+    let baseline = baseline.clamp(frame.top + 14.0, frame.bottom - 10.0);
+    let at = if anchor == Anchor::Start { left } else { left + width };
+    drawing.titled(at, baseline, &shown, &spec.chosen_words, anchor, Words::Chosen);
 }
 
 fn describe(spec: &Curve, points: &[Point]) -> String {

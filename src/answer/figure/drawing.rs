@@ -6,7 +6,7 @@ use maud::{Markup, PreEscaped, Render, html};
 
 /// Width of every drawing in its own units. Narrow, so that text stays readable where the figure is shown at the
 /// width of a telephone.
-pub const WIDTH: f64 = 480.0;
+pub const WIDTH: f64 = 440.0;
 
 /// Text sizes in units of the drawing.
 pub const TEXT: f64 = 14.0;

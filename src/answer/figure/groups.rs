@@ -3,7 +3,7 @@
 use super::axis::{Axis, Direction, Place};
 use super::drawing::{Anchor, Drawing, Fill, SMALL, Stroke, TEXT, WIDTH, Words};
 use super::intervals::axis_title;
-use super::{Span, in_words, label, precision_of};
+use super::{Span, in_words, label, precision_of, with_room_for_arrows};
 use crate::answer::{Figure, number};
 
 /// More values than this are drawn as counts.
@@ -15,7 +15,17 @@ const BINS: usize = 72;
 /// More groups than this are not drawn; the figure says so.
 const MOST_GROUPS: usize = 200;
 
-const RADIUS: f64 = 2.6;
+/// Radii of points, the largest that fits is used.
+const RADII: [f64; 3] = [2.6, 2.1, 1.7];
+
+/// The highest that a stack of points or a bar may be.
+const HIGHEST: f64 = 36.0;
+
+/// Height of the part of a row in which the mean stands.
+const MEANS: f64 = 20.0;
+
+/// The widest that labels may be; longer ones are wrapped or shortened.
+const LABELS: f64 = 132.0;
 
 /// What [`groups`] draws.
 #[derive(Debug, Clone, PartialEq, Default)]
@@ -38,23 +48,43 @@ pub struct Group {
     pub interval: Option<Span>,
 }
 
+/// How the values of all groups are drawn.
+#[derive(Clone, Copy, PartialEq)]
+enum Values {
+    None,
+    /// As points of this radius, the highest stack of this many.
+    Points {
+        radius: f64,
+        highest: usize,
+    },
+    Counts,
+}
+
 /// The figure of the groups, one row each, over an axis that need not start at zero.
 ///
-/// Up to 1,200 values are points, stacked where they would cover each other; more are counted into ranges and drawn as shaded bars, at
-/// most 72 a group. The figure says which of the two it is.
+/// Up to 1,200 values are points, stacked where they would cover each other; more, or stacks that would be too high, are counted
+/// into ranges and drawn as shaded bars, at most 72 a group. The figure says which of the two it is.
 pub fn groups(spec: &Groups) -> Figure {
     let shown: Vec<&Group> = spec.groups.iter().take(MOST_GROUPS).collect();
     let total: usize = shown.iter().map(|g| g.values.len()).sum();
-    let counted = total > MOST_POINTS;
-    let mut drawing = Drawing::default();
-    let top = key(&mut drawing, spec, total, counted);
     let widest = shown.iter().map(|g| label::width(&g.label, TEXT)).fold(0.0, f64::max);
-    let left = widest.clamp(28.0, 140.0) + 20.0;
-    let roomiest = if total == 0 { 30.0 } else { 58.0 };
-    let pitch = (1600.0 / shown.len().max(1) as f64).clamp(8.0, roomiest);
-    let bottom = top + pitch * shown.len() as f64 + 4.0;
+    let left = widest.clamp(28.0, LABELS) + 20.0;
     let place = Place { from: left, to: WIDTH - 14.0, text_size: SMALL, direction: Direction::Across };
-    let axis = Axis::covering(shown.iter().flat_map(|g| numbers_of(g)), place);
+    let spans = shown.iter().filter_map(|g| g.interval.and_then(Span::usable));
+    let axis = Axis::covering(with_room_for_arrows(shown.iter().flat_map(|g| numbers_of(g)), spans), place);
+    let values = how(&axis, &shown, total);
+    let roomiest = match values {
+        Values::None if widest > LABELS => 36.0,
+        Values::None => 30.0,
+        Values::Points { radius, highest } => (MEANS + 10.0 + 2.0 * radius * highest as f64).max(38.0),
+        Values::Counts => MEANS + HIGHEST + 6.0,
+    };
+    let pitch = (1600.0 / shown.len().max(1) as f64).clamp(8.0, roomiest);
+    // Rows that have to be low keep their proportions.
+    let scale = pitch / roomiest;
+    let mut drawing = Drawing::default();
+    let top = key(&mut drawing, spec, total, values);
+    let bottom = top + pitch * shown.len() as f64 + 4.0;
     for tick in &axis.ticks {
         let x = axis.place(tick.value);
         drawing.line(x, top, x, bottom, Stroke::Grid);
@@ -63,19 +93,22 @@ pub fn groups(spec: &Groups) -> Figure {
     drawing.line(left, bottom, WIDTH - 14.0, bottom, Stroke::Axis);
     let every = (15.0 / pitch).ceil().max(1.0) as usize;
     for (place, group) in shown.iter().enumerate() {
-        let y = top + pitch * place as f64;
+        // The values stand on a floor, the mean below it.
+        let end = top + pitch * (place + 1) as f64;
+        let floor = end - MEANS * scale;
+        let middle = if values == Values::None { end - pitch / 2.0 } else { floor + 9.0 * scale };
         if place.is_multiple_of(every) {
-            name(&mut drawing, &group.label, left, y + pitch / 2.0, pitch);
+            let beside = if values == Values::None { middle } else { floor - 2.0 * scale };
+            name(&mut drawing, &group.label, left, beside, pitch);
         }
-        // The values fill the upper part of the row, the mean stands below them.
-        let floor = if total == 0 { y } else { y + pitch * 0.66 };
-        if counted {
-            draw_counts(&mut drawing, &axis, &group.values, floor, pitch * 0.56);
-        } else {
-            draw_points(&mut drawing, &axis, &group.values, floor, pitch * 0.58);
+        match values {
+            Values::None => {}
+            Values::Points { radius, .. } => {
+                draw_points(&mut drawing, &axis, &group.values, floor, radius, scale)
+            }
+            Values::Counts => draw_counts(&mut drawing, &axis, &group.values, floor, HIGHEST * scale),
         }
-        let middle = if total == 0 { y + pitch / 2.0 } else { y + pitch * 0.82 };
-        draw_mean(&mut drawing, &axis, group, middle, pitch);
+        draw_mean(&mut drawing, &axis, group, middle, scale);
     }
     let end = axis_title(&mut drawing, &spec.axis, left, bottom + 38.0);
     let description = describe(spec);
@@ -83,19 +116,33 @@ pub fn groups(spec: &Groups) -> Figure {
     Figure::new(spec.title.clone(), description, svg)
 }
 
+/// Points as large as the highest stack allows; counts where there are too many or they would be specks.
+fn how(axis: &Axis, groups: &[&Group], total: usize) -> Values {
+    if total == 0 {
+        return Values::None;
+    }
+    if total > MOST_POINTS {
+        return Values::Counts;
+    }
+    let places: Vec<Vec<f64>> = groups.iter().map(|g| sorted_places(axis, &g.values)).collect();
+    let candidates = RADII.iter().map(|&radius| {
+        let highest = places.iter().map(|p| height_of(&stacked(p, radius))).max().unwrap_or(0);
+        (radius, highest)
+    });
+    let fitting = candidates.into_iter().find(|&(radius, highest)| 2.0 * radius * highest as f64 <= HIGHEST);
+    fitting.map_or(Values::Counts, |(radius, highest)| Values::Points { radius, highest })
+}
+
 fn numbers_of(group: &Group) -> impl Iterator<Item = f64> {
     let limits = group.interval.and_then(Span::usable).into_iter().flat_map(Span::limits);
     group.values.iter().copied().chain(group.mean).chain(limits)
 }
 
-fn key(drawing: &mut Drawing, spec: &Groups, total: usize, counted: bool) -> f64 {
+fn key(drawing: &mut Drawing, spec: &Groups, total: usize, values: Values) -> f64 {
     let mut y = 16.0;
     let all = number::count(total);
-    if counted {
-        y = drawing.paragraph(
-            y,
-            &format!("Shaded: where the values lie ({all} in all), each group to its own height."),
-        );
+    if values == Values::Counts {
+        y = drawing.paragraph(y, &format!("Shaded: where the {all} values lie, heights within each group."));
     } else if total > 0 {
         y = drawing.paragraph(y, "Points: every value.");
     }
@@ -126,48 +173,67 @@ fn name(drawing: &mut Drawing, text: &str, left: f64, middle: f64, pitch: f64) {
 
 /// Points at their true place along the axis, stacked upwards from `floor` where they would cover each other. Which point is
 /// how high follows from the sorted values alone.
-fn draw_points(drawing: &mut Drawing, axis: &Axis, values: &[f64], floor: f64, room: f64) {
+fn draw_points(drawing: &mut Drawing, axis: &Axis, values: &[f64], floor: f64, radius: f64, scale: f64) {
+    let places = sorted_places(axis, values);
+    let layers = stacked(&places, radius);
+    for (x, layer) in places.into_iter().zip(layers) {
+        drawing.circle(
+            x,
+            floor - (radius + 2.0 * radius * layer as f64) * scale,
+            radius * scale,
+            Fill::Value,
+        );
+    }
+}
+
+fn sorted_places(axis: &Axis, values: &[f64]) -> Vec<f64> {
     let mut places: Vec<f64> = values.iter().filter(|v| v.is_finite()).map(|&v| axis.place(v)).collect();
     places.sort_by(f64::total_cmp);
-    // A point goes on the lowest layer whose last point lies far enough to the left.
+    places
+}
+
+/// The layer of each point (sorted places): the lowest one whose last point lies far enough to the left.
+fn stacked(places: &[f64], radius: f64) -> Vec<usize> {
     let mut last_on_layer: Vec<f64> = Vec::new();
-    let mut layers = Vec::with_capacity(places.len());
-    for &x in &places {
-        let free = last_on_layer.iter().position(|&last| x - last >= 2.0 * RADIUS);
+    let layer_of = |&x: &f64| {
+        let free = last_on_layer.iter().position(|&last| x - last >= 2.0 * radius);
         match free {
             Some(layer) => last_on_layer[layer] = x,
             None => last_on_layer.push(x),
         }
-        layers.push(free.unwrap_or(last_on_layer.len() - 1));
-    }
-    let deepest = last_on_layer.len().saturating_sub(1).max(1) as f64;
-    let radius = RADIUS.min(room / 2.0);
-    let step = (2.0 * radius).min((room - 2.0 * radius).max(0.0) / deepest);
-    for (x, layer) in places.into_iter().zip(layers) {
-        drawing.circle(x, floor - radius - step * layer as f64, radius, Fill::Value);
-    }
+        free.unwrap_or(last_on_layer.len() - 1)
+    };
+    places.iter().map(layer_of).collect()
 }
 
-/// Bars over equal ranges of the axis, the highest as high as there is room.
+fn height_of(layers: &[usize]) -> usize {
+    layers.iter().max().map_or(0, |top| top + 1)
+}
+
+/// Bars whose heights are counts, the highest as high as there is room: one at each value where there are few
+/// different ones, or else over equal ranges of the axis.
 fn draw_counts(drawing: &mut Drawing, axis: &Axis, values: &[f64], floor: f64, room: f64) {
+    let places = sorted_places(axis, values);
     let width = (axis.to() - axis.from()) / BINS as f64;
-    let mut counts = [0usize; BINS];
-    for &value in values.iter().filter(|v| v.is_finite()) {
-        let bin = ((axis.place(value) - axis.from()) / width) as usize;
-        counts[bin.min(BINS - 1)] += 1;
+    let runs = places.chunk_by(|a, b| b - a < 0.01).map(|run| (run[0], run.len()));
+    let mut bars: Vec<(f64, usize)> = runs.take(BINS / 2).collect();
+    let all_apart = bars.windows(2).all(|pair| pair[1].0 - pair[0].0 > 1.2 * width);
+    if bars.iter().map(|bar| bar.1).sum::<usize>() < places.len() || !all_apart {
+        let mut counts = [0usize; BINS];
+        for place in places {
+            counts[(((place - axis.from()) / width) as usize).min(BINS - 1)] += 1;
+        }
+        bars = counts.iter().enumerate().map(|(i, &n)| (axis.from() + width * (i as f64 + 0.5), n)).collect();
+        bars.retain(|bar| bar.1 > 0);
     }
-    let most = counts.iter().copied().max().unwrap_or(0).max(1) as f64;
-    let filled = counts.iter().enumerate().filter(|(_, count)| **count > 0);
-    let bars = filled.map(|(bin, &count)| {
-        // A single value among many thousand is still seen.
-        let height = (room * count as f64 / most).max(0.8);
-        (axis.from() + width * bin as f64, floor - height, width)
-    });
-    drawing.bars(floor, bars, Fill::Shade);
+    let most = bars.iter().map(|bar| bar.1).max().unwrap_or(1) as f64;
+    // A single value among many thousand is still seen.
+    let height = |count: usize| (room * count as f64 / most).max(0.8);
+    drawing.bars(floor, bars.iter().map(|&(x, n)| (x - width / 2.0, floor - height(n), width)), Fill::Shade);
 }
 
-fn draw_mean(drawing: &mut Drawing, axis: &Axis, group: &Group, y: f64, pitch: f64) {
-    let half = (pitch * 0.12).min(4.0);
+fn draw_mean(drawing: &mut Drawing, axis: &Axis, group: &Group, y: f64, scale: f64) {
+    let half = 4.0 * scale;
     if let Some(span) = group.interval.and_then(Span::usable) {
         drawing.line(axis.place(span.lower), y, axis.place(span.upper), y, Stroke::Interval);
         for (limit, edge, direction) in [(span.lower, axis.from(), -1.0), (span.upper, axis.to(), 1.0)] {
@@ -180,7 +246,7 @@ fn draw_mean(drawing: &mut Drawing, axis: &Axis, group: &Group, y: f64, pitch: f
         }
     }
     if let Some(mean) = group.mean.filter(|mean| mean.is_finite()) {
-        drawing.circle(axis.place(mean), y, (pitch * 0.13).min(4.4), Fill::Solid);
+        drawing.circle(axis.place(mean), y, 4.4 * scale, Fill::Solid);
     }
 }
 

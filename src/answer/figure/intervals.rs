@@ -2,11 +2,14 @@
 
 use super::axis::{Axis, Direction, Place};
 use super::drawing::{Anchor, Drawing, Fill, SMALL, Stroke, TEXT, WIDTH, Words};
-use super::{Span, in_words, label, precision_of};
+use super::{Span, in_words, label, precision_of, with_room_for_arrows};
 use crate::answer::{Figure, number};
 
 /// More rows than this are not drawn; the figure says so.
 const MOST_ROWS: usize = 800;
+
+/// The widest that labels may be; longer ones are wrapped or shortened.
+const LABELS: f64 = 156.0;
 
 /// Up to this many rows each has its mark and its label.
 const ROOMY_ROWS: usize = 100;
@@ -68,7 +71,8 @@ pub fn intervals(spec: &Intervals) -> Figure {
     let place = Place { from: layout.left, to: WIDTH - 14.0, text_size: SMALL, direction: Direction::Across };
     let numbers =
         rows.iter().flat_map(|row| row.interval.into_iter().flat_map(Span::limits).chain([row.estimate]));
-    let axis = Axis::covering(numbers.chain(spec.reference), place);
+    let spans = rows.iter().filter_map(|row| row.interval);
+    let axis = Axis::covering(with_room_for_arrows(numbers.chain(spec.reference), spans), place);
     for tick in &axis.ticks {
         let x = axis.place(tick.value);
         drawing.line(x, layout.top, x, bottom, Stroke::Grid);
@@ -139,9 +143,9 @@ fn key(drawing: &mut Drawing, spec: &Intervals, dense: bool) -> f64 {
 
 fn layout(rows: &[IntervalRow], top: f64) -> Layout {
     let widest = rows.iter().map(|row| label::width(&row.label, TEXT)).fold(0.0, f64::max);
-    let gutter = widest.clamp(28.0, 168.0);
+    let gutter = widest.clamp(28.0, LABELS);
     let pitch = match rows.len() {
-        0..=40 if widest > 168.0 => 38.0,
+        0..=40 if widest > LABELS => 38.0,
         0..=40 => 27.0,
         41..=ROOMY_ROWS => 18.0,
         many => (1600.0 / many as f64).min(12.0),
@@ -206,10 +210,10 @@ fn bar(drawing: &mut Drawing, axis: &Axis, span: Span, y: f64, stroke: Stroke) {
 /// The words below an axis. Returns the height that they end at.
 pub fn axis_title(drawing: &mut Drawing, title: &str, left: f64, y: f64) -> f64 {
     let lines = label::wrap(title, TEXT, WIDTH - 16.0, 2);
+    // Centred below its axis where there is room, and inside the drawing in any case.
+    let half = lines.iter().map(|line| label::width(line, TEXT) / 2.0).fold(0.0, f64::max);
+    let x = ((left + WIDTH - 14.0) / 2.0).min(WIDTH - 8.0 - half).max(8.0 + half);
     for (i, line) in lines.iter().enumerate() {
-        // Centred below its axis where there is room, and inside the drawing in any case.
-        let half = label::width(line, TEXT) / 2.0;
-        let x = ((left + WIDTH - 14.0) / 2.0).min(WIDTH - 8.0 - half).max(8.0 + half);
         drawing.titled(x, y + 17.0 * i as f64, line, title, Anchor::Middle, Words::Label);
     }
     y + 17.0 * lines.len() as f64 - 6.0

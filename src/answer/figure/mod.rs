@@ -45,16 +45,35 @@ impl Span {
         [self.lower, self.upper].into_iter().filter(|limit| limit.is_finite())
     }
 
-    fn half_width(self) -> f64 {
-        self.upper / 2.0 - self.lower / 2.0
+    /// About the standard error behind a usual interval.
+    fn spread(self) -> f64 {
+        self.upper / 4.0 - self.lower / 4.0
     }
+}
+
+/// The numbers that an axis shall cover, and beyond them some room on a side where an interval ends in an arrow: the arrow
+/// must not meet a mark.
+fn with_room_for_arrows(
+    numbers: impl Iterator<Item = f64>,
+    mut spans: impl Iterator<Item = Span> + Clone,
+) -> Vec<f64> {
+    let mut numbers: Vec<f64> = numbers.filter(|x| x.is_finite()).collect();
+    let (low, high) =
+        numbers.iter().fold((f64::INFINITY, f64::NEG_INFINITY), |(l, h), &x| (l.min(x), h.max(x)));
+    let room = (high - low) * 0.12;
+    if spans.clone().any(|span| span.upper == f64::INFINITY) {
+        numbers.push(high + room);
+    }
+    if spans.any(|span| span.lower == f64::NEG_INFINITY) {
+        numbers.push(low - room);
+    }
+    numbers
 }
 
 /// One precision for the numbers in a description: from the intervals, or else from the numbers' own range.
 fn precision_of(numbers: &[f64], spans: impl Iterator<Item = Option<Span>>) -> Precision {
-    let half_widths: Vec<f64> =
-        spans.flatten().map(Span::half_width).filter(|w| w.is_finite() && *w > 0.0).collect();
-    if half_widths.is_empty() { Precision::for_values(numbers) } else { Precision::for_column(half_widths) }
+    let spreads: Vec<f64> = spans.flatten().map(Span::spread).filter(|s| s.is_finite() && *s > 0.0).collect();
+    if spreads.is_empty() { Precision::for_values(numbers) } else { Precision::for_column(spreads) }
 }
 
 /// "1.25, interval 0.3 to 2.2".

@@ -131,18 +131,24 @@ fn x_range(points: &[&TrendPoint], curve: &[Point]) -> (f64, f64) {
 fn level_ticks(drawing: &mut Drawing, axis: &Axis, points: &[&TrendPoint], bottom: f64) -> usize {
     let mut sorted: Vec<&TrendPoint> = points.to_vec();
     sorted.sort_by(|a, b| a.x.total_cmp(&b.x));
-    let mut taken = [f64::NEG_INFINITY; 3];
+    // The labels of each line as (left, right), in order.
+    let mut taken: [Vec<(f64, f64)>; 3] = Default::default();
     let mut lines = 1;
     for point in sorted {
         let x = axis.place(point.x);
-        let shown = label::shorten(&point.label, SMALL, 110.0);
+        let shown = label::shorten(&point.label, SMALL, 130.0);
         let half = label::width(&shown, SMALL) / 2.0;
         let centre = x.min(WIDTH - 4.0 - half).max(4.0 + half);
-        let free = taken.iter().position(|&right| centre - half >= right + 7.0);
-        let drop = free.map_or(5.0, |line| 5.0 + 16.0 * line as f64);
+        let has_room =
+            |line: &Vec<(f64, f64)>| line.last().is_none_or(|&(_, right)| centre - half >= right + 7.0);
+        let free = taken.iter().position(has_room);
+        // The tick reaches down to its label unless it would cross another one.
+        let above = &taken[..free.unwrap_or(0)];
+        let crosses = above.iter().flatten().any(|&(left, right)| (left - 2.0..right + 2.0).contains(&x));
+        let drop = if crosses { 5.0 } else { 5.0 + 16.0 * free.unwrap_or(0) as f64 };
         drawing.named(&point.label, |drawing| drawing.line(x, bottom, x, bottom + drop, Stroke::Axis));
         if let Some(line) = free {
-            taken[line] = centre + half;
+            taken[line].push((centre - half, centre + half));
             lines = lines.max(line + 1);
             let y = bottom + 18.0 + 16.0 * line as f64;
             drawing.titled(centre, y, &shown, &point.label, Anchor::Middle, Words::Small);
