@@ -17,7 +17,8 @@ const PAUSE = 450;
 
 /**
  * @typedef {object} Field
- * @property {HTMLElement} element
+ * @property {HTMLElement} element the blank, and the punctuation that stays with it
+ * @property {Text} tail
  * @property {Control} control
  * @property {string} shape two blanks with the same shape can share a control
  * @property {(blank: Blank, problem: string, stale: boolean) => void} draw
@@ -44,7 +45,7 @@ export function createSentence(onChange) {
   function draw(parts, diagnostics, stale) {
     /** @type {Map<string, Field>} */
     const next = new Map();
-    const { words: stretches, blanks } = spaced(parts);
+    const { words: stretches, blanks, tails } = spaced(parts);
     words = stretches.map((stretch, i) => {
       const node = words[i] ?? document.createTextNode('');
       setText(node, stretch);
@@ -56,6 +57,7 @@ export function createSentence(onChange) {
       const old = fields.get(blank.field);
       const field = old?.shape === blank.control ? old : makeField(blank, help, onChange);
       next.set(blank.field, field);
+      setText(field.tail, tails[i] ?? '');
       return [node, field.element];
     });
     const back = focusKeeper(element);
@@ -118,7 +120,8 @@ function makeField(blank, help, onChange) {
   control.addEventListener('blur', () => {
     help.hidden = true;
   });
-  return { ...field, shape: blank.control };
+  const tail = document.createTextNode('');
+  return { ...field, element: h('span', { class: 'keep' }, field.element, tail), tail, shape: blank.control };
 }
 
 /**
@@ -180,7 +183,7 @@ function choiceOptions(blank) {
   if (!atDefault && !choices.some((choice) => choice.value === blank.value)) {
     list.unshift(h('option', { value: blank.value }, blank.shown || blank.value));
   }
-  const title = atDefault && !blank.is_default ? 'not chosen yet' : 'default';
+  const title = rest === '…' ? 'not chosen yet' : 'default';
   return [
     h('optgroup', { label: title }, h('option', { value: '' }, rest || 'choose')),
     h('optgroup', { label: 'choose' }, ...list),

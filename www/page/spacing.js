@@ -3,10 +3,11 @@
 /** @typedef {import('./messages.js').Part} Part */
 
 /**
- * The words that stand before each part and after the last one, with their spaces: `blanks[i]` stands between `words[i]` and
- * `words[i + 1]`. There is always one stretch of words more than there are blanks.
+ * The words that stand before each blank and after the last one, with their spaces: `blanks[i]` and then `tails[i]` stand
+ * between `words[i]` and `words[i + 1]`. A tail is the punctuation that must not begin a line of its own. There is always one
+ * stretch of words more than there are blanks.
  * @param {readonly Part[]} parts
- * @returns {{ words: string[], blanks: import('./messages.js').Blank[] }}
+ * @returns {{ words: string[], blanks: import('./messages.js').Blank[], tails: string[] }}
  */
 export function spaced(parts) {
   const words = [''];
@@ -24,5 +25,9 @@ export function spaced(parts) {
       words[words.length - 1] = before + gap + part.text;
     }
   }
-  return { words, blanks };
+  const tails = blanks.map((_, i) => /^[,.;:?!)]*/.exec(words[i + 1] ?? '')?.[0] ?? '');
+  tails.forEach((tail, i) => {
+    words[i + 1] = (words[i + 1] ?? '').slice(tail.length);
+  });
+  return { words, blanks, tails };
 }

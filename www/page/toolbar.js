@@ -33,7 +33,7 @@ export function createToolbar(tools, file, examples, actions) {
   tools.replaceChildren(
     h('div', { class: 'tool-set', role: 'group', 'aria-label': 'Undo and redo' }, undo, redo),
     h('button', { type: 'button', onclick: actions.open }, 'Open…'),
-    h('span', { class: 'select-box' }, example),
+    h('span', { class: 'select-box', hidden: examples.length === 0 }, example),
     h('button', { type: 'button', onclick: actions.save }, 'Save'),
     h('button', { type: 'button', onclick: actions.report }, 'Save report'),
     themeButton(),

@@ -26,9 +26,9 @@ test('after the equals sign the choices of that field are offered, in quotes unl
 
 test('the parts of a sentence get their spaces', () => {
   const words = (text) => ({ type: 'words', text });
-  assert.deepEqual(spaced([words('Study'), blank('outcome', []), words('over the levels of'), blank('groups', []), words('. Levels:'), blank('levels', []), blank('scores', []), words('.')]).words, [
-    'Study ', ' over the levels of ', '. Levels: ', ' ', '.',
-  ]);
+  const sentence = spaced([words('Study'), blank('outcome', []), words('over the levels of'), blank('groups', []), words('. Levels:'), blank('levels', []), blank('scores', []), words('.')]);
+  assert.deepEqual(sentence.words, ['Study ', ' over the levels of ', ' Levels: ', ' ', '']);
+  assert.deepEqual(sentence.tails, ['', '.', '', '.']);
   assert.deepEqual(spaced([blank('text', [])]).words, ['', '']);
 });
 
