@@ -1,4 +1,4 @@
-//! Measures the built page in a browser: `cargo pack bench`. The measuring itself is `tests/benches/page.js`.
+//! Measures the built page in a browser: `cargo pack bench`. The measuring itself is `tests/benches/page.mjs`.
 
 use crate::page::{self, Finish};
 use crate::project::{Project, run};
@@ -12,7 +12,7 @@ pub fn run_all(project: &Project) -> Result<bool> {
     println!();
     run(Command::new("node")
         .current_dir(&project.root)
-        .arg("tests/benches/page.js")
+        .arg("tests/benches/page.mjs")
         .env("LEVELWISE_HTML", project.html())
         .env("CHROMIUM", toolchain::browser()?))?;
     Ok(true)

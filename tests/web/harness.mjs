@@ -13,6 +13,7 @@ import { existsSync, mkdtempSync, readFileSync, readdirSync, rmSync } from 'node
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { fileURLToPath, pathToFileURL } from 'node:url';
+import { recordEngine } from './engine-log.mjs';
 
 const root = fileURLToPath(new URL('../../', import.meta.url));
 const puppeteer = createRequire(new URL('../../www/package.json', import.meta.url))('puppeteer-core');
@@ -51,6 +52,7 @@ export async function openPage({ from = 'file', file = HTML, hash = '', path = '
   const browser = await launch(listener.port);
   const page = await browser.newPage();
   await watch(page, found, downloads);
+  await recordEngine(page);
   const bare = from === 'file' ? pathToFileURL(file).href : `http://127.0.0.1:${listener.port}${path}`;
   const address = hash ? `${bare}#${hash}` : bare;
   page.on('request', (request) => {
