@@ -23,7 +23,7 @@ pub struct Engine {
 
 /// The engine, built as far as its sources have changed. `metadata` is Cargo's description of the project.
 pub fn build(project: &Project, metadata: &Value, finish: Finish) -> Result<Engine> {
-    let compiled = compile(project, metadata)?;
+    let compiled = compile(project, metadata, finish)?;
     let raw = read(&compiled)?;
     let kind = finish.name();
     let bound = project.kept(&format!("bound-{kind}.wasm"));
@@ -46,9 +46,16 @@ pub fn build(project: &Project, metadata: &Value, finish: Finish) -> Result<Engi
     Ok(Engine { wasm, glue: read_text(&glue)? })
 }
 
-fn compile(project: &Project, metadata: &Value) -> Result<PathBuf> {
+fn compile(project: &Project, metadata: &Value, finish: Finish) -> Result<PathBuf> {
     let toolchain = Wasm::find(project)?;
     let mut command = toolchain.cargo_build(project, &remapped_paths(project, metadata)?)?;
+    if finish == Finish::Fast {
+        // The release profile without what makes it slow to build; one profile keeps panics and features the same.
+        command.env("CARGO_PROFILE_RELEASE_LTO", "off");
+        command.env("CARGO_PROFILE_RELEASE_OPT_LEVEL", "1");
+        command.env("CARGO_PROFILE_RELEASE_CODEGEN_UNITS", "16");
+        command.env("CARGO_PROFILE_RELEASE_INCREMENTAL", "true");
+    }
     run(command.args(["--release", "--package", "levelwise", "--lib"]))?;
     Ok(project.target.join("web/wasm32-unknown-unknown/release/levelwise.wasm"))
 }
