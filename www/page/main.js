@@ -13,6 +13,7 @@ import { createRail } from './rail.js';
 import { createSession } from './session.js';
 import { EMPTY } from './state.js';
 import { createStore } from './store.js';
+import { looksLikeTable } from './tables.js';
 import { createToolbar } from './toolbar.js';
 
 /** @param {string} id */
@@ -61,6 +62,7 @@ async function begin() {
       undo: actions.undo,
       redo: actions.redo,
       example: openExample,
+      rename: (name) => store.update((state) => ({ ...state, fileName: name })),
     }),
     createNotices(place('notices'), { dismiss: actions.dismiss, restart: session.restart, saveKept: save }),
   ];
@@ -69,6 +71,14 @@ async function begin() {
   });
   for (const view of views) view.draw(store.get());
   listenToKeys({ save, undo: actions.undo, redo: actions.redo });
+  // An empty notebook takes a table wherever it is pasted.
+  addEventListener('paste', (event) => {
+    const text = event.clipboardData?.getData('text/plain') ?? '';
+    const typing = event.target instanceof Element && event.target.matches('input, textarea, .text-face');
+    if (store.get().order.length > 0 || typing || !looksLikeTable(text)) return;
+    event.preventDefault();
+    actions.setTable(null, text);
+  });
   addEventListener('beforeunload', (event) => {
     if (store.get().unsaved) event.preventDefault();
   });

@@ -20,7 +20,7 @@ export function createStart({ examples, openExample }, actions) {
   const element = h(
     'section',
     { class: 'start', 'aria-labelledby': 'start-title' },
-    h('h1', { id: 'start-title' }, 'Do the groups differ, and by how much?'),
+    h('h2', { id: 'start-title', class: 'question' }, 'Do the groups differ, and by how much?'),
     h(
       'p',
       {},
@@ -28,7 +28,7 @@ export function createStart({ examples, openExample }, actions) {
         'the answer stands below it, settles again with every change, and ends with the words for the paper.',
     ),
     place.element,
-    h('h2', {}, 'Or begin otherwise'),
+    h('h3', {}, 'Or begin otherwise'),
     h(
       'ul',
       { class: 'ways' },

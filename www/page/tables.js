@@ -34,6 +34,14 @@ export function notebookName(file) {
 }
 
 /**
+ * A name that can be a file's on every system.
+ * @param {string} typed
+ */
+export function fileStem(typed) {
+  return typed.replace(/[\\/:*?"<>|\u0000-\u001f]+/g, ' ').replace(/\s+/g, ' ').trim().replace(/^\.+/, '') || 'notebook';
+}
+
+/**
  * A count of bytes in words.
  * @param {number} bytes
  */

@@ -1,6 +1,7 @@
 /** The bar at the top: the notebook's name and what can be done with the notebook as a whole. */
 
 import { drawing, h, setText } from './dom.js';
+import { fileStem } from './tables.js';
 import { nextTheme, showTheme } from './theme.js';
 
 /** @typedef {import('./state.js').State} State */
@@ -13,6 +14,7 @@ import { nextTheme, showTheme } from './theme.js';
  * @property {() => void} undo
  * @property {() => void} redo
  * @property {(name: string) => void} example
+ * @property {(name: string) => void} rename
  */
 
 /**
@@ -39,10 +41,27 @@ export function createToolbar(tools, file, examples, actions) {
     themeButton(),
   );
 
+  const name = h('input', { type: 'text', 'aria-label': 'Name of the notebook’s file', autocomplete: 'off', spellcheck: false });
+  const box = h('span', { class: 'blank typed name-box' }, name);
+  const unsaved = h('span', { class: 'unsaved' });
+  const fit = () => {
+    box.dataset['shown'] = name.value;
+  };
+  name.addEventListener('input', fit);
+  name.addEventListener('change', () => {
+    name.value = fileStem(name.value);
+    fit();
+    actions.rename(name.value);
+  });
+  file.replaceChildren(box, unsaved);
+
   return {
     /** @param {State} now */
     draw(now) {
-      setText(file, now.order.length === 0 && !now.unsaved ? '' : `${now.fileName}${now.unsaved ? ' (not saved)' : ''}`);
+      file.hidden = now.order.length === 0 && !now.unsaved;
+      if (document.activeElement !== name) name.value = now.fileName;
+      fit();
+      setText(unsaved, now.unsaved ? ' not saved' : '');
       document.title = now.order.length === 0 ? 'Levelwise' : `${now.fileName}${now.unsaved ? ' (not saved)' : ''}: Levelwise`;
       idle(undo, !now.canUndo);
       idle(redo, !now.canRedo);

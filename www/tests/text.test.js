@@ -5,7 +5,7 @@ import { completionsAt } from '../page/completion.js';
 import { difference } from '../page/difference.js';
 import { moved } from '../page/grid-keys.js';
 import { spaced } from '../page/spacing.js';
-import { fileKind, looksLikeTable, notebookName, tabSeparated } from '../page/tables.js';
+import { fileKind, fileStem, looksLikeTable, notebookName, tabSeparated } from '../page/tables.js';
 
 const blank = (field, choices, control = 'choice') => ({ type: 'blank', field, label: field, value: '', shown: '', control, help: '', is_default: true, problem: false, choices: choices.map((value) => ({ value, label: value })) });
 const study = { fields: ['outcome', 'unit'], sentence: [{ type: 'words', text: 'Compare ' }, blank('outcome', ['words recalled', 'age']), blank('control', ['none', '15 min'], 'text'), blank('alpha', ['0.05'], 'number')] };
@@ -69,6 +69,8 @@ test('files are told apart by their names', () => {
   assert.deepEqual(['a.levelwise.toml', 'a.CSV', 'a.xlsx', 'a.pdf'].map(fileKind), ['notebook', 'table', 'workbook', 'unknown']);
   assert.equal(notebookName('Recall.levelwise.toml'), 'Recall');
   assert.equal(notebookName('.toml'), 'notebook');
+  assert.equal(fileStem(' a/b: c?\n'), 'a b c');
+  assert.equal(fileStem('..'), 'notebook');
 });
 
 test('the address can ask for an example', () => {
