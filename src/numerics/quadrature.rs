@@ -147,6 +147,53 @@ pub fn trapezoid(low: f64, high: f64, step: f64, mut integrand: impl FnMut(f64) 
     step * (0..=count).map(|i| integrand(low + step * i as f64)).sum::<f64>()
 }
 
+/// The integral over the line of a positive function with one peak, given by its logarithm: the peak is searched
+/// from `start`, `scale` is about its width.
+pub fn bell(log_integrand: impl Fn(f64) -> f64, start: f64, scale: f64, tolerance: f64) -> Estimate {
+    let peak = peak(&log_integrand, start, scale);
+    let top = log_integrand(peak);
+    let low = peak - fall(|x| log_integrand(peak - x), top, scale);
+    let high = peak + fall(|x| log_integrand(peak + x), top, scale);
+    trapezoid_refined(low, high, 12, tolerance, |x| libm::exp(log_integrand(x)))
+}
+
+/// Where the unimodal logarithm `f` is largest, to about a tenth of the width of its peak, searched from `start`.
+pub fn peak(f: impl Fn(f64) -> f64, start: f64, scale: f64) -> f64 {
+    let mut best = (start, f(start));
+    let mut step = scale.min(0.5);
+    // Walk uphill with growing steps, then back with shrinking ones, until a step changes f by little.
+    let mut direction = -1.0;
+    for _ in 0..200 {
+        let next = best.0 + direction * step;
+        let value = f(next);
+        if value > best.1 {
+            best = (next, value);
+            step *= 1.7;
+        } else {
+            if best.1 - value < 0.02 && value.is_finite() {
+                return best.0;
+            }
+            direction = -direction;
+            step *= 0.4;
+        }
+    }
+    best.0
+}
+
+/// How far from 0 the logarithm `f`, falling from `top`, has fallen by 36: the integrand is then 2e-16 of its peak.
+pub fn fall(f: impl Fn(f64) -> f64, top: f64, scale: f64) -> f64 {
+    const DROP: f64 = 36.0;
+    let (mut inside, mut outside) = (0.0, scale.min(0.5));
+    while f(outside) > top - DROP && outside < 1e3 {
+        (inside, outside) = (outside, 1.5 * outside);
+    }
+    for _ in 0..4 {
+        let middle = 0.5 * (inside + outside);
+        if f(middle) > top - DROP { inside = middle } else { outside = middle }
+    }
+    outside
+}
+
 /// The Legendre polynomial of degree `count` at `x`, and its derivative.
 fn legendre(count: usize, x: f64) -> (f64, f64) {
     let (mut before, mut here) = (1.0, x);

@@ -9,14 +9,18 @@ const MAX_EVALUATIONS: usize = 200;
 /// A step below this fraction of the caller's scale ends the iteration; the step itself is still taken, so that
 /// the root is better than that: the error after a Newton step is of the order of its square.
 const STEP: f64 = 1e-8;
+/// A chord longer than this fraction of the scale says too little about the slope at its end to stop on it.
+const CHORD: f64 = 1e-3;
 
 /// What a function is at a point.
 #[derive(Debug, Clone, Copy)]
 pub struct Value {
     /// Its value; infinite values are allowed and only tell the side.
     pub value: f64,
-    /// Its derivative.
+    /// Its derivative, or the slope of a chord that ends there.
     pub slope: f64,
+    /// Length of that chord; 0 for a derivative.
+    pub chord: f64,
 }
 
 /// The root of the increasing function `f` on the line, from `start`; `scale` is a length over which its
@@ -26,7 +30,7 @@ pub fn increasing(mut f: impl FnMut(f64) -> Value, start: f64, scale: f64) -> f6
     let mut x = start;
     let mut leap = scale;
     for _ in 0..MAX_EVALUATIONS {
-        let Value { value, slope } = f(x);
+        let Value { value, slope, chord } = f(x);
         if value == 0.0 {
             return x;
         }
@@ -37,8 +41,8 @@ pub fn increasing(mut f: impl FnMut(f64) -> Value, start: f64, scale: f64) -> f6
         }
         let step = -value / slope;
         let newton = x + step;
-        let usable = step.is_finite() && newton > low && newton < high;
-        if usable && step.abs() <= (STEP * scale).max(f64::EPSILON * x.abs()) {
+        let usable = slope > 0.0 && slope.is_finite() && newton > low && newton < high;
+        if usable && chord <= CHORD * scale && step.abs() <= (STEP * scale).max(f64::EPSILON * x.abs()) {
             return newton;
         }
         let next = if usable {
@@ -69,7 +73,7 @@ pub fn increasing_secant(mut f: impl FnMut(f64) -> f64, start: f64, scale: f64) 
                 None => (x + 1e-3 * scale, f(x + 1e-3 * scale)),
             };
             last = Some((x, value));
-            Value { value, slope: (value - value0) / (x - x0) }
+            Value { value, slope: (value - value0) / (x - x0), chord: (x - x0).abs() }
         },
         start,
         scale,
@@ -82,9 +86,10 @@ mod tests {
 
     #[test]
     fn a_root_is_found_from_far_away_and_with_a_useless_slope() {
-        let cube = increasing(|x| Value { value: x * x * x - 8.0, slope: 3.0 * x * x }, -50.0, 1.0);
+        let cube =
+            increasing(|x| Value { value: x * x * x - 8.0, slope: 3.0 * x * x, chord: 0.0 }, -50.0, 1.0);
         assert!((cube - 2.0).abs() < 1e-14, "{cube}");
-        let flat = increasing(|x| Value { value: libm::atan(x - 3.0), slope: 0.0 }, 1e6, 1.0);
+        let flat = increasing(|x| Value { value: libm::atan(x - 3.0), slope: 0.0, chord: 0.0 }, 1e6, 1.0);
         assert!((flat - 3.0).abs() < 1e-12, "{flat}");
         let secant = increasing_secant(|x| libm::exp(x) - 5.0, 0.0, 1.0);
         assert!((secant - libm::log(5.0)).abs() < 1e-14, "{secant}");

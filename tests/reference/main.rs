@@ -7,6 +7,7 @@ mod cases;
 mod central;
 mod invariances;
 mod nist_strd;
+mod noncentral_t;
 mod one_way;
 mod profile;
 mod properties;

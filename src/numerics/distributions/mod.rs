@@ -8,6 +8,7 @@
 pub mod beta;
 pub mod chi_squared;
 pub mod fisher_f;
+pub mod noncentral_t;
 pub mod normal;
 mod scale_mixture;
 pub mod student_t;

@@ -143,8 +143,8 @@ impl Range {
     /// P(Q > q).
     fn upper(&mut self, q: f64, df: f64) -> f64 {
         let pairs = libm::log((self.others * (self.others + 1)) as f64);
-        let log_shape = |s: f64| (pairs + log_lower_normal(-q * s * FRAC_1_SQRT_2)).min(0.0);
-        scale_mixture::mix(df, TOLERANCE, log_shape, |s| self.range_tail(q * s)).value.min(1.0)
+        let log_shape = |s: f64| (pairs + normal::log_lower(-q * s * FRAC_1_SQRT_2)).min(0.0);
+        scale_mixture::mix(df, 12, TOLERANCE, log_shape, |s| self.range_tail(q * s)).value.min(1.0)
     }
 
     /// P(Q <= q).
@@ -153,7 +153,7 @@ impl Range {
         // k (2Φ(w/2) - 1)ⁿ bounds the probability; it is concave in w.
         let log_shape =
             |s: f64| (libm::log(n + 1.0) + n * libm::log(libm::erf(0.5 * FRAC_1_SQRT_2 * q * s))).min(0.0);
-        scale_mixture::mix(df, TOLERANCE, log_shape, |s| self.range_cdf(q * s)).value.min(1.0)
+        scale_mixture::mix(df, 12, TOLERANCE, log_shape, |s| self.range_cdf(q * s)).value.min(1.0)
     }
 
     /// R(w), the probability of a range above w when σ is known.
@@ -236,12 +236,4 @@ fn one_minus_power(x: f64, n: usize) -> f64 {
         sum = 1.0 - (count - (j - 1) as f64) / j as f64 * x * sum;
     }
     count * x * sum
-}
-
-/// log Φ(x), also where Φ underflows.
-fn log_lower_normal(x: f64) -> f64 {
-    if x > -35.0 {
-        return libm::log(normal::lower(x));
-    }
-    -0.5 * x * x - libm::log(-x) - 0.918_938_533_204_672_8
 }

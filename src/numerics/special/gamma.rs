@@ -75,8 +75,12 @@ pub(super) fn solve_tail(
         |w| {
             let at = tails(w);
             match tail {
-                Tail::Lower => Value { value: libm::log(at.lower) - log_p, slope: at.slope / at.lower },
-                Tail::Upper => Value { value: log_p - libm::log(at.upper), slope: at.slope / at.upper },
+                Tail::Lower => {
+                    Value { value: libm::log(at.lower) - log_p, slope: at.slope / at.lower, chord: 0.0 }
+                }
+                Tail::Upper => {
+                    Value { value: log_p - libm::log(at.upper), slope: at.slope / at.upper, chord: 0.0 }
+                }
             }
         },
         start,
