@@ -143,19 +143,24 @@ export function createCell(id, state, actions) {
 function createHead(id, mark, actions) {
   const titleId = freshId('title');
   const heading = h('h2', { id: titleId, tabIndex: -1 });
-  const name = h('input', { type: 'text', class: 'name', autocomplete: 'off', spellcheck: false, placeholder: 'name' });
+  // A long name goes on in a second line, which only this control can.
+  const name = h('textarea', { rows: 1, class: 'name', spellcheck: false, placeholder: 'name' });
   const nameBox = h('span', { class: 'blank typed name-box' }, name);
   const fit = () => {
     nameBox.dataset['shown'] = name.value || name.placeholder;
   };
   let known = '';
   const rename = () => {
-    if (name.value.trim() !== known) actions.rename(id, name.value.trim());
+    const typed = name.value.replace(/\s+/g, ' ').trim();
+    if (typed !== known) actions.rename(id, typed);
   };
   name.addEventListener('input', fit);
   name.addEventListener('change', rename);
   name.addEventListener('keydown', (event) => {
-    if (event.key === 'Enter') rename();
+    if (event.key === 'Enter') {
+      event.preventDefault();
+      rename();
+    }
     if (event.key === 'Escape') {
       name.value = known;
       fit();
