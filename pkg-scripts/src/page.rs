@@ -147,7 +147,8 @@ fn outfile(path: &Path) -> String {
     format!("--outfile={}", path.display())
 }
 
-/// The example notebooks: name, title and text of each, sorted by file name.
+/// The example notebooks: name, title and text of each, by file name, those with raw data before those without: the first
+/// one is what a newcomer is shown.
 fn examples(project: &Project) -> Result<Vec<Value>> {
     let mut all = Vec::new();
     for path in files_under(&project.www().join("examples"))? {
@@ -156,6 +157,7 @@ fn examples(project: &Project) -> Result<Vec<Value>> {
         let text = read_text(&path)?;
         all.push(json!({ "name": name, "title": title_of(&text).unwrap_or(name), "text": text }));
     }
+    all.sort_by_key(|example| !example["text"].as_str().is_some_and(|text| text.contains("kind = \"data\"")));
     Ok(all)
 }
 
