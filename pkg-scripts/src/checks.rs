@@ -44,9 +44,11 @@ pub fn run_all(project: &Project) -> Result<bool> {
     stage("the page's libraries", &|| {
         toolchain::page_libraries(project).map(|()| Count { passed: 1, failed: 0 })
     });
-    stage("types of the page's scripts", &|| {
-        one(in_www(project, &["node_modules/typescript/bin/tsc", "-p", "tsconfig.json"]))
-    });
+    for (whose, folder) in [("the page's scripts", "."), ("the browser tests", "../tests/web")] {
+        stage(&format!("types of {whose}"), &|| {
+            one(in_www(project, &["node_modules/typescript/bin/tsc", "-p", folder]))
+        });
+    }
     stage("unit tests of the page's scripts", &|| node_tests(project, "www/tests"));
     stage("the page", &|| {
         page::build(project, Finish::Release)?.print_sizes();

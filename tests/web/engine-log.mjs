@@ -3,7 +3,7 @@
  * can ask which cells were recomputed.
  */
 
-/** @typedef {import('../../www/node_modules/puppeteer-core').Page} Page */
+/** @typedef {import('puppeteer-core').Page} Page */
 
 /**
  * @typedef {object} Entry

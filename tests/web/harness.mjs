@@ -16,6 +16,7 @@ import { fileURLToPath, pathToFileURL } from 'node:url';
 import { recordEngine } from './engine-log.mjs';
 
 const root = fileURLToPath(new URL('../../', import.meta.url));
+/** @type {import('puppeteer-core').PuppeteerNode} */
 const puppeteer = createRequire(new URL('../../www/package.json', import.meta.url))('puppeteer-core');
 
 /** The built page. */
@@ -28,7 +29,7 @@ const LAST_LOOK = 300;
 
 /**
  * @typedef {object} Opened
- * @property {import('../../www/node_modules/puppeteer-core').Page} page
+ * @property {import('puppeteer-core').Page} page
  * @property {() => Promise<string[]>} problems everything seen that must not happen, so far
  * @property {(name: RegExp) => Promise<string>} downloaded the text of the newest saved file so named, waited for
  * @property {() => Promise<void>} close
@@ -160,7 +161,7 @@ async function listen(html, path, found) {
 }
 
 /**
- * @param {import('../../www/node_modules/puppeteer-core').Page} page
+ * @param {import('puppeteer-core').Page} page
  * @param {string[]} found
  * @param {string} downloads
  */
@@ -195,7 +196,7 @@ async function watch(page, found, downloads) {
 }
 
 /**
- * @param {import('../../www/node_modules/puppeteer-core').CDPSession} session
+ * @param {import('puppeteer-core').CDPSession} session
  * @param {string[]} found
  * @param {string} where
  */
