@@ -107,5 +107,5 @@ function listenToKeys({ save, undo, redo }) {
 
 begin().catch((error) => {
   const words = error instanceof Error ? error.message : String(error);
-  place('notices').replaceChildren(h('div', { class: 'notice problem', role: 'alert' }, h('p', {}, `Levelwise could not start: ${words} It needs a browser of 2023 or later with WebAssembly switched on.`)));
+  place('notices').replaceChildren(h('div', { class: 'notice problem', role: 'alert' }, h('p', {}, `Levelwise could not start: ${words} It needs a browser of 2024 or later with WebAssembly switched on.`)));
 });

@@ -7,7 +7,7 @@ export function createPrivacy(element) {
   const dialog = h(
     'dialog',
     { class: 'sheet', 'aria-labelledby': 'privacy-title' },
-    h('h2', { id: 'privacy-title' }, 'How to check that nothing is sent'),
+    h('h2', { id: 'privacy-title', tabIndex: -1, autofocus: true }, 'How to check that nothing is sent'),
     h('p', {}, 'The page is one file with everything in it. It computes here, in this browser, and its security policy tells the browser to refuse every connection: no server, no account, no fonts or scripts from elsewhere.'),
     h('ol', {},
       h('li', {}, 'Take the machine off the network, or open the file from a memory stick. Everything works as before.'),
