@@ -1,8 +1,10 @@
 //! Small notebooks and what they give: one file per kind. `expect` reads a notebook whose lines may end in
 //! `# ! part of a message`: the diagnostics must stand on exactly those lines and say so.
 
+mod comparisons;
 mod expect;
 mod given;
 mod note;
 mod overall;
 mod profile;
+mod trend;

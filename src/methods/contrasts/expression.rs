@@ -10,7 +10,8 @@
 //! quotes where it could be misread: when it is a number, when it holds a quote, or when it contains an operator
 //! between the names of two other levels. A quote inside quotes is doubled.
 
-use super::{listed, nearest, unknown_level};
+use super::{listed, unknown_level};
+use crate::table::nearest;
 use std::ops::Range;
 
 /// What is wrong in an expression, and where (bytes of the expression).
@@ -216,7 +217,7 @@ impl<'a> Reader<'a> {
             Some(level) => format!(
                 "\"{name}\" is no level of this study. To multiply, write * between the number and \"{level}\"."
             ),
-            None => unknown_level(name, nearest(name, self.levels), self.levels),
+            None => unknown_level(name, nearest(name, self.levels.iter().map(String::as_str)), self.levels),
         };
         Err(self.error(span, message))
     }
@@ -262,7 +263,8 @@ impl<'a> Reader<'a> {
 
     fn level(&self, name: &str, span: Range<usize>) -> Result<Value, ExpressionError> {
         let Some(index) = self.levels.iter().position(|level| level == name) else {
-            let message = unknown_level(name, nearest(name, self.levels), self.levels);
+            let message =
+                unknown_level(name, nearest(name, self.levels.iter().map(String::as_str)), self.levels);
             return Err(self.error(span, message));
         };
         let mut weights = vec![0.0; self.levels.len()];

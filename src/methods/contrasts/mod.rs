@@ -13,6 +13,7 @@ pub use rank::rank;
 pub use sets::{Set, ready_set};
 pub use words::in_words;
 
+use crate::table::nearest;
 use std::ops::Range;
 
 /// A named contrast with one coefficient a level.
@@ -93,7 +94,7 @@ impl Contrast {
         let mut coefficients = vec![0.0; levels.len()];
         for (level, value) in table {
             let Some(i) = levels.iter().position(|known| known == level) else {
-                let nearest = nearest(level, levels).map(str::to_string);
+                let nearest = nearest(level, levels.iter().map(String::as_str)).map(str::to_string);
                 let (name, level) = (name.to_string(), level.clone());
                 return Err(NoContrast::UnknownLevel { name, level, nearest, levels: levels.to_vec() });
             };
@@ -106,31 +107,6 @@ impl Contrast {
     pub fn half_weight(&self) -> f64 {
         crate::numerics::sums::sum(self.coefficients.iter().map(|c| c.abs())) / 2.0
     }
-}
-
-/// The name in `known` that `word` most probably means: the smallest edit distance, where that is small.
-pub fn nearest<'a>(word: &str, known: &'a [String]) -> Option<&'a str> {
-    let lower = word.to_lowercase();
-    let scored = known.iter().map(|name| (edit_distance(&lower, &name.to_lowercase()), name));
-    let (distance, name) = scored.min_by_key(|(distance, _)| *distance)?;
-    let allowed = (word.chars().count().max(name.chars().count()) / 3).max(1);
-    (distance <= allowed).then_some(name.as_str())
-}
-
-/// Levenshtein's distance in characters.
-fn edit_distance(one: &str, other: &str) -> usize {
-    let other: Vec<char> = other.chars().collect();
-    let mut row: Vec<usize> = (0..=other.len()).collect();
-    for (i, from) in one.chars().enumerate() {
-        let mut diagonal = row[0];
-        row[0] = i + 1;
-        for (j, to) in other.iter().enumerate() {
-            let replaced = diagonal + usize::from(from != *to);
-            diagonal = row[j + 1];
-            row[j + 1] = replaced.min(row[j] + 1).min(diagonal + 1);
-        }
-    }
-    row[other.len()]
 }
 
 /// What to say about a name that is no level.
@@ -192,11 +168,5 @@ mod tests {
     #[test]
     fn thirds_sum_to_zero() {
         assert!(Contrast::from_expression("a", "(none + 15 min + 30 min)/3 - none", &levels()).is_ok());
-    }
-
-    #[test]
-    fn edit_distance_counts_changes() {
-        assert_eq!(edit_distance("kitten", "sitting"), 3);
-        assert_eq!(edit_distance("", "abc"), 3);
     }
 }

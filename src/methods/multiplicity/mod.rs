@@ -1,5 +1,24 @@
 //! Several comparisons decided together, with the error of the whole family in view.
+//!
+//! [`compare`] decides every comparison once. Table, interval, effect size, figure and write-up are views of its
+//! result, so they cannot disagree: the interval of a difference and that of its standardised effect use the same
+//! critical value, and each excludes zero exactly when the adjusted p-value is at most alpha (single-step
+//! procedures). Stepwise procedures have no such two-sided intervals; the intervals of a single-step relative are
+//! shown beside them, named as such, and the rows where they disagree with the decision are listed.
+//!
+//! No overall test gates the comparisons: every procedure here controls its error rate without one.
 
+mod compare;
+mod control;
+mod explain;
+mod given;
 pub mod p_values;
+mod procedure;
+mod range;
+mod scheffe;
 
+pub use compare::{Bounds, CannotCompare, ComparisonRow, Comparisons, IntervalKind, Request, compare};
+pub use explain::{Disagreement, Explanation, carrying_contrast, explain};
+pub use given::{GivenComparisons, GivenRow, adjust_given};
 pub use p_values::PValueMethod;
+pub use procedure::{ALL, Adjust, ErrorRate, Family, Sides, default_adjust, suitable};

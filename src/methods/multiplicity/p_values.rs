@@ -55,30 +55,38 @@ pub fn adjusted(p: &[f64], method: PValueMethod) -> Vec<f64> {
 /// failure, and all that come later are held to the level of that step; a step-up method rejects all that come
 /// before its first success at the level of that step. `None` for Hommel's method, which has no such levels.
 pub fn alpha_per_comparison(p: &[f64], method: PValueMethod, alpha: f64) -> Option<Vec<f64>> {
-    let m = p.len() as f64;
-    let all = |level: f64| Some(vec![level; p.len()]);
-    match method {
-        PValueMethod::None => all(alpha),
-        PValueMethod::Bonferroni => all(alpha / m),
-        PValueMethod::Sidak => all(sidak_level(alpha, m)),
-        PValueMethod::Holm => {
-            Some(levels_down(p, &adjusted(p, method), alpha, |rank| alpha / (m - rank + 1.0)))
+    let levels = levels_by_rank(p.len(), method, alpha)?;
+    let adjusted = adjusted(p, method);
+    let order = ascending(p);
+    let judged_at = match method {
+        PValueMethod::Holm | PValueMethod::HolmSidak => {
+            let failed = order.iter().position(|i| adjusted[*i] > alpha).unwrap_or(p.len());
+            by_rank(&order, |rank| levels[rank.min(failed)])
         }
-        PValueMethod::HolmSidak => {
-            Some(levels_down(p, &adjusted(p, method), alpha, |rank| sidak_level(alpha, m - rank + 1.0)))
+        PValueMethod::Hochberg | PValueMethod::BenjaminiHochberg | PValueMethod::BenjaminiYekutieli => {
+            let succeeded = order.iter().rposition(|i| adjusted[*i] <= alpha).unwrap_or(0);
+            by_rank(&order, |rank| levels[rank.max(succeeded)])
         }
-        PValueMethod::Hochberg => {
-            Some(levels_up(p, &adjusted(p, method), alpha, |rank| alpha / (m - rank + 1.0)))
-        }
-        PValueMethod::BenjaminiHochberg => {
-            Some(levels_up(p, &adjusted(p, method), alpha, |rank| alpha * rank / m))
-        }
-        PValueMethod::BenjaminiYekutieli => {
-            let divisor = m * harmonic(p.len());
-            Some(levels_up(p, &adjusted(p, method), alpha, |rank| alpha * rank / divisor))
-        }
+        _ => levels,
+    };
+    Some(judged_at)
+}
+
+/// The levels that `m` p-values will be judged at, from the smallest p-value to the largest, before they are known;
+/// `None` for Hommel's method, which has no such levels.
+pub fn levels_by_rank(m: usize, method: PValueMethod, alpha: f64) -> Option<Vec<f64>> {
+    let size = m as f64;
+    let level = |rank: f64| match method {
+        PValueMethod::None => Some(alpha),
+        PValueMethod::Bonferroni => Some(alpha / size),
+        PValueMethod::Sidak => Some(sidak_level(alpha, size)),
+        PValueMethod::Holm | PValueMethod::Hochberg => Some(alpha / (size - rank + 1.0)),
+        PValueMethod::HolmSidak => Some(sidak_level(alpha, size - rank + 1.0)),
+        PValueMethod::BenjaminiHochberg => Some(alpha * rank / size),
+        PValueMethod::BenjaminiYekutieli => Some(alpha * rank / (size * harmonic(m))),
         PValueMethod::Hommel => None,
-    }
+    };
+    (1..=m).map(|rank| level(rank as f64)).collect()
 }
 
 /// 1 - (1 - p)^m without the loss of small p, and never below p by rounding.
@@ -147,20 +155,7 @@ fn hommel(p: &[f64]) -> Vec<f64> {
     result
 }
 
-/// Levels of a step-down method: later hypotheses are held to the level of the step that failed.
-fn levels_down(p: &[f64], adjusted: &[f64], alpha: f64, level: impl Fn(f64) -> f64) -> Vec<f64> {
-    let order = ascending(p);
-    let failed = order.iter().position(|i| adjusted[*i] > alpha).unwrap_or(p.len());
-    by_rank(&order, |rank| level((rank.min(failed) + 1) as f64))
-}
-
-/// Levels of a step-up method: earlier hypotheses are held to the level of the step that succeeded.
-fn levels_up(p: &[f64], adjusted: &[f64], alpha: f64, level: impl Fn(f64) -> f64) -> Vec<f64> {
-    let order = ascending(p);
-    let succeeded = order.iter().rposition(|i| adjusted[*i] <= alpha).unwrap_or(0);
-    by_rank(&order, |rank| level((rank.max(succeeded) + 1) as f64))
-}
-
+/// `value` of each hypothesis by its rank from 0.
 fn by_rank(order: &[usize], value: impl Fn(usize) -> f64) -> Vec<f64> {
     let mut result = vec![0.0; order.len()];
     order.iter().enumerate().for_each(|(rank, i)| result[*i] = value(rank));

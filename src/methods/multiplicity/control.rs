@@ -1,0 +1,39 @@
+//! Each level against a control: Dunnett (1955, 1964), exact for any group sizes.
+//!
+//! The t statistics share the control's mean: ρ_ij = λ_i λ_j with λ_i² = v_0 / (v_0 + v_i), v the variances of the
+//! means, which is n_i / (n_i + n_0) with one error term.
+
+use super::Sides;
+use crate::numerics::OutOfDomain;
+use crate::study::Estimates;
+
+/// The loading λ of every level but the control, in their order. The covariance of the means must be diagonal.
+pub fn loadings(estimates: &Estimates, control: usize) -> Vec<f64> {
+    let v = |i: usize| estimates.covariance[(i, i)];
+    let others = (0..estimates.means.len()).filter(|i| *i != control);
+    others.map(|i| (v(control) / (v(control) + v(i))).sqrt()).collect()
+}
+
+/// Adjusted p-value of a comparison with this t: P(max |T| ≥ |t|), or P(max T ≥ t) towards the side asked for.
+///
+/// # Errors
+/// [`OutOfDomain`] always, until the distribution of the largest of these t statistics is among the distributions.
+pub fn adjusted_p(_t: f64, _loadings: &[f64], df: f64, _sides: Sides) -> Result<f64, OutOfDomain> {
+    Err(not_there(df))
+}
+
+/// The critical value d: differences of more than d standard errors are significant at `alpha`.
+///
+/// # Errors
+/// [`OutOfDomain`] always, until the distribution of the largest of these t statistics is among the distributions.
+pub fn critical(_alpha: f64, _loadings: &[f64], df: f64, _sides: Sides) -> Result<f64, OutOfDomain> {
+    Err(not_there(df))
+}
+
+fn not_there(df: f64) -> OutOfDomain {
+    OutOfDomain {
+        argument: "df of Dunnett's distribution, which is not built yet,",
+        value: df,
+        allowed: "left to another procedure",
+    }
+}

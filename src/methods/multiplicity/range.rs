@@ -1,0 +1,30 @@
+//! All pairs by the studentized range: Tukey (1953) and Kramer (1956) with one error term, Games and Howell
+//! (1976) with a variance for each level.
+//!
+//! q = √2 |t|, referred to the range of k means. With one error term and unequal group sizes the procedure is
+//! conservative (Hayter 1984, Ann. Statist. 12, 61–75); with a variance each and Satterthwaite's df per pair it is
+//! approximate, and liberal for very small groups.
+
+use crate::numerics::OutOfDomain;
+use crate::numerics::distributions::studentized_range;
+
+/// The statistic q of a pair with this t.
+pub fn q(t: f64) -> f64 {
+    t.abs() * std::f64::consts::SQRT_2
+}
+
+/// Adjusted p-value of a pair of `levels` levels with this t on `df` degrees of freedom.
+///
+/// # Errors
+/// [`OutOfDomain`] from the distribution.
+pub fn adjusted_p(t: f64, levels: usize, df: f64) -> Result<f64, OutOfDomain> {
+    studentized_range::sf(q(t), levels, df)
+}
+
+/// The value of q that is exceeded with probability `alpha`; a difference is t = q / √2 standard errors.
+///
+/// # Errors
+/// [`OutOfDomain`] from the distribution.
+pub fn critical_q(alpha: f64, levels: usize, df: f64) -> Result<f64, OutOfDomain> {
+    studentized_range::upper_quantile(alpha, levels, df)
+}

@@ -1,0 +1,8 @@
+//! Trends over levels with numeric scores.
+
+mod polynomial;
+
+pub use polynomial::{
+    LackOfFit, NoTrend, PolynomialTrend, TrendRequest, TrendRow, Weights, coefficients, degree_name,
+    highest_degree, polynomial,
+};

@@ -1,0 +1,334 @@
+//! Lays out decided comparisons: headline, table, figures, explanation, write-up.
+
+use super::{Laid, cautions, figures, json, words};
+use crate::answer::{Answer, Cell, Precision, Row, Table, number};
+use crate::methods::multiplicity::{
+    Adjust, ComparisonRow, Disagreement, ErrorRate, Explanation, Family, Sides,
+};
+use crate::notebook::kinds::wording::{left_out, listed, outcome_with_unit, p_cell, p_statement, sizes};
+use crate::notebook::outcome::Outcome;
+use crate::study::Variances;
+
+/// Rows that a write-up says one by one; beyond that it says those that differ and sums up the others.
+const SAID_EACH: usize = 10;
+
+/// The settled answer.
+pub fn outcome(laid: &Laid) -> Outcome {
+    let mut answer = Answer::new(headline(laid)).with_table(table(laid));
+    if let Some(beside) = beside(laid) {
+        answer = answer.with_table(beside);
+    }
+    answer = answer.with_figure(figures::differences(laid)).with_figure(figures::groups(laid));
+    if let Some(found) = &laid.explanation {
+        answer = answer.with_text(explanation(laid, found));
+    }
+    answer = answer.with_writeup(writeup(laid));
+    answer.cautions = cautions::of(laid);
+    Outcome::settled(answer, json::results(laid))
+}
+
+fn name(laid: &Laid, row: &ComparisonRow) -> String {
+    words::row_name(&row.name, laid.asked.family)
+}
+
+/// What a row's estimate is: a difference of two sets of means, or any contrast.
+fn estimate_word(laid: &Laid) -> &'static str {
+    if laid.asked.family == Family::Contrasts { "estimate" } else { "difference" }
+}
+
+fn precision(laid: &Laid) -> Precision {
+    Precision::for_column(laid.comparisons.rows.iter().map(|row| row.se))
+}
+
+fn headline(laid: &Laid) -> String {
+    let result = &laid.comparisons;
+    let method =
+        format!("{}, {}", words::procedure(result.adjust), words::error_rate(result.adjust, result.alpha));
+    let found: Vec<&ComparisonRow> = result.rows.iter().filter(|row| row.rejected).collect();
+    let (of, all) = (found.len(), result.rows.len());
+    let says = match (of, all) {
+        (0, 1) => format!("{} is not shown to differ from zero", name(laid, &result.rows[0])),
+        (0, _) => format!("None of the {} shows a difference", words::comparisons(all)),
+        (1, 1) => format!("{}: {}", name(laid, found[0]), direction(laid, found[0])),
+        (of, all) if of == all => format!("All {} show a difference", words::comparisons(all)),
+        (of, all) => format!(
+            "{of} of {} {} a difference",
+            words::comparisons(all),
+            if of == 1 { "shows" } else { "show" }
+        ),
+    };
+    let which = if (1..=3).contains(&of) && all > 1 {
+        let each = found
+            .iter()
+            .map(|row| format!("{} {}", name(laid, row), number::signed(row.estimate, precision(laid))));
+        format!(": {}", listed(each))
+    } else {
+        String::new()
+    };
+    format!("{says}{which} ({method})")
+}
+
+fn direction(laid: &Laid, row: &ComparisonRow) -> String {
+    let size = number::signed(row.estimate, precision(laid));
+    format!("{size}, a difference is shown")
+}
+
+/// Names the method in full: error term, df, side, adjustment, family and its size.
+fn caption(laid: &Laid) -> String {
+    let (result, study) = (&laid.comparisons, laid.study);
+    let k = study.levels.count();
+    format!(
+        "{}: {}; {}, {}; {} over the family of {}, {}",
+        outcome_with_unit(study),
+        words::family(laid.asked, study),
+        words::error_term(study.variances, Some(laid.estimates), k),
+        words::sides(result.sides),
+        words::procedure_in_full(result.adjust, &laid.estimates.n),
+        words::comparisons(result.family_size),
+        words::error_rate(result.adjust, result.alpha),
+    )
+}
+
+fn table(laid: &Laid) -> Table {
+    let result = &laid.comparisons;
+    let statistic = result.rows.first().map_or("t", |row| row.statistic_name);
+    let interval = words::interval(result);
+    let mut table = Table::new(caption(laid))
+        .text_column("Comparison")
+        .number_column(capital(estimate_word(laid)))
+        .number_column(capital(&interval))
+        .number_column(statistic)
+        .number_column("df")
+        .number_column("p, raw")
+        .number_column("judged at")
+        .number_column("p, adjusted")
+        .text_column(format!("Decision at {}", number::percent(result.alpha)))
+        .number_column("d")
+        .number_column("Interval of d")
+        .number_column("g");
+    result.rows.iter().for_each(|row| table.push(table_row(laid, row)));
+    notes(laid).into_iter().fold(table, Table::note)
+}
+
+fn table_row(laid: &Laid, row: &ComparisonRow) -> Row {
+    let (result, precision) = (&laid.comparisons, precision(laid));
+    let effect = row.effect.as_ref();
+    let d_interval = effect.and_then(|effect| effect.d_interval);
+    let two = Precision::decimals(2);
+    let raw = match row.alpha {
+        Some(alpha) => p_cell(row.p, alpha),
+        None => Cell::p_value(row.p),
+    };
+    let cells = [
+        Cell::text(name(laid, row)),
+        Cell::estimate(row.estimate, precision),
+        Cell::interval(row.interval.lower, row.interval.upper, precision),
+        Cell::statistic(row.statistic),
+        Cell::df(row.df),
+        raw,
+        row.alpha.map_or_else(Cell::absent, level_cell),
+        p_cell(row.p_adjusted, result.alpha),
+        Cell::text(words::decision(row, result.sides)),
+        effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.d, two)),
+        d_interval.map_or_else(Cell::absent, |bounds| Cell::interval(bounds.lower, bounds.upper, two)),
+        effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.g, two)),
+    ];
+    let row_cells = Row::new(cells);
+    if row.rejected { row_cells.strong() } else { row_cells }
+}
+
+/// A level such as 0.0167: four decimals, or the power of ten that keeps it apart from zero.
+pub fn level_cell(alpha: f64) -> Cell {
+    let shown = if alpha >= 0.001 {
+        number::fixed(alpha, 4)
+    } else {
+        number::estimate(alpha, Precision::from_spread(alpha))
+    };
+    Cell::number(shown, alpha)
+}
+
+/// The first letter as a capital.
+pub fn capital(text: &str) -> String {
+    let mut letters = text.chars();
+    letters.next().map(|first| first.to_uppercase().to_string()).unwrap_or_default() + letters.as_str()
+}
+
+fn notes(laid: &Laid) -> Vec<String> {
+    let (result, study) = (&laid.comparisons, laid.study);
+    let alpha = number::plain(result.alpha);
+    let mut notes =
+        vec![format!("Analysed: {}.", sizes(&laid.estimates.labels, laid.estimates.n.iter().copied()))];
+    notes.extend(left_out(study));
+    if study.levels.order_of_appearance {
+        notes.push(
+            "The levels stand in the order of their first appearance in the data; the study can set another."
+                .to_string(),
+        );
+    }
+    if result.rows.iter().any(|row| row.alpha.is_some())
+        && result.adjust.error_rate() != ErrorRate::PerComparison
+    {
+        notes.push(format!(
+            "Two readings of one decision: the adjusted p against {alpha}, or the raw p against the level in \"judged at\". Never both corrections at once."
+        ));
+    }
+    notes.push(effect_note(laid));
+    if laid.asked.family == Family::Contrasts {
+        let rank = crate::methods::contrasts::rank(&json::coefficients(&laid.asked.contrasts));
+        if rank < result.family_size {
+            notes.push(format!(
+                "The {} contrasts carry {rank} independent questions: some of them follow from others.",
+                result.family_size
+            ));
+        }
+        let each = result.rows.iter().map(|row| format!("{}: {}", row.name, row.words));
+        notes.push(format!("In words: {}.", each.collect::<Vec<_>>().join("; ")));
+    }
+    notes
+}
+
+fn effect_note(laid: &Laid) -> String {
+    let by = match laid.study.variances {
+        Variances::Equal => "the SD pooled over all levels",
+        Variances::Unequal => "the root of the mean variance of the levels compared",
+    };
+    let scaled = laid.asked.contrasts.iter().any(|contrast| (contrast.half_weight() - 1.0).abs() > 1e-9);
+    let scale = if scaled {
+        " Contrasts are scaled for it to the mean of one set less the mean of another."
+    } else {
+        ""
+    };
+    format!(
+        "d: the difference divided by {by}; g: the same without its small-sample bias. The interval of d is from the noncentral t at the level of the row's critical value, so it agrees with the interval of the difference.{scale}"
+    )
+}
+
+/// Other procedures beside the one that decides.
+fn beside(laid: &Laid) -> Option<Table> {
+    if laid.also.is_empty() {
+        return None;
+    }
+    let result = &laid.comparisons;
+    let mut table = Table::new(format!(
+        "The same {} under other procedures: adjusted p-values. {} decides, as chosen; the others are for comparison.",
+        words::comparisons(result.family_size),
+        capital(words::procedure(result.adjust))
+    ))
+    .text_column("Comparison")
+    .number_column(capital(words::procedure(result.adjust)));
+    for (adjust, _) in &laid.also {
+        table = table.number_column(capital(words::procedure(*adjust)));
+    }
+    for (i, row) in result.rows.iter().enumerate() {
+        let others = laid.also.iter().map(|(_, p)| p_cell(p[i], result.alpha));
+        let first = [Cell::text(name(laid, row)), p_cell(row.p_adjusted, result.alpha)];
+        table.push(Row::new(first.into_iter().chain(others)));
+    }
+    Some(table)
+}
+
+/// Why the overall test and the comparisons differ, on the study's own numbers.
+fn explanation(laid: &Laid, found: &Explanation) -> String {
+    let result = &laid.comparisons;
+    let test = &found.overall;
+    let overall = format!(
+        "F({}, {}) = {}, {}",
+        number::df(test.df1),
+        number::df(test.df2),
+        number::statistic(test.f),
+        p_statement(test.p, result.alpha)
+    );
+    let nearest = &result.rows[found.nearest];
+    let near =
+        format!("{} (adjusted {})", name(laid, nearest), p_statement(nearest.p_adjusted, result.alpha));
+    let carrying = format!(
+        "{} ({}, t = {})",
+        found.carrying_words,
+        number::signed(found.carrying_estimate.estimate, precision(laid)),
+        number::statistic(found.carrying_estimate.estimate / found.carrying_estimate.se)
+    );
+    match found.disagreement {
+        Disagreement::OverallOnly => format!(
+            "Why the overall test is significant ({overall}) and no comparison here is: the overall test asks whether any contrast of the means differs from zero, and it is carried by this one: {carrying}. It is not among the comparisons, or it is judged more strictly among {}. The comparison nearest to significance is {near}. Both results stand: the levels differ somewhere, and it is not shown between which of those compared.",
+            words::comparisons(result.family_size)
+        ),
+        Disagreement::ComparisonsOnly => format!(
+            "Why a comparison is significant ({near}) and the overall test is not ({overall}): the overall test spreads its power over all {} independent directions in which {} means can differ, and a comparison looks in one. The overall test is carried by this contrast: {carrying}. The comparisons control their own error rate, so they need no significant overall test before them.",
+            number::df(test.df1),
+            laid.estimates.labels.len()
+        ),
+    }
+}
+
+fn writeup(laid: &Laid) -> String {
+    let (result, study) = (&laid.comparisons, laid.study);
+    let opening = format!(
+        "{} was compared over {} ({}; {}, {}; {} over {}, {}).",
+        capital(&outcome_with_unit(study)),
+        words::family(laid.asked, study),
+        sizes(&laid.estimates.labels, laid.estimates.n.iter().copied()),
+        words::error_term(study.variances, Some(laid.estimates), study.levels.count()),
+        words::sides(result.sides),
+        words::procedure_in_full(result.adjust, &laid.estimates.n),
+        words::comparisons(result.family_size),
+        words::error_rate(result.adjust, result.alpha),
+    );
+    let all = result.rows.len() <= SAID_EACH;
+    let said = result.rows.iter().filter(|row| all || row.rejected).take(SAID_EACH * 3);
+    let mut sentences: Vec<String> = vec![opening];
+    sentences.extend(said.map(|row| row_sentence(laid, row)));
+    if !all {
+        sentences.extend(others(laid));
+    }
+    sentences.join(" ")
+}
+
+/// "B − A: difference 2.59 (simultaneous 95 % interval 0.7 to 4.5), q(12) = 5.22, adjusted p = 0.008, d = 2.24 (0.47 to 3.97), g = 2.09; a difference is shown."
+fn row_sentence(laid: &Laid, row: &ComparisonRow) -> String {
+    let (result, precision) = (&laid.comparisons, precision(laid));
+    let two = Precision::decimals(2);
+    let size = estimate_word(laid);
+    let p_name = if result.adjust == Adjust::PValues(crate::methods::multiplicity::PValueMethod::None) {
+        ""
+    } else {
+        "adjusted "
+    };
+    let statistic = match row.statistic_name {
+        "q" => format!("q({}, {})", laid.estimates.labels.len(), number::df(row.df)),
+        other => format!("{other}({})", number::df(row.df)),
+    };
+    let effect = row.effect.as_ref().map_or_else(String::new, |effect| {
+        let bounds = effect.d_interval.map_or_else(String::new, |it| {
+            format!(" ({})", number::interval_in_words(it.lower, it.upper, two))
+        });
+        format!(", d = {}{bounds}, g = {}", number::fixed(effect.d, 2), number::fixed(effect.g, 2))
+    });
+    let decided = match (row.rejected, result.sides) {
+        (true, _) => "a difference is shown",
+        (false, Sides::Both) => "a difference is not shown",
+        (false, _) => "a difference in this direction is not shown",
+    };
+    format!(
+        "{}: {size} {} ({} {}), {statistic} = {}, {p_name}{}{effect}; {decided}.",
+        name(laid, row),
+        number::estimate(row.estimate, precision),
+        words::interval(result),
+        number::interval_in_words(row.interval.lower, row.interval.upper, precision),
+        number::statistic(row.statistic),
+        p_statement(row.p_adjusted, result.alpha),
+    )
+}
+
+fn others(laid: &Laid) -> Option<String> {
+    let result = &laid.comparisons;
+    let rest = result.rows.iter().filter(|row| !row.rejected);
+    let smallest = rest.clone().map(|row| row.p_adjusted).fold(f64::INFINITY, f64::min);
+    let count = rest.count();
+    let clause = if count == 1 { "The other comparison is" } else { "The other comparisons are" };
+    (count > 0).then(|| {
+        format!(
+            "{clause} not shown to differ ({count} rows, smallest adjusted {}).",
+            p_statement(smallest, result.alpha)
+        )
+    })
+}

@@ -1,0 +1,326 @@
+//! Lays out a fitted trend: headline, tables, figure, write-up, cautions.
+
+use super::{Laid, json, plan, words};
+use crate::answer::figure::{self, Point, Span, Trend, TrendPoint};
+use crate::answer::{Answer, Cell, Figure, Precision, Row, Table, number};
+use crate::methods::trend::{LackOfFit, TrendRow, Weights};
+use crate::notebook::kinds::wording::{left_out, listed, outcome_with_unit, p_cell, p_statement, sizes};
+use crate::notebook::outcome::Outcome;
+use crate::numerics::distributions::student_t;
+use crate::study::{DegreesOfFreedom, Variances};
+
+/// Points of the drawn curve.
+const CURVE: usize = 120;
+
+/// The settled answer.
+pub fn outcome(laid: &Laid) -> Outcome {
+    let mut answer = Answer::new(headline(laid)).with_table(table(laid));
+    if !laid.trend.lack_of_fit.is_empty() {
+        answer = answer.with_table(lack_of_fit(laid));
+    }
+    answer = answer.with_figure(drawing(laid)).with_table(contrasts(laid)).with_writeup(writeup(laid));
+    answer.cautions = cautions(laid);
+    Outcome::settled(answer, json::results(laid))
+}
+
+fn shown(laid: &Laid, row: &TrendRow) -> bool {
+    row.p <= laid.asked.alpha
+}
+
+fn headline(laid: &Laid) -> String {
+    let found = laid.trend.rows.iter().filter(|row| shown(laid, row));
+    let parts: Vec<String> = found
+        .map(|row| {
+            format!(
+                "{} trend, {} ({})",
+                row.name,
+                words::direction(row),
+                p_statement(row.p, laid.asked.alpha)
+            )
+        })
+        .collect();
+    let (outcome, factor) = (&laid.study.outcome, &laid.study.factor);
+    match parts.as_slice() {
+        [] => {
+            let linear = laid.trend.rows.first().map_or_else(String::new, |row| {
+                format!(" (linear: {})", p_statement(row.p, laid.asked.alpha))
+            });
+            format!(
+                "A trend of {outcome} over the scores of {factor} is not shown up to degree {}{linear}",
+                laid.asked.degree
+            )
+        }
+        parts => format!("{outcome} follows the scores of {factor}: {}", listed(parts.iter().cloned())),
+    }
+}
+
+/// The error term in full.
+fn error_term(laid: &Laid) -> String {
+    match (&laid.estimates.df, laid.study.variances) {
+        (DegreesOfFreedom::Common(df), Variances::Equal) => {
+            format!(
+                "t tests with one SD pooled over all {} levels (df {})",
+                laid.estimates.labels.len(),
+                number::df(*df)
+            )
+        }
+        _ => "t tests with separate variances (Satterthwaite's df per contrast)".to_string(),
+    }
+}
+
+fn method(laid: &Laid) -> String {
+    format!(
+        "polynomial trends up to degree {} over the scores {} of {}; {}; {}, two-sided, each judged by itself at {}",
+        laid.asked.degree,
+        words::scores(&laid.asked.scores),
+        laid.study.factor,
+        words::weights(laid.asked.weights),
+        error_term(laid),
+        number::percent(laid.asked.alpha)
+    )
+}
+
+fn table(laid: &Laid) -> Table {
+    let level = number::percent(laid.asked.confidence);
+    let mut table = Table::new(format!("{}: {}", outcome_with_unit(laid.study), method(laid)))
+        .text_column("Trend")
+        .text_column("Looks for")
+        .number_column("Coefficient")
+        .number_column(format!("{level} interval"))
+        .number_column("t")
+        .number_column("df")
+        .number_column("p")
+        .text_column(format!("Decision at {}", number::percent(laid.asked.alpha)))
+        .number_column("SS")
+        .number_column("Share of SS between")
+        .number_column("d")
+        .number_column("Interval of d")
+        .number_column("g");
+    laid.trend.rows.iter().for_each(|row| table.push(table_row(laid, row)));
+    let mut notes = vec![
+        "Coefficient: what the fitted curve has of this degree, per unit of score (linear), per squared unit (quadratic) and so on.".to_string(),
+        "A trend of degree 1 is a straight line; each further degree lets the curve bend once more.".to_string(),
+        share_note(laid),
+        "d: the contrast, scaled to the mean of one set less the mean of another, divided by the SD; g: without its small-sample bias.".to_string(),
+    ];
+    notes.extend(left_out(laid.study));
+    notes.into_iter().fold(table, Table::note)
+}
+
+fn share_note(laid: &Laid) -> String {
+    let total =
+        number::estimate(laid.trend.ss_between, Precision::from_spread(laid.trend.ss_between / 100.0));
+    let even = laid.estimates.n.windows(2).all(|pair| pair[0] == pair[1]);
+    if laid.asked.weights == Weights::N || even {
+        format!(
+            "The shares are of the sum of squares between the groups, {total}; with all degrees they add up to it."
+        )
+    } else {
+        format!(
+            "The shares are of the sum of squares between the groups, {total}; with unequal group sizes the textbook contrasts overlap, so they do not add up."
+        )
+    }
+}
+
+fn table_row(laid: &Laid, row: &TrendRow) -> Row {
+    let precision = Precision::from_spread((row.slope_interval.upper - row.slope_interval.lower) / 2.0);
+    let ss = Precision::from_spread(laid.trend.ss_between / 100.0);
+    let two = Precision::decimals(2);
+    let effect = row.effect.as_ref();
+    let bounds = effect.and_then(|effect| effect.d_interval);
+    let decision = if shown(laid, row) { words::direction(row) } else { "not shown" };
+    let cells = Row::new([
+        Cell::text(row.name),
+        Cell::text(words::meaning(row.degree)),
+        Cell::estimate(row.slope, precision),
+        Cell::interval(row.slope_interval.lower, row.slope_interval.upper, precision),
+        Cell::statistic(row.t),
+        Cell::df(row.df),
+        p_cell(row.p, laid.asked.alpha),
+        Cell::text(decision),
+        Cell::estimate(row.ss, ss),
+        row.share.map_or_else(Cell::absent, |share| Cell::number(number::percent(share), share)),
+        effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.d, two)),
+        bounds.map_or_else(Cell::absent, |it| Cell::interval(it.lower, it.upper, two)),
+        effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.g, two)),
+    ]);
+    if shown(laid, row) { cells.strong() } else { cells }
+}
+
+fn lack_of_fit(laid: &Laid) -> Table {
+    let method = match laid.study.variances {
+        Variances::Equal => "F test against the SD pooled over all levels",
+        Variances::Unequal => "Johansen's F test with separate variances",
+    };
+    let mut table = Table::new(format!("Lack of fit: what the curve up to a degree leaves over ({method})"))
+        .text_column("Curve")
+        .number_column("F")
+        .number_column("df 1")
+        .number_column("df 2")
+        .number_column("p")
+        .text_column("Reading");
+    for left in &laid.trend.lack_of_fit {
+        let test = &left.test;
+        table.push(Row::new([
+            Cell::text(format!("up to degree {}", left.degree)),
+            Cell::statistic(test.f),
+            Cell::df(test.df1),
+            Cell::df(test.df2),
+            p_cell(test.p, laid.asked.alpha),
+            Cell::text(reading(laid, left)),
+        ]));
+    }
+    table
+}
+
+fn reading(laid: &Laid, left: &LackOfFit) -> &'static str {
+    if left.test.p <= laid.asked.alpha {
+        "the means depart from this curve"
+    } else {
+        "a departure is not shown"
+    }
+}
+
+/// The order and the scores in use, with every contrast.
+fn contrasts(laid: &Laid) -> Table {
+    let estimates = laid.estimates;
+    let precision =
+        Precision::for_column((0..estimates.n.len()).map(|i| estimates.covariance[(i, i)].sqrt()));
+    let from = if laid.asked.own_scores { "this cell" } else { "the study" };
+    let mut table = Table::new(format!("Order, scores (from {from}) and contrast coefficients in use"))
+        .text_column("Level")
+        .number_column("Score")
+        .number_column("n")
+        .number_column("Mean");
+    for row in &laid.trend.rows {
+        table = table.number_column(row.name);
+    }
+    for (i, level) in estimates.labels.iter().enumerate() {
+        let first = [
+            Cell::text(level.clone()),
+            Cell::number(number::plain(laid.asked.scores[i]), laid.asked.scores[i]),
+            Cell::count(estimates.n[i]),
+            Cell::estimate(estimates.origin + estimates.means[i], precision),
+        ];
+        let weights = laid.trend.rows.iter().map(|row| plan::coefficient(&row.coefficients, i));
+        table.push(Row::new(first.into_iter().chain(weights)));
+    }
+    table
+}
+
+fn drawing(laid: &Laid) -> Figure {
+    let (study, estimates, scores) = (laid.study, laid.estimates, &laid.asked.scores);
+    let points = (0..estimates.labels.len()).map(|i| TrendPoint {
+        label: estimates.labels[i].clone(),
+        x: scores[i],
+        mean: estimates.origin + estimates.means[i],
+        interval: mean_interval(laid, i),
+    });
+    let (first, last) = (scores[0], scores[scores.len() - 1]);
+    let curve = (0..=CURVE).map(|step| {
+        let share = step as f64 / CURVE as f64;
+        let x = first * (1.0 - share) + last * share;
+        Point { x, y: estimates.origin + laid.trend.at(x) }
+    });
+    let spread = match study.variances {
+        Variances::Equal => "SD pooled over all levels",
+        Variances::Unequal => "own SD",
+    };
+    let through = if laid.asked.degree + 1 == scores.len() { ", through every mean" } else { "" };
+    figure::trend(&Trend {
+        title: format!("{} over the scores of {}", study.outcome, study.factor),
+        x_axis: format!("Score of {}", study.factor),
+        y_axis: outcome_with_unit(study),
+        bars: format!(
+            "Bars: mean with its {} interval, each level by itself ({spread})",
+            number::percent(laid.asked.confidence)
+        ),
+        curve_words: format!("Curve: all trends up to degree {}{through}", laid.asked.degree),
+        points: points.collect(),
+        curve: curve.collect(),
+    })
+}
+
+fn mean_interval(laid: &Laid, i: usize) -> Option<Span> {
+    let estimates = laid.estimates;
+    let df = match &estimates.df {
+        DegreesOfFreedom::Common(df) => *df,
+        DegreesOfFreedom::PerMean(dfs) => dfs[i],
+    };
+    let t = student_t::upper_quantile((1.0 - laid.asked.confidence) / 2.0, df).ok()?;
+    let (mean, reach) = (estimates.origin + estimates.means[i], t * estimates.covariance[(i, i)].sqrt());
+    Some(Span { lower: mean - reach, upper: mean + reach })
+}
+
+fn writeup(laid: &Laid) -> String {
+    let opening = format!(
+        "The trend of {} was examined ({}; {}).",
+        outcome_with_unit(laid.study),
+        method(laid),
+        sizes(&laid.estimates.labels, laid.estimates.n.iter().copied())
+    );
+    let rows = laid.trend.rows.iter().map(|row| row_sentence(laid, row));
+    let last = laid.trend.lack_of_fit.iter().find(|left| left.degree == laid.asked.degree).map(|left| {
+        let test = &left.test;
+        format!(
+            "Beyond degree {}: F({}, {}) = {}, {}; {}.",
+            left.degree,
+            number::df(test.df1),
+            number::df(test.df2),
+            number::statistic(test.f),
+            p_statement(test.p, laid.asked.alpha),
+            reading(laid, left)
+        )
+    });
+    std::iter::once(opening).chain(rows).chain(last).collect::<Vec<_>>().join(" ")
+}
+
+fn row_sentence(laid: &Laid, row: &TrendRow) -> String {
+    let precision = Precision::from_spread((row.slope_interval.upper - row.slope_interval.lower) / 2.0);
+    let share = row.share.map_or_else(String::new, |share| {
+        format!(", {} of the sum of squares between the groups", number::percent(share))
+    });
+    let two = Precision::decimals(2);
+    let effect = row.effect.as_ref().map_or_else(String::new, |effect| {
+        let bounds = effect.d_interval.map_or_else(String::new, |it| {
+            format!(" ({})", number::interval_in_words(it.lower, it.upper, two))
+        });
+        format!(", d = {}{bounds}, g = {}", number::fixed(effect.d, 2), number::fixed(effect.g, 2))
+    });
+    let decided = if shown(laid, row) { words::direction(row) } else { "not shown" };
+    let name = words::capital(row.name);
+    format!(
+        "{name} trend: coefficient {} ({} interval {}), t({}) = {}, {}{share}{effect}; {decided}.",
+        number::estimate(row.slope, precision),
+        number::percent(laid.asked.confidence),
+        number::interval_in_words(row.slope_interval.lower, row.slope_interval.upper, precision),
+        number::df(row.df),
+        number::statistic(row.t),
+        p_statement(row.p, laid.asked.alpha),
+    )
+}
+
+fn cautions(laid: &Laid) -> Vec<String> {
+    let mut found = Vec::new();
+    let count = laid.trend.rows.len();
+    if count > 1 {
+        found.push(format!(
+            "Each of the {count} degrees is judged by itself at {}; nothing is adjusted for their number. Say in the plan which degree is the question.",
+            number::percent(laid.asked.alpha)
+        ));
+    }
+    if let Some(linear) = laid.trend.rows.first().filter(|row| shown(laid, row))
+        && let Some(left) =
+            laid.trend.lack_of_fit.iter().find(|left| left.degree == 1 && left.test.p <= laid.asked.alpha)
+    {
+        found.push(format!(
+            "The straight-line part is {} and the means also depart from a straight line ({}): the outcome moves with the scores, but not in a straight line.",
+            words::direction(linear),
+            p_statement(left.test.p, laid.asked.alpha)
+        ));
+    }
+    if laid.study.levels.order_of_appearance {
+        found.push("The levels stand in the order of their first appearance in the data; the scores are matched to that order.".to_string());
+    }
+    found
+}

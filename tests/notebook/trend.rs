@@ -1,0 +1,186 @@
+//! Trends as cells. The numbers are those of the invented dose set, worked independently for this project (see
+//! `tests/reference/trend.rs`).
+
+use super::given::{evaluated, shown, study, summarised};
+use levelwise::answer::Block;
+use levelwise::notebook::outcome::Outcome;
+use levelwise::study::{Observed, Study, Variances};
+
+fn doses(variances: Variances) -> Study {
+    let mut study = study(
+        &[
+            ("none", &[12.0, 15.0, 14.0, 11.0, 13.0, 13.0]),
+            ("10 mg", &[14.0, 16.0, 15.0, 13.0, 17.0]),
+            ("30 mg", &[18.0, 17.0, 15.0, 19.0, 16.0]),
+            ("100 mg", &[19.0, 21.0, 18.0, 22.0]),
+        ],
+        variances,
+    );
+    study.levels.scores = Some(vec![0.0, 10.0, 30.0, 100.0]);
+    study
+}
+
+fn ask(rest: &str) -> String {
+    format!("kind = \"trend\"\nstudy = \"doses\"\n{rest}")
+}
+
+fn settled(rest: &str, study: Study) -> Outcome {
+    let outcome = evaluated(&ask(rest), study);
+    assert!(outcome.diagnostics.is_empty() && !outcome.waiting, "{:?}", outcome.diagnostics);
+    outcome
+}
+
+fn problem(rest: &str, study: Study) -> (String, String) {
+    let text = ask(rest);
+    let outcome = evaluated(&text, study);
+    let [only] = outcome.diagnostics.as_slice() else {
+        panic!("one diagnostic, not {:?}", outcome.diagnostics)
+    };
+    (only.message.clone(), text[only.span.clone()].to_string())
+}
+
+fn near(found: &serde_json::Value, expected: f64) {
+    let found = found.as_f64().unwrap();
+    assert!((found - expected).abs() <= 5.05e-7, "{found}, expected {expected}");
+}
+
+#[test]
+fn every_degree_that_the_levels_allow_is_answered_from_the_real_scores() {
+    let outcome = settled("", doses(Variances::Equal));
+    let rows = &outcome.results["rows"];
+    near(&rows[0]["ss"], 114.725926);
+    near(&rows[0]["t"], 6.774243);
+    near(&rows[0]["slope"], 0.0651852);
+    near(&rows[1]["p"], 0.0415145);
+    near(&rows[2]["p"], 0.580749);
+    assert_eq!(outcome.results["degree"], 3);
+    assert!(outcome.results.get("lack_of_fit").is_none(), "a cubic through four means leaves nothing over");
+    near(&outcome.results["lack_of_fit_by_degree"][0]["F"], 2.614815);
+    assert_eq!(outcome.in_force["degree"], "3");
+    assert_eq!(outcome.in_force["scores"], "0, 10, 30, 100");
+}
+
+#[test]
+fn the_lack_of_fit_is_that_beyond_the_degree_asked_for() {
+    let outcome = settled("degree = 1", doses(Variances::Equal));
+    near(&outcome.results["lack_of_fit"]["F"], 2.614815);
+    near(&outcome.results["lack_of_fit"]["p"], 0.104093);
+    assert_eq!(outcome.results["lack_of_fit"]["df2"], 16.0);
+    assert_eq!(outcome.answer.headline, "count follows the scores of drug: linear trend, rising (p < 0.001)");
+    let writeup = outcome.answer.writeup.as_deref().unwrap();
+    assert!(writeup.contains("Linear trend: coefficient 0.065 (95\u{a0}% interval 0.045 to 0.086), t(16) = 6.77, p < 0.001, 89.77\u{a0}% of the sum of squares"), "{writeup}");
+    assert!(
+        writeup.contains("Beyond degree 1: F(2, 16) = 2.61, p = 0.104; a departure is not shown."),
+        "{writeup}"
+    );
+    let figures = outcome.answer.blocks.iter().filter(|block| matches!(block, Block::Figure(_))).count();
+    assert_eq!(figures, 1);
+}
+
+#[test]
+fn the_order_the_scores_and_the_coefficients_in_use_are_shown() {
+    let text = shown(&settled("", doses(Variances::Equal)));
+    for part in
+        ["Order, scores (from the study) and contrast coefficients in use", "one bend", "two bends", "100 mg"]
+    {
+        assert!(text.contains(part), "{part} is not in {text}");
+    }
+    let own = shown(&settled("scores = [1, 2, 3, 4]", doses(Variances::Equal)));
+    assert!(own.contains("scores (from this cell)"), "{own}");
+}
+
+#[test]
+fn textbook_weights_and_separate_variances_are_named() {
+    let equal = settled("weights = \"equal\"", doses(Variances::Equal));
+    near(&equal.results["rows"][0]["ss"], 106.604735);
+    near(&equal.results["rows"][1]["ss"], 11.950078);
+    assert!(shown(&equal).contains("they do not add up"));
+    let separate = settled("", doses(Variances::Unequal));
+    assert!(shown(&separate).contains("separate variances"));
+    assert!(separate.results["rows"][0]["df"].as_f64().unwrap() < 16.0);
+}
+
+#[test]
+fn summaries_answer_as_the_raw_values_do() {
+    for variances in [Variances::Equal, Variances::Unequal] {
+        let raw = settled("", doses(variances));
+        assert_eq!(raw.results, settled("", summarised(doses(variances))).results);
+    }
+}
+
+#[test]
+fn a_plan_shows_its_contrasts_and_waits() {
+    let plan = Study { observed: Observed::Plan, account: Vec::new(), ..doses(Variances::Equal) };
+    let outcome = evaluated(&ask("degree = 2"), plan);
+    assert!(outcome.waiting && outcome.diagnostics.is_empty(), "{:?}", outcome.diagnostics);
+    assert_eq!(outcome.answer.headline, "Planned: 2 trends over the scores 0, 10, 30, 100; waiting for data");
+    assert_eq!(outcome.results["rows"][0]["coefficients"]["none"], -35.0);
+}
+
+#[test]
+fn levels_without_scores_have_no_trend_and_the_order_in_use_is_said() {
+    let mut without = doses(Variances::Equal);
+    without.levels.scores = None;
+    let (message, place) = problem("", without);
+    assert_eq!(place, "\"doses\"");
+    assert_eq!(
+        message,
+        "A trend needs a number for each level (its dose, its minutes), and the study has no scores. The order in use is \"none\", \"10 mg\", \"30 mg\", \"100 mg\". Set scores in the study, or here, such as scores = [0, 15, 30]."
+    );
+}
+
+#[test]
+fn scores_and_degrees_that_do_not_fit_are_said_at_their_place() {
+    let equal = || doses(Variances::Equal);
+    let cases = [
+        (
+            "scores = [0, 30, 10, 100]",
+            "10",
+            "strictly increasing in the order of the levels, but 10 follows 30",
+        ),
+        ("scores = [0, 0, 10, 100]", "0", "but 0 follows 0"),
+        ("scores = [0, 10]", "[0, 10]", "2 scores are given for 4 levels"),
+        (
+            "degree = 4",
+            "4",
+            "4 levels allow a trend of degree 3 at most: one less than their number. A quartic trend needs 5 levels.",
+        ),
+        ("degree = 5", "5", "a whole number from 1 to 4"),
+        ("degree = 0", "0", "a whole number from 1 to 4"),
+        ("method = \"ranks\"", "\"ranks\"", "is not one of its choices"),
+    ];
+    for (rest, place, message) in cases {
+        let (found, stands) = problem(rest, equal());
+        assert!(found.contains(message), "{rest}: {found}");
+        assert_eq!(stands, place, "{rest}: {found}");
+    }
+}
+
+#[test]
+fn a_trend_that_is_not_shown_is_not_called_flat() {
+    let mut flat =
+        study(&[("a", &[1.0, 2.0, 3.0]), ("b", &[1.1, 2.0, 3.1]), ("c", &[1.2, 2.0, 2.9])], Variances::Equal);
+    flat.levels.scores = Some(vec![0.0, 1.0, 2.0]);
+    let outcome = settled("", flat);
+    assert!(
+        outcome
+            .answer
+            .headline
+            .starts_with("A trend of count over the scores of drug is not shown up to degree 2")
+    );
+    for word in ["flat", "no effect", "are equal"] {
+        assert!(!shown(&outcome).contains(word));
+    }
+}
+
+#[test]
+fn a_line_that_rises_but_does_not_fit_is_cautioned() {
+    let mut bent = study(&[("a", &[0.0, 1.0]), ("b", &[9.0, 10.0]), ("c", &[10.0, 11.0])], Variances::Equal);
+    bent.levels.scores = Some(vec![0.0, 1.0, 2.0]);
+    let outcome = settled("degree = 1", bent);
+    assert!(
+        outcome.answer.cautions.iter().any(|caution| caution.contains("but not in a straight line")),
+        "{:?}",
+        outcome.answer.cautions
+    );
+}
