@@ -54,6 +54,11 @@ impl Ask {
         self.item(field)?.as_str()
     }
 
+    /// The cell's whole text, which all spans count in.
+    pub fn source(&self) -> &str {
+        self.text.raw()
+    }
+
     /// Where the field's value stands; the `kind` line where it is not given.
     pub fn span(&self, field: &str) -> Range<usize> {
         let table = self.text.as_table();

@@ -187,6 +187,23 @@ impl fmt::Display for Decimal {
     }
 }
 
+/// A number to keep offsets from, for numbers that lie from `low` to `high`.
+///
+/// Zero where they lie around zero or spread over half their size: there the nearest `f64` of a number loses nothing
+/// that counts. Else the digits that stand above the spread: 107.8681 for numbers from 107.86814 to 107.86819.
+pub fn common_origin(low: Decimal, high: Decimal) -> Decimal {
+    let (lowest, highest) = (low.to_f64(), high.to_f64());
+    let spread = highest - lowest;
+    if (lowest <= 0.0 && highest >= 0.0) || spread >= lowest.abs().max(highest.abs()) / 2.0 {
+        return Decimal::ZERO;
+    }
+    let nearer_zero = if lowest > 0.0 { low } else { high };
+    if spread <= 0.0 {
+        return nearer_zero;
+    }
+    nearer_zero.truncated(libm::floor(libm::log10(spread)) as i32 + 1)
+}
+
 /// Powers of ten that an `f64` holds exactly.
 const EXACT_POWERS: [f64; 23] = [
     1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18,

@@ -1,11 +1,13 @@
 //! A study's design and what was observed in it: levels, samples, summaries, and the estimates that every
 //! comparison starts from. Nothing here tests a hypothesis; nothing here knows a cell or a page.
 
+mod assign;
 mod estimates;
 mod levels;
 mod sample;
 mod summary;
 
+pub use assign::{Apart, Assigned, MOST_LEVELS, TooManyLevels, assign};
 pub use estimates::{ContrastEstimate, DegreesOfFreedom, Estimates, NoEstimates};
 pub use levels::{LevelAccount, Levels};
 pub use sample::Sample;

@@ -6,7 +6,7 @@
 use super::column::{Column, ColumnKind, NotANumber, Numbers, Source, shortened};
 use super::read::ReadError;
 use super::split::{Cells, Separator};
-use crate::numerics::decimal::{Decimal, DecimalMark, NotADecimal};
+use crate::numerics::decimal::{Decimal, DecimalMark, NotADecimal, common_origin};
 use std::sync::Arc;
 
 /// How many offending cells a column remembers.
@@ -230,22 +230,16 @@ pub(super) fn column(
 fn numbers(source: &Source, mut values: Vec<f64>) -> Numbers {
     values.resize(source.cells.rows(), f64::NAN);
     let present = || values.iter().enumerate().filter(|(_, value)| !value.is_nan());
-    let lowest = present().min_by(|a, b| a.1.total_cmp(b.1)).map(|(row, &value)| (row, value));
-    let highest = present().max_by(|a, b| a.1.total_cmp(b.1)).map(|(row, &value)| (row, value));
-    let (Some((low_row, low)), Some((high_row, high))) = (lowest, highest) else {
+    let lowest = present().min_by(|a, b| a.1.total_cmp(b.1)).map(|(row, _)| row);
+    let highest = present().max_by(|a, b| a.1.total_cmp(b.1)).map(|(row, _)| row);
+    let (Some(lowest), Some(highest)) = (lowest, highest) else {
         return Numbers::new(Decimal::ZERO, values);
     };
-    let nearer_zero = if low > 0.0 { low_row } else { high_row };
-    let size = low.abs().max(high.abs());
-    let spread = high - low;
-    // Around zero, or spread over half their size: the nearest f64 of a value loses nothing that counts.
-    if (low <= 0.0 && high >= 0.0) || spread >= size / 2.0 {
-        return Numbers::new(Decimal::ZERO, values);
-    }
     let parse = |row: usize| Decimal::parse(source.text(row), source.mark).unwrap_or(Decimal::ZERO);
-    let end = parse(nearer_zero);
-    // Keep the digits above the spread: 107.86814 and 107.86819 have the origin 107.8681.
-    let origin = if spread > 0.0 { end.truncated(libm::floor(libm::log10(spread)) as i32 + 1) } else { end };
+    let origin = common_origin(parse(lowest), parse(highest));
+    if origin == Decimal::ZERO {
+        return Numbers::new(origin, values);
+    }
     for (row, value) in values.iter_mut().enumerate() {
         if !value.is_nan() {
             *value = parse(row).minus(origin);

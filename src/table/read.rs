@@ -46,6 +46,11 @@ impl ReadError {
         Self { line: Some(line), row: None, column: None, message }
     }
 
+    /// The same, with the line on which its row begins.
+    fn on_its_line(self, lines: &[u32]) -> Self {
+        Self { line: self.row.and_then(|row| lines.get(row).copied()).or(self.line), ..self }
+    }
+
     pub(super) fn at_cell(row: usize, column: &str, message: String) -> Self {
         Self { line: None, row: Some(row), column: Some(column.to_owned()), message }
     }
@@ -94,7 +99,8 @@ pub fn read(text: &str, options: &ReadOptions) -> Result<Table, ReadError> {
     let mut decimal = first;
     if options.decimal.is_none() {
         let labels: Vec<bool> = kinds.iter().map(|kind| *kind == Some(ColumnKind::Label)).collect();
-        decimal = infer::find_mark(&header, &sources, &tallies, &labels, separator, &mut remarks)?;
+        decimal = infer::find_mark(&header, &sources, &tallies, &labels, separator, &mut remarks)
+            .map_err(|error| error.on_its_line(&lines))?;
         if decimal != first {
             sources = infer::sources(&cells, header.len(), &missing, decimal);
             tallies = sources.iter().map(infer::tally).collect();
@@ -103,7 +109,8 @@ pub fn read(text: &str, options: &ReadOptions) -> Result<Table, ReadError> {
     let parts = header.iter().zip(sources).zip(tallies).zip(kinds);
     let columns = parts
         .map(|(((name, source), tally), kind)| infer::column(name, source, tally, kind))
-        .collect::<Result<_, _>>()?;
+        .collect::<Result<_, _>>()
+        .map_err(|error: ReadError| error.on_its_line(&lines))?;
     let rows = lines.len();
     Ok(Table {
         columns,

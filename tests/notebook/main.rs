@@ -2,9 +2,12 @@
 //! `# ! part of a message`: the diagnostics must stand on exactly those lines and say so.
 
 mod comparisons;
+mod data;
 mod expect;
 mod given;
 mod note;
 mod overall;
 mod profile;
 mod trend;
+mod study;
+mod summary;

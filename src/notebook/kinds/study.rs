@@ -1,9 +1,18 @@
 //! The study: one outcome compared over the levels of one grouping variable.
 
+mod answer;
+mod design;
+mod observe;
+
 use super::{Kind, Read};
+use crate::answer::number;
 use crate::notebook::ask::Ask;
+use crate::notebook::diagnostics::Diagnostic;
 use crate::notebook::fields::{Choice, Field, Holds, KindTable, Piece};
-use crate::notebook::outcome::Outcome;
+use crate::notebook::outcome::{Outcome, Value};
+use crate::study::Study;
+use crate::table::ColumnKind;
+use std::sync::Arc;
 
 const VARIANCES: &[Choice] = &[
     Choice { value: "unequal", shown: "possibly unequal, each level with its own" },
@@ -55,6 +64,57 @@ pub const TABLE: KindTable = KindTable {
     starts_with: "",
 };
 
-pub fn evaluate(_ask: &Ask, _read: &Read) -> Outcome {
-    Outcome::mend(Vec::new())
+/// The study that the ask and the data make, with the account of rows; without data, a plan.
+pub fn evaluate(ask: &Ask, read: &Read) -> Outcome {
+    let mut reader = ask.reader();
+    let design = design::read(&mut reader);
+    let observed = match (design, read.value("data")) {
+        (Some(design), Some(Value::Table(table))) if reader.problems().is_empty() => {
+            observe::rows(&mut reader, design, table)
+        }
+        (Some(design), Some(Value::Groups(groups))) if reader.problems().is_empty() => {
+            observe::groups(&mut reader, design, groups)
+        }
+        (Some(design), None) if reader.problems().is_empty() => observe::plan(&mut reader, design),
+        _ => None,
+    };
+    let offers = offers(ask, read, observed.as_ref().map(|observed| &observed.study));
+    let mut outcome = match (reader.finish(()), observed) {
+        (Err(problems), _) => Outcome::mend(problems),
+        (Ok(()), None) => {
+            Outcome::mend(vec![Diagnostic::new("The study cannot be made.", ask.span("kind"), None)])
+        }
+        (Ok(()), Some(observed)) => {
+            let settled = Outcome::settled(answer::answer(&observed), answer::results(&observed))
+                .with_in_force("levels", answer::levels_in_words(&observed.study))
+                .with_in_force("confidence", number::plain(observed.study.confidence));
+            settled.with_value(Value::Study(Arc::new(observed.study)))
+        }
+    };
+    outcome.choices.extend(offers);
+    outcome
+}
+
+/// What the sentence offers: columns of the table, and the levels as far as they are known.
+fn offers(ask: &Ask, read: &Read, study: Option<&Study>) -> Vec<(&'static str, Vec<String>)> {
+    let mut offers = Vec::new();
+    if let Some(Value::Table(table)) = read.value("data") {
+        let names = |kind: ColumnKind| {
+            let of_kind = table.columns.iter().filter(move |column| column.kind == kind);
+            of_kind.map(|column| column.name.clone())
+        };
+        offers.push(("outcome", names(ColumnKind::Number).collect()));
+        // Numbers may name groups too, a dose for instance; they come after the labels.
+        offers.push(("groups", names(ColumnKind::Label).chain(names(ColumnKind::Number)).collect()));
+    }
+    let levels = match study {
+        Some(study) => study.levels.labels.clone(),
+        None => {
+            ask.reader().texts("levels").unwrap_or_default().into_iter().map(|level| level.value).collect()
+        }
+    };
+    if !levels.is_empty() {
+        offers.push(("control", levels));
+    }
+    offers
 }
