@@ -362,7 +362,7 @@ impl<'a> Reader<'a> {
         let mut texts = Vec::with_capacity(values.len());
         for value in values {
             let span = value.span().unwrap_or_else(|| self.ask.span(name));
-            match written(value) {
+            match written(self.ask.source(), value) {
                 Some(text) => texts.push(At { value: text, span }),
                 None => self.wrong(name, span, value.type_name(), "a text in quotes"),
             }
@@ -471,8 +471,10 @@ impl<'a> Reader<'a> {
             }
         }
         let mut values = Vec::with_capacity(parts.len());
+        let source = self.ask.source();
         for part in parts {
-            let value = table.get(part.name).and_then(Item::as_value).and_then(written);
+            let value =
+                table.get(part.name).and_then(Item::as_value).and_then(|value| written(source, value));
             let Some(value) = value else {
                 self.problem_at(
                     name,
@@ -492,12 +494,11 @@ impl<'a> Reader<'a> {
     }
 }
 
-/// A text or a number as it is written.
-fn written(value: &Value) -> Option<String> {
+/// A text, or a number as it is written in `source`: 0.50 stays 0.50.
+fn written(source: &str, value: &Value) -> Option<String> {
     match value {
         Value::String(text) => Some(text.value().trim().to_string()),
-        Value::Integer(number) => Some(number.display_repr().trim().to_string()),
-        Value::Float(number) => Some(number.display_repr().trim().to_string()),
+        Value::Integer(_) | Value::Float(_) => source.get(value.span()?).map(|text| text.trim().to_string()),
         Value::Boolean(flag) => Some(flag.value().to_string()),
         _ => None,
     }

@@ -182,6 +182,12 @@ fn levels_of_a_column_of_numbers_are_compared_as_numbers() {
 }
 
 #[test]
+fn levels_written_as_numbers_keep_their_digits() {
+    let engine = small("0.50,1\n0.50,2\nrest,3\nrest,5\n", "levels = [0.50, \"rest\"]");
+    assert_eq!(results(&engine, "recall")["levels"][0]["level"], "0.50");
+}
+
+#[test]
 fn a_study_without_data_is_a_plan() {
     let engine = settled(
         "levelwise = 1\n[[cell]]\nkind = \"study\"\nname = \"recall\"\noutcome = \"words\"\ngroups = \"training\"\nlevels = [\"none\", \"15 min\"]\nscores = [0, 15]\ncontrol = \"none\"\nalpha = 0.01\n",
