@@ -7,19 +7,26 @@ import { workerFrom } from './policy.js';
 /** @typedef {import('./messages.js').Message} Message */
 /** @typedef {import('./messages.js').Request} Request */
 
+/** @typedef {{ source: string, module: WebAssembly.Module }} Program */
+
 /**
  * @typedef {object} Engine
  * @property {(request: Request) => number} send the request's number
+ * @property {(program: Program) => void} start
  * @property {() => void} restart
  */
 
 /**
- * An engine that starts at once.
- * @param {{ source: string, module: WebAssembly.Module, onMessage: (message: Message) => void, onFailure: (words: string) => void }} parts
+ * An engine that can be asked at once; requests wait until it is started.
+ * @param {{ onMessage: (message: Message) => void, onFailure: (words: string) => void }} parts
  * @returns {Engine}
  */
-export function createEngine({ source, module, onMessage, onFailure }) {
+export function createEngine({ onMessage, onFailure }) {
   let seq = 0;
+  /** @type {Program|null} */
+  let program = null;
+  /** What was asked before the start. @type {object[]} */
+  let early = [];
   /** @type {Worker|null} */
   let worker = null;
 
@@ -34,9 +41,10 @@ export function createEngine({ source, module, onMessage, onFailure }) {
     onFailure(words);
   }
 
-  function start() {
+  function restart() {
+    if (!program) return;
     worker?.terminate();
-    const fresh = workerFrom(source);
+    const fresh = workerFrom(program.source);
     worker = fresh;
     fresh.onmessage = (/** @type {MessageEvent<Message>} */ event) => {
       if (fresh !== worker) return;
@@ -48,16 +56,23 @@ export function createEngine({ source, module, onMessage, onFailure }) {
       fail(fresh, event.message ?? 'The worker did not start.');
     };
     fresh.onmessageerror = () => fail(fresh, 'A message could not be read.');
-    fresh.postMessage({ type: 'start', module });
+    fresh.postMessage({ type: 'start', module: program.module });
   }
 
-  start();
   return {
     send(request) {
       seq += 1;
-      worker?.postMessage({ ...request, seq });
+      const numbered = { ...request, seq };
+      if (program) worker?.postMessage(numbered);
+      else early.push(numbered);
       return seq;
     },
-    restart: start,
+    start(ready) {
+      program = ready;
+      restart();
+      for (const request of early) worker?.postMessage(request);
+      early = [];
+    },
+    restart,
   };
 }

@@ -21,8 +21,7 @@ const SOON = 20_000;
  * @param {import('./store.js').Store<import('./state.js').State>} store
  */
 export function createSession(store) {
-  /** @type {import('./engine.js').Engine|null} */
-  let engine = null;
+  const engine = createEngine({ onMessage, onFailure });
   let preamble = '';
   let failedAt = -Infinity;
   let tell = (/** @type {string} */ _words) => {};
@@ -41,7 +40,7 @@ export function createSession(store) {
   const saving = [];
 
   function send(/** @type {Request} */ request) {
-    const seq = engine?.send(request) ?? 0;
+    const seq = engine.send(request);
     if (request.type === 'save') saving.push({ name: store.get().fileName, changed });
     else if (request.type === 'rows') asides = [...asides.slice(-50), seq];
     else if (request.type !== 'report') changed = seq;
@@ -96,7 +95,6 @@ export function createSession(store) {
   }
 
   function restart() {
-    if (!engine) return;
     const text = keptText();
     engine.restart();
     recovery = send({ type: 'open', text });
@@ -133,8 +131,7 @@ export function createSession(store) {
     /** @param {(words: string) => void} say */
     async start(say) {
       tell = say;
-      const module = await compiledEngine();
-      engine = createEngine({ source: workerSource(), module, onMessage, onFailure });
+      engine.start({ source: workerSource(), module: await compiledEngine() });
     },
     /**
      * Opens a notebook, after asking if changes would be lost.
