@@ -156,8 +156,15 @@ pub fn compare(request: &Request) -> Result<Comparisons, CannotCompare> {
         _ => Vec::new(),
     };
     let adjusted = adjusted(request, &tests, &raw, &loadings)?;
-    let critical = critical_values(request, &tests, &loadings)?;
-    let alphas = alphas(request, &tests, &raw, &loadings)?;
+    let outside = outside(request);
+    let critical = critical_at(outside, request, &tests, &loadings)?;
+    let deciding = match request.adjust {
+        // The raw p-value of a comparison that just reaches the critical value of the decision is its alpha.
+        Adjust::PValues(_) => Vec::new(),
+        _ if outside == request.alpha => critical.clone(),
+        _ => critical_at(request.alpha, request, &tests, &loadings)?,
+    };
+    let alphas = alphas(request, &tests, &raw, &deciding)?;
     let decided = Decided { adjusted, critical, alphas };
     let rows = (0..tests.len())
         .map(|i| decided.row(i, request, variances, &tests[i]))
@@ -268,11 +275,13 @@ fn adjusted(
     }
 }
 
-/// The number of standard errors that each row's interval reaches, at the confidence asked for.
-fn critical_values(request: &Request, tests: &[Test], loadings: &[f64]) -> Result<Vec<f64>, OutOfDomain> {
-    critical_at(1.0 - request.confidence, request, tests, loadings)
+/// What the intervals leave outside: alpha to the last bit where their confidence is 1 - alpha.
+fn outside(request: &Request) -> f64 {
+    let outside = 1.0 - request.confidence;
+    if (outside - request.alpha).abs() < 1e-12 { request.alpha } else { outside }
 }
 
+/// The number of standard errors that each row's interval reaches.
 fn critical_at(
     outside: f64,
     request: &Request,
@@ -280,13 +289,13 @@ fn critical_at(
     loadings: &[f64],
 ) -> Result<Vec<f64>, OutOfDomain> {
     let (levels, m) = (request.estimates.means.len(), tests.len() as f64);
-    let mut found: Vec<(f64, f64)> = Vec::new();
+    let mut last: Option<(f64, f64)> = None;
     let mut result = Vec::with_capacity(tests.len());
     for test in tests {
         let df = test.contrast.df;
-        // Rows with the same df share one critical value; finding it is the costly part.
-        if let Some((_, value)) = found.iter().find(|(known, _)| *known == df) {
-            result.push(*value);
+        // With one error term all rows share one critical value; finding it is the costly part.
+        if let Some((_, value)) = last.filter(|(known, _)| *known == df) {
+            result.push(value);
             continue;
         }
         let value = match request.adjust {
@@ -308,30 +317,25 @@ fn critical_at(
             Adjust::Dunnett => control::critical(outside, loadings, df, request.sides)?,
             Adjust::Scheffe => scheffe::critical(outside, levels, df)?,
         };
-        found.push((df, value));
+        last = Some((df, value));
         result.push(value);
     }
     Ok(result)
 }
 
-/// The level at which each raw p-value is judged. For a procedure with its own distribution it is the raw p-value
-/// of a comparison that just reaches the critical value.
+/// The level at which each raw p-value is judged, from the critical values of the decision.
 fn alphas(
     request: &Request,
     tests: &[Test],
     raw: &[f64],
-    loadings: &[f64],
+    critical: &[f64],
 ) -> Result<Vec<Option<f64>>, OutOfDomain> {
     if let Adjust::PValues(method) = request.adjust {
         let levels = p_values::alpha_per_comparison(raw, method, request.alpha);
         return Ok(levels.map_or(vec![None; raw.len()], |levels| levels.into_iter().map(Some).collect()));
     }
-    let critical = critical_at(request.alpha, request, tests, loadings)?;
-    tests
-        .iter()
-        .zip(critical)
-        .map(|(test, critical)| beyond(critical, test.contrast.df, request.sides).map(Some))
-        .collect()
+    let each = tests.iter().zip(critical);
+    each.map(|(test, critical)| beyond(*critical, test.contrast.df, request.sides).map(Some)).collect()
 }
 
 /// The probability that t on `df` goes beyond `critical` standard errors on the sides that count.

@@ -47,8 +47,8 @@ const ADJUSTMENTS: &[Choice] = &[
 ];
 const SIDES: &[Choice] = &[
     Choice { value: "both", shown: "in either direction" },
-    Choice { value: "greater", shown: "only whether it is greater" },
-    Choice { value: "less", shown: "only whether it is less" },
+    Choice { value: "greater", shown: "only upwards" },
+    Choice { value: "less", shown: "only downwards" },
 ];
 
 pub const TABLE: KindTable = KindTable {
@@ -75,7 +75,7 @@ pub const TABLE: KindTable = KindTable {
             "adjustment",
             "How the error rate of the family is kept",
         )
-        .or("what suits the family"),
+        .or("the suitable procedure"),
         Field::new("sides", Holds::Choice(SIDES), "direction", "Which direction of a difference counts")
             .or("in either direction"),
         Field::new(
@@ -86,7 +86,7 @@ pub const TABLE: KindTable = KindTable {
         )
         .or("nothing"),
         Field::new("alpha", Holds::Between(0.0, 1.0), "error rate", "The family's error rate")
-            .or("the study's"),
+            .or("the study's rate"),
     ],
     sentence: &[
         Piece::Words("Compare"),
@@ -98,14 +98,14 @@ pub const TABLE: KindTable = KindTable {
         ),
         Piece::When("family", &["contrasts"], &[Piece::Words(":"), Piece::Blank("contrasts")]),
         Piece::When("family", &["given p-values"], &[Piece::Words(":"), Piece::Blank("given")]),
-        Piece::Words(", keeping the error rate at"),
+        Piece::Words(", keeping the error at"),
         Piece::Blank("alpha"),
         Piece::Words("with"),
         Piece::Blank("adjust"),
         Piece::When(
             "family",
             &["all pairs", "each against control", "neighbours", "each against the rest", "contrasts"],
-            &[Piece::Words("and asking"), Piece::Blank("sides")],
+            &[Piece::Words("and looking"), Piece::Blank("sides")],
         ),
         Piece::Words("; beside it:"),
         Piece::Blank("also"),

@@ -67,7 +67,7 @@ fn weight(c: f64) -> Cell {
 fn levels_note(asked: &Asked) -> Option<String> {
     let Adjust::PValues(method) = asked.adjust else { return None };
     let m = asked.contrasts.len();
-    // Levels by rank do not depend on the p-values while nothing is rejected and nothing fails; these reject all.
+    // By rank the levels are known before the p-values are.
     let levels = p_values::levels_by_rank(m, method, asked.alpha)?;
     let shown: Vec<String> = levels.iter().take(6).map(|level| level_cell(*level).text).collect();
     let more = if levels.len() > 6 { ", …" } else { "" };

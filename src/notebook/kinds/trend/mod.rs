@@ -37,7 +37,7 @@ pub const TABLE: KindTable = KindTable {
         )
         .or("the highest possible"),
         Field::new("scores", Holds::Numbers, "scores", "Scores to use instead of the study's")
-            .or("the study's"),
+            .or("of the study"),
         Field::new(
             "weights",
             Holds::Choice(WEIGHTS),
@@ -46,7 +46,7 @@ pub const TABLE: KindTable = KindTable {
         )
         .or("by their size"),
         Field::new("alpha", Holds::Between(0.0, 1.0), "error rate", "The error rate of each test")
-            .or("the study's"),
+            .or("the study"),
     ],
     sentence: &[
         Piece::Words("Does the outcome of"),
@@ -59,7 +59,7 @@ pub const TABLE: KindTable = KindTable {
         Piece::Blank("degree"),
         Piece::Words(", weighting the levels"),
         Piece::Blank("weights"),
-        Piece::Words(", each at error rate"),
+        Piece::Words(", each at an error rate of"),
         Piece::Blank("alpha"),
         Piece::Words("."),
     ],
