@@ -8,6 +8,6 @@ mod given;
 mod note;
 mod overall;
 mod profile;
-mod trend;
 mod study;
 mod summary;
+mod trend;

@@ -5,6 +5,7 @@ use super::expect::{cell, check, named, results, settled};
 use levelwise::answer::Block;
 use levelwise::notebook::engine::{Condition, Engine};
 use levelwise::notebook::sentence::{Part, in_words};
+use proptest::prelude::*;
 use serde_json::json;
 
 const TABLE: &str = "\
@@ -433,4 +434,40 @@ fn a_study_of_a_table_that_cannot_be_read_waits() {
     let engine = settled(&with_study("", "", "outcome = \"y\"\ngroups = \"g\""));
     assert_eq!(cell(&engine, 0).condition, Condition::NeedsYou);
     assert_eq!(named(&engine, "recall").condition, Condition::Waiting);
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig { failure_persistence: None, cases: 300, ..ProptestConfig::default() })]
+
+    #[test]
+    fn no_table_and_no_design_makes_the_engine_panic(
+        rows in prop::collection::vec((r#"[ab ]{0,1}|[0-3]"#, r#"-?[0-9.,]{0,3}(e3[0-9]{2})?|NA"#), 0..8),
+        condition in r#"[gy]? ?[<>=]{0,2} ?("a"|[0-9]{1,3})?( (and|or) )?"#,
+        levels in prop::collection::vec("[abc]|[0-3]", 0..4),
+        scores in prop::collection::vec(-2_i32..4, 0..4),
+        equal in any::<bool>(),
+    ) {
+        let rows: String = rows.iter().map(|(g, y)| format!("{g};{y}\n")).collect();
+        let mut fields = format!("outcome = \"y\"\ngroups = \"g\"\nvariances = \"{}equal\"", if equal { "" } else { "un" });
+        if !levels.is_empty() {
+            fields.push_str(&format!("\nlevels = {levels:?}"));
+        }
+        if !scores.is_empty() {
+            fields.push_str(&format!("\nscores = {scores:?}"));
+        }
+        for exclude in ["", &format!("exclude = [{{ where = '{condition}', reason = 'x' }}]\nderive = {{ d = 'log(y) / y' }}")] {
+            let engine = settled(&with_study(&format!("g;y\n{rows}"), exclude, &fields));
+            let study = named(&engine, "recall");
+            if study.condition == Condition::Settled {
+                let results = results(&engine, "recall");
+                let count = |level: &serde_json::Value, key: &str| level[key].as_u64().expect("a count");
+                for level in results["levels"].as_array().expect("levels") {
+                    let parts = ["n", "missing", "excluded"].map(|key| count(level, key));
+                    prop_assert_eq!(count(level, "received"), parts.iter().sum::<u64>());
+                }
+            } else {
+                prop_assert!(study.condition == Condition::Waiting || !study.diagnostics.is_empty());
+            }
+        }
+    }
 }

@@ -274,8 +274,9 @@ fn headline(table: &Table) -> String {
 
 /// Range of the numbers, or the first different texts.
 fn values_in_words(table: &Table, column: &Column) -> String {
-    if column.kind == ColumnKind::Number {
-        let rows = || (0..table.rows).filter_map(|row| Some((column.value(row)?, row)));
+    if let Some(numbers) = &column.numbers {
+        // Offsets stand in the order of the values.
+        let rows = || (0..table.rows).filter_map(|row| Some((numbers.offset(row)?, row)));
         let lowest = rows().min_by(|a, b| a.0.total_cmp(&b.0));
         let highest = rows().max_by(|a, b| a.0.total_cmp(&b.0));
         return match (lowest, highest) {
