@@ -63,7 +63,7 @@ export function createGrid(label, actions) {
 
   function drawHead() {
     const longest = columns().map(({ name, type }, i) => Math.max(name.length + type.length, ...(window?.rows ?? []).map((cells) => cells[i]?.length ?? 0)));
-    const next = [`${Math.max(3, String(total).length) + 3}ch`, ...longest.map((length) => `${Math.min(WIDEST, Math.max(6, length)) + 2}ch`)].join(' ');
+    const next = [`${Math.max(3, String(total).length) + 5}ch`, ...longest.map((length) => `${Math.min(WIDEST, Math.max(6, length)) + 2}ch`)].join(' ');
     // Columns only ever grow while a table is shown: they must not jump about during scrolling.
     if (widths.split(' ').length !== next.split(' ').length) widths = next;
     else widths = next.split(' ').map((width, i) => `${Math.max(parseInt(width, 10), parseInt(widths.split(' ')[i] ?? '0', 10))}ch`).join(' ');
