@@ -37,4 +37,7 @@ const PERMITTED: &[(&str, f64)] = &[
     ("noncentral t, tail", 1e-13),
     // One limit is 1.2e-5 beside a standard error of 1: its last bits are those of the level.
     ("noncentral t, noncentrality", 1e-10),
+    ("noncentral F, tail", 1e-13),
+    ("noncentral F, noncentrality", 1e-12),
+    ("noncentral F, round trip of a quantile", 1e-11),
 ];

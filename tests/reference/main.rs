@@ -8,6 +8,7 @@ mod central;
 mod comparisons;
 mod invariances;
 mod nist_strd;
+mod noncentral_f;
 mod noncentral_t;
 mod one_way;
 mod profile;

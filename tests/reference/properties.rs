@@ -1,7 +1,10 @@
 //! Properties that hold for every argument: no panic, no NaN, tails that add to 1, round trips.
 
 use levelwise::numerics::OutOfDomain;
-use levelwise::numerics::distributions::{beta, chi_squared, fisher_f, normal, student_t};
+use levelwise::numerics::distributions::{
+    beta, chi_squared, fisher_f, noncentral_chi_squared, noncentral_f, noncentral_t, normal, student_t,
+    studentized_range,
+};
 use proptest::prelude::*;
 
 /// Any f64 at all, with the troublesome ones often.
@@ -68,5 +71,75 @@ proptest! {
         let two_sided = 2.0 * student_t::sf(t, df).unwrap();
         let f = fisher_f::sf(t * t, 1.0, df).unwrap();
         prop_assert!((f / two_sided - 1.0).abs() < 1e-12, "{f} {two_sided}");
+    }
+
+    #[test]
+    fn two_groups_make_the_studentized_range_a_t(q in 0.0..60.0f64, df in 0.5..500.0f64) {
+        let t = 2.0 * student_t::sf(q / std::f64::consts::SQRT_2, df).unwrap();
+        let range = studentized_range::sf(q, 2, df).unwrap();
+        prop_assert!((range / t - 1.0).abs() < 1e-12, "{range} {t}");
+    }
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig { failure_persistence: None, ..ProptestConfig::with_cases(300) })]
+
+    #[test]
+    fn the_studentized_range_answers_or_refuses_every_number(q in any_number(), df in any_number(), groups in 0..40usize) {
+        is_probability(studentized_range::cdf(q, groups, df))?;
+        is_probability(studentized_range::sf(q, groups, df))?;
+        is_number(studentized_range::quantile(q, groups, df))?;
+        is_number(studentized_range::upper_quantile(q, groups, df))?;
+    }
+
+    #[test]
+    fn the_studentized_range_falls_with_q_and_rises_with_the_groups(
+        q in 0.1..12.0f64, more in 0.01..1.0f64, df in 1.0..200.0f64, groups in 2..30usize
+    ) {
+        let sf = |q, groups| studentized_range::sf(q, groups, df).unwrap();
+        // Where the tail is nearly 1, neighbours may differ by the error allowed for it.
+        prop_assert!(sf(q + more, groups) <= sf(q, groups) + 1e-12);
+        prop_assert!(sf(q, groups + 1) >= sf(q, groups) - 1e-12);
+        prop_assert!((studentized_range::cdf(q, groups, df).unwrap() + sf(q, groups) - 1.0).abs() < 1e-12);
+        let back = studentized_range::upper_quantile(sf(q, groups), groups, df).unwrap();
+        // Where the tail is nearly 1 its complement decides, and it has lost digits on the way.
+        prop_assume!(sf(q, groups) < 0.999);
+        prop_assert!((back / q - 1.0).abs() < 1e-10, "{back} {q}");
+    }
+
+    #[test]
+    fn noncentral_distributions_answer_or_refuse_every_number(
+        x in any_number(), a in any_number(), b in any_number(), ncp in any_number()
+    ) {
+        for p in [noncentral_t::cdf(x, a, ncp), noncentral_t::sf(x, a, ncp), noncentral_f::cdf(x, a, b, ncp),
+            noncentral_f::sf(x, a, b, ncp), noncentral_chi_squared::cdf(x, a, ncp), noncentral_chi_squared::sf(x, a, ncp)]
+        {
+            is_probability(p)?;
+        }
+        for value in [noncentral_t::quantile(x, a, ncp), noncentral_t::upper_quantile(x, a, ncp),
+            noncentral_t::noncentrality(x, a, b), noncentral_f::quantile(x, a, b, ncp),
+            noncentral_f::upper_quantile(x, a, b, ncp), noncentral_f::noncentrality(x, a, b, ncp),
+            noncentral_chi_squared::quantile(x, a, ncp), noncentral_chi_squared::upper_quantile(x, a, ncp)]
+        {
+            is_number(value)?;
+        }
+    }
+
+    #[test]
+    fn noncentral_tails_add_to_one_and_a_solved_noncentrality_solves(
+        t in -10.0..30.0f64, df in 1.0..200.0f64, df1 in 0.5..20.0f64, ncp in 0.0..300.0f64, p in 0.01..0.99f64
+    ) {
+        let delta = ncp.sqrt();
+        let sum = noncentral_t::cdf(t, df, delta).unwrap() + noncentral_t::sf(t, df, delta).unwrap();
+        prop_assert!((sum - 1.0).abs() < 1e-13, "t: {sum}");
+        let f = t.abs();
+        let sum = noncentral_f::cdf(f, df1, df, ncp).unwrap() + noncentral_f::sf(f, df1, df, ncp).unwrap();
+        prop_assert!((sum - 1.0).abs() < 1e-13, "F: {sum}");
+        let solved = noncentral_t::noncentrality(t, df, p).unwrap();
+        let back = noncentral_t::cdf(t, df, solved).unwrap();
+        prop_assert!((back / p - 1.0).abs() < 1e-10, "t: {back} {p}");
+        let solved = noncentral_f::noncentrality(f, df1, df, p).unwrap();
+        let back = noncentral_f::cdf(f, df1, df, solved).unwrap();
+        prop_assert!((back / p - 1.0).abs() < 1e-10 || solved == 0.0 && back <= p, "F: {back} {p}");
     }
 }

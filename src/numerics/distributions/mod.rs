@@ -8,8 +8,11 @@
 pub mod beta;
 pub mod chi_squared;
 pub mod fisher_f;
+pub mod noncentral_chi_squared;
+pub mod noncentral_f;
 pub mod noncentral_t;
 pub mod normal;
+mod poisson_mixture;
 mod scale_mixture;
 pub mod student_t;
 pub mod studentized_range;
@@ -66,5 +69,23 @@ fn degrees_of_freedom(argument: &'static str, value: f64) -> Result<f64, OutOfDo
         Ok(value)
     } else {
         Err(OutOfDomain { argument, value, allowed: "greater than 0 (at least 1e-10; infinity is allowed)" })
+    }
+}
+
+/// `value` if it can be the noncentrality of a noncentral chi-squared or F.
+fn noncentral(argument: &'static str, value: f64) -> Result<f64, OutOfDomain> {
+    if (0.0..=2.0 * poisson_mixture::LARGEST_MEAN).contains(&value) {
+        Ok(value)
+    } else {
+        Err(OutOfDomain { argument, value, allowed: "from 0 to 1e7" })
+    }
+}
+
+/// `value` if it is a probability that is neither 0 nor 1.
+fn inner_probability(argument: &'static str, value: f64) -> Result<f64, OutOfDomain> {
+    if value > 0.0 && value < 1.0 {
+        Ok(value)
+    } else {
+        Err(OutOfDomain { argument, value, allowed: "greater than 0 and less than 1" })
     }
 }

@@ -7,12 +7,12 @@
 //! # References
 //! 1. Johnson, Kotz and Balakrishnan (1995), Continuous Univariate Distributions 2, chapter 31.
 
-use super::{degrees_of_freedom, normal, probability, scale_mixture};
+use super::{degrees_of_freedom, inner_probability, normal, probability, scale_mixture};
 use crate::numerics::special::incomplete_gamma;
 use crate::numerics::{OutOfDomain, quadrature, roots};
 use std::f64::consts::PI;
 
-const TOLERANCE: f64 = 1e-14;
+const TOLERANCE: f64 = 1e-16;
 
 /// Lower-tail probability P(T <= `t`) with `df` degrees of freedom and noncentrality `ncp`.
 ///
@@ -80,13 +80,7 @@ pub fn upper_quantile(upper_p: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomai
 /// Steiger and Fouladi (1997), in What if there were no significance tests, chapter 9.
 pub fn noncentrality(t: f64, df: f64, lower_p: f64) -> Result<f64, OutOfDomain> {
     let (t, df) = (moderate("t", t)?, degrees_of_freedom("df", df)?);
-    if !(lower_p > 0.0 && lower_p < 1.0) {
-        return Err(OutOfDomain {
-            argument: "lower_p",
-            value: lower_p,
-            allowed: "greater than 0 and less than 1",
-        });
-    }
+    let lower_p = inner_probability("lower_p", lower_p)?;
     if lower_p > 0.5 {
         return Ok(-noncentrality_at_lower(-t, df, 1.0 - lower_p));
     }

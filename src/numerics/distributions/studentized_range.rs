@@ -158,6 +158,9 @@ impl Range {
 
     /// R(w), the probability of a range above w when σ is known.
     fn range_tail(&mut self, w: f64) -> f64 {
+        if w > 80.0 {
+            return 0.0; // below 1e-600
+        }
         let n = self.others;
         let step = self.step;
         quadrature::trapezoid_outward(self.peak.max(0.5 * w), step, |i| {

@@ -32,12 +32,12 @@ pub fn incomplete_beta(a: f64, b: f64, x: f64, y: f64) -> Tails {
     if y == 0.0 {
         return Tails { lower: 1.0, upper: 0.0, slope: 0.0 };
     }
-    let slope = libm::exp(log_density(a, b, x, y));
+    let slope = libm::exp(log_beta_density(a, b, x, y));
     if a * y >= b * x {
-        let lower = (slope * lower_over_density(a, b, x, y)).min(1.0);
+        let lower = (slope * lower_beta_over_density(a, b, x, y)).min(1.0);
         Tails { lower, upper: 1.0 - lower, slope }
     } else {
-        let upper = (slope * lower_over_density(b, a, y, x)).min(1.0);
+        let upper = (slope * lower_beta_over_density(b, a, y, x)).min(1.0);
         Tails { lower: 1.0 - upper, upper, slope }
     }
 }
@@ -75,7 +75,7 @@ pub fn log_beta_quantile(a: f64, b: f64, p: f64, tail: Tail) -> f64 {
 ///
 /// With x = (1 + u) a/(a+b) and y = (1 + v) b/(a+b) the terms a u and b v cancel exactly, which leaves
 /// two terms of one sign.
-fn log_density(a: f64, b: f64, x: f64, y: f64) -> f64 {
+pub fn log_beta_density(a: f64, b: f64, x: f64, y: f64) -> f64 {
     let n = a + b;
     let excess = b * x - a * y;
     a * log_ratio_minus_linear(x * (1.0 + b / a), excess / a)
@@ -85,7 +85,7 @@ fn log_density(a: f64, b: f64, x: f64, y: f64) -> f64 {
 }
 
 /// I(x; a, b) divided by xᵃ yᵇ / B(a, b), for x at most a/(a+b).
-fn lower_over_density(a: f64, b: f64, x: f64, y: f64) -> f64 {
+pub fn lower_beta_over_density(a: f64, b: f64, x: f64, y: f64) -> f64 {
     let (mut term, mut sum) = (1.0 / a, 1.0 / a);
     for n in 0..MAX_TERMS {
         let n = n as f64;

@@ -29,14 +29,13 @@ pub fn incomplete_gamma(a: f64, x: f64) -> Tails {
     if x == f64::INFINITY {
         return Tails { lower: 1.0, upper: 0.0, slope: 0.0 };
     }
-    let density = log_density(a, x);
+    let density = log_gamma_density(a, x);
     let slope = libm::exp(density);
     if x <= a {
-        let lower = (slope * lower_over_density(a, x)).min(1.0);
+        let lower = (slope * lower_gamma_over_density(a, x)).min(1.0);
         Tails { lower, upper: 1.0 - lower, slope }
     } else {
-        let energy = |h| (x - a) * h + x * exp_minus_linear(h);
-        let upper = (slope * tail_integral(energy, x - a, x)).min(1.0);
+        let upper = (slope * upper_gamma_over_density(a, x)).min(1.0);
         Tails { lower: 1.0 - upper, upper, slope }
     }
 }
@@ -96,12 +95,17 @@ fn wilson_hilferty(a: f64, z: f64) -> f64 {
 }
 
 /// log of xᵃ e⁻ˣ / Γ(a).
-fn log_density(a: f64, x: f64) -> f64 {
+pub fn log_gamma_density(a: f64, x: f64) -> f64 {
     a * log_ratio_minus_linear(x / a, (x - a) / a) - stirling_error(a) + 0.5 * libm::log(a / (2.0 * PI))
 }
 
+/// Q(a, x) divided by xᵃ e⁻ˣ / Γ(a), for x >= a.
+pub fn upper_gamma_over_density(a: f64, x: f64) -> f64 {
+    tail_integral(|h| (x - a) * h + x * exp_minus_linear(h), x - a, x)
+}
+
 /// P(a, x) divided by xᵃ e⁻ˣ / Γ(a), for x <= a.
-fn lower_over_density(a: f64, x: f64) -> f64 {
+pub fn lower_gamma_over_density(a: f64, x: f64) -> f64 {
     let (mut term, mut sum) = (1.0 / a, 1.0 / a);
     for n in 1..MAX_TERMS {
         term *= x / (a + n as f64);
