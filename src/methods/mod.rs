@@ -5,5 +5,6 @@ pub mod departure;
 pub mod effect_size;
 pub mod multiplicity;
 pub mod overall;
+pub mod power;
 pub mod profile;
 pub mod trend;

@@ -7,6 +7,7 @@ mod expect;
 mod given;
 mod note;
 mod overall;
+mod power;
 mod profile;
 mod study;
 mod summary;

@@ -1,5 +1,6 @@
 //! The overall test as a cell: what it says, what it hands over, what it refuses.
 
+use super::expect::{named, results, settled};
 use super::given::{blood_counts, evaluated, shown, study, summarised};
 use levelwise::study::{Observed, Variances};
 
@@ -112,4 +113,76 @@ fn pooling_over_unequal_spread_is_cautioned() {
     );
     let cautions = evaluated(MEANS, spread).answer.cautions;
     assert!(cautions.iter().any(|caution| caution.contains("reject too often")), "{cautions:?}");
+}
+
+/// The blood counts as a notebook: data, study, profile and both overall tests. `shift` stands before each value.
+fn notebook(shift: &str, study: &str) -> String {
+    let rows = [
+        ("control", &["7.40", "8.50", "7.20", "8.24", "9.84", "8.32"][..]),
+        ("A", &["9.76", "8.80", "7.68", "9.36"]),
+        ("B", &["12.80", "9.68", "12.16", "9.20", "10.55"]),
+    ];
+    let lines = rows.iter().flat_map(|(drug, values)| {
+        values.iter().map(move |value| match value.split_once('.') {
+            Some((whole, rest)) if !shift.is_empty() => format!("{drug},{shift}{whole:0>2}.{rest}\n"),
+            _ => format!("{drug},{value}\n"),
+        })
+    });
+    format!(
+        r#"levelwise = 1
+[[cell]]
+kind = "data"
+name = "counts"
+table = """
+drug,count
+{}"""
+[[cell]]
+kind = "study"
+name = "trial"
+data = "counts"
+outcome = "count"
+groups = "drug"
+{study}
+[[cell]]
+kind = "profile"
+name = "groups"
+study = "trial"
+[[cell]]
+kind = "overall"
+name = "means"
+study = "trial"
+[[cell]]
+kind = "overall"
+name = "ranks"
+study = "trial"
+test = "ranks"
+"#,
+        lines.collect::<String>()
+    )
+}
+
+#[test]
+fn a_notebook_answers_from_its_table_and_a_shift_of_1e12_changes_no_digit() {
+    let levels = "levels = [\"control\", \"A\", \"B\"]\nvariances = \"equal\"";
+    let engine = settled(&notebook("", levels));
+    let shifted = settled(&notebook("10000000000", levels));
+    for name in ["means", "ranks"] {
+        assert_eq!(results(&engine, name), results(&shifted, name), "{name}");
+    }
+    let f = results(&engine, "means")["F"].as_f64().expect("F");
+    assert!((f - 7.136936).abs() < 1e-6, "{f}");
+    let (near, far) = (results(&engine, "groups"), results(&shifted, "groups"));
+    assert_eq!(near["levene"], far["levene"]);
+    assert_eq!(near["groups"][0]["sd"], far["groups"][0]["sd"]);
+    assert_eq!(far["groups"][0]["min"].as_f64(), Some(1_000_000_000_007.2));
+}
+
+#[test]
+fn a_level_without_rows_is_refused_on_the_study_and_the_cells_after_it_wait() {
+    let engine = settled(&notebook("", "levels = [\"control\", \"A\", \"B\", \"C\"]"));
+    for name in ["groups", "means", "ranks"] {
+        let cell = named(&engine, name);
+        assert_ne!(cell.condition, levelwise::notebook::engine::Condition::Working, "{name}");
+        assert!(cell.outcome.is_none_or(|outcome| !shown(outcome).contains("NaN")), "{name}");
+    }
 }

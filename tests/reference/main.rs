@@ -3,9 +3,11 @@
 
 mod accuracy;
 mod adjustments;
+mod anova_power;
 mod cases;
 mod central;
 mod comparisons;
+mod effect_size;
 mod invariances;
 mod nist_strd;
 mod noncentral_f;

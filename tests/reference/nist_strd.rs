@@ -6,6 +6,7 @@
 //! can reach these digits on the sets with 7 and 13 constant leading digits.
 
 use crate::cases::log_relative_error;
+use levelwise::methods::overall::AnovaTable;
 use levelwise::study::{Sample, Summary};
 use levelwise::table::{ColumnKind, ReadOptions, Table, read};
 use serde_json::Value;
@@ -61,17 +62,16 @@ fn f_and_the_sums_of_squares_have_14_digits_on_every_set() {
         let expected = &certified[name]["certified"];
         let table = table(name);
         let summary = summary(&table);
-        let pooled = summary.pooled().expect("every treatment is replicated");
-        let between = summary.ss_between();
-        let df_between = summary.groups.len() as f64 - 1.0;
-        assert_eq!(Some(df_between), expected["between"]["df"]["value"].as_f64(), "{name}");
-        assert_eq!(Some(pooled.df), expected["within"]["df"]["value"].as_f64(), "{name}");
-        assert_digits(name, "F", between / df_between / pooled.variance, &expected["F"]);
-        assert_digits(name, "sum of squares between", between, &expected["between"]["ss"]);
-        assert_digits(name, "sum of squares within", pooled.ss, &expected["within"]["ss"]);
-        assert_digits(name, "mean square between", between / df_between, &expected["between"]["ms"]);
-        assert_digits(name, "mean square within", pooled.variance, &expected["within"]["ms"]);
-        assert_digits(name, "residual standard deviation", pooled.variance.sqrt(), &expected["residual_sd"]);
+        let labels: Vec<String> = (1..=summary.groups.len()).map(|i| i.to_string()).collect();
+        let anova = AnovaTable::of(&labels, &summary).expect("every treatment is replicated");
+        assert_eq!(Some(anova.df_between), expected["between"]["df"]["value"].as_f64(), "{name}");
+        assert_eq!(Some(anova.df_within), expected["within"]["df"]["value"].as_f64(), "{name}");
+        assert_digits(name, "F", anova.f, &expected["F"]);
+        assert_digits(name, "sum of squares between", anova.ss_between, &expected["between"]["ss"]);
+        assert_digits(name, "sum of squares within", anova.ss_within, &expected["within"]["ss"]);
+        assert_digits(name, "mean square between", anova.ms_between, &expected["between"]["ms"]);
+        assert_digits(name, "mean square within", anova.ms_within, &expected["within"]["ms"]);
+        assert_digits(name, "residual standard deviation", anova.ms_within.sqrt(), &expected["residual_sd"]);
     }
 }
 

@@ -9,9 +9,8 @@
 //! (inverting the noncentral t). \[3\] Bonett (2008), Psychol. Methods 13, 99–109 (the average variance as the
 //! standardiser where variances differ).
 
-use super::noncentrality;
 use crate::numerics::OutOfDomain;
-use crate::numerics::distributions::student_t;
+use crate::numerics::distributions::{noncentral_t, student_t};
 use crate::study::{ContrastEstimate, Summary, Variances};
 use serde::Serialize;
 
@@ -177,7 +176,7 @@ fn is_ordered(interval: &Interval) -> bool {
 /// Bounds of the noncentrality of a t value \[2\]. The lower bound is found as minus the upper bound of -t, so
 /// that a small probability outside is never written as 1 minus itself.
 fn noncentrality_interval(t: f64, df: f64, coverage: Coverage) -> Option<Interval> {
-    let upper = |t: f64, outside: f64| noncentrality::of_t(t, df, outside);
+    let upper = |t: f64, outside: f64| noncentral_t::noncentrality(t, df, outside).ok();
     match coverage {
         Coverage::Both { outside } => {
             Some(Interval { lower: -upper(-t, outside / 2.0)?, upper: upper(t, outside / 2.0)? })

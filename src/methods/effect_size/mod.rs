@@ -3,7 +3,6 @@
 //! Labels such as "small" or "large" are on purpose not given here.
 
 mod contrast;
-mod noncentrality;
 mod whole_factor;
 
 pub use contrast::{Coverage, Interval, StandardisedBy, StandardisedEffect, Standardiser, hedges_correction};

@@ -5,8 +5,8 @@
 //! \[2\] Hays (1963), Statistics for Psychologists (omega²). \[3\] Kelley (1935), Proc. Natl. Acad. Sci. 21,
 //! 554–559 (epsilon²). \[4\] Cohen (1988), Statistical Power Analysis for the Behavioral Sciences (f).
 
-use super::noncentrality;
 use crate::methods::overall::{AnovaTable, WelchTest};
+use crate::numerics::distributions::noncentral_f;
 use serde::Serialize;
 
 /// An estimate with its interval, where there is one.
@@ -104,8 +104,8 @@ impl EffectSize {
 /// Lower and upper bound of the noncentrality of an observed F, each 0 where no noncentrality reaches it \[1\].
 fn noncentralities(f: f64, df1: f64, df2: f64, confidence: f64) -> Option<(f64, f64)> {
     let outside = (1.0 - confidence) / 2.0;
-    let lower = noncentrality::of_f(f, df1, df2, 1.0 - outside)?;
-    let upper = noncentrality::of_f(f, df1, df2, outside)?;
+    let lower = noncentral_f::noncentrality(f, df1, df2, 1.0 - outside).ok()?;
+    let upper = noncentral_f::noncentrality(f, df1, df2, outside).ok()?;
     (lower <= upper).then_some((lower, upper))
 }
 
