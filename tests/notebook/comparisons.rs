@@ -3,6 +3,7 @@
 //! The numbers are those of Dunnett's (1955) blood counts, worked independently for this project (see
 //! `tests/reference/comparisons.rs`).
 
+use super::expect::{check, named, results};
 use super::given::{blood_counts, evaluated, shown, study, summarised};
 use levelwise::answer::Block;
 use levelwise::notebook::ask::Ask;
@@ -322,4 +323,71 @@ fn the_sentence_shows_the_procedure_that_is_really_used() {
     let outcome = settled("family = \"neighbours\"", blood_counts(Variances::Equal));
     assert_eq!(outcome.in_force["adjust"], "Holm");
     assert_eq!(outcome.in_force["alpha"], "0.05");
+}
+
+/// From the table to the families, through the data and study cells.
+const WHOLE: &str = r#"levelwise = 1
+[[cell]]
+kind = "data"
+name = "animals"
+table = """
+drug,count
+control,7.40
+control,8.50
+control,7.20
+control,8.24
+control,9.84
+control,8.32
+A,9.76
+A,8.80
+A,7.68
+A,9.36
+B,12.80
+B,9.68
+B,12.16
+B,9.20
+B,10.55
+"""
+[[cell]]
+kind = "study"
+name = "blood"
+data = "animals"
+outcome = "count"
+groups = "drug"
+control = "control"
+variances = "equal"
+[[cell]]
+kind = "comparisons"
+name = "pairs"
+study = "blood"
+"#;
+
+#[test]
+fn from_the_table_to_the_family() {
+    let engine = check(
+        &(WHOLE.to_string()
+            + r#"
+[[cell]]
+kind = "comparisons"
+name = "late"
+study = "blood"
+family = "contrasts"
+contrasts = { late = "(A + B)/2 - contrl" } # ! Did you mean "control"?
+[[cell]]
+kind = "comparisons"
+name = "wrong"
+study = "blood"
+adjust = "Games-Howell" # ! gives each level its own variance, and the study says equal variances
+[[cell]]
+kind = "trend"
+study = "blood" # ! the study has no scores
+[[cell]]
+kind = "comparisons" # ! The field "study" is missing
+family = "neighbours"
+"#),
+    );
+    let rows = results(&engine, "pairs")["rows"].as_array().unwrap().clone();
+    let p: Vec<f64> = rows.iter().map(|row| row["p_adjusted"].as_f64().unwrap()).collect();
+    near(&p, &[0.676220, 0.00798514, 0.0659189], 5e-7);
+    assert!(named(&engine, "pairs").headline.contains("Tukey"));
 }

@@ -222,6 +222,32 @@ fn the_blood_counts_give_the_values_computed_for_them() {
 }
 
 #[test]
+fn effect_sizes_of_the_blood_counts_agree_alone_and_at_tukeys_level() {
+    let layout = layout(&blood(), Variances::Equal);
+    let alone = compared(&layout, Set::AllPairs, Adjust::PValues(None));
+    let effects =
+        |result: &Comparisons| result.rows.iter().map(|row| row.effect.clone().unwrap()).collect::<Vec<_>>();
+    let d: Vec<f64> = effects(&alone).iter().map(|effect| effect.d).collect();
+    printed(&d, &[".553212", "2.236678", "1.683466"], "d");
+    let g: Vec<f64> = effects(&alone).iter().map(|effect| effect.g).collect();
+    printed(&g, &[".517774", "2.093401", "1.575626"], "g");
+    let bounds = |result: &Comparisons| {
+        let intervals = effects(result).into_iter().map(|effect| effect.d_interval.unwrap());
+        intervals.flat_map(|bounds| [bounds.lower, bounds.upper]).collect::<Vec<f64>>()
+    };
+    let expected = ["-.741803", "1.826101", ".726776", "3.687414", ".181978", "3.129768"];
+    printed(&bounds(&alone), &expected, "individual intervals");
+    let tukey = compared(&layout, Set::AllPairs, Adjust::Tukey);
+    let expected = ["-.975664", "2.060317", ".465940", "3.965787", "-.082871", "3.402178"];
+    printed(&bounds(&tukey), &expected, "simultaneous intervals");
+    printed(
+        &[1.0 - tukey.alpha_per_comparison.unwrap()],
+        &[".979509"],
+        "the level that Tukey's critical value means",
+    );
+}
+
+#[test]
 fn a_contrast_of_the_blood_counts_agrees_with_one_error_term_and_with_separate_variances() {
     let expected = [
         (Variances::Equal, ["1.639", ".620803", "2.640130", "12", ".0215686"]),
@@ -350,9 +376,44 @@ fn an_overall_f_without_any_significant_pair_is_explained_by_the_contrast_that_c
     );
 }
 
+#[test]
+fn two_groups_are_the_t_test_whatever_the_procedure() {
+    for case in cases("datasets").iter().filter(|case| case["groups"].as_array().unwrap().len() == 2) {
+        for (variances, adjusts) in [
+            (Variances::Equal, vec![Adjust::Tukey, Adjust::Scheffe, Adjust::PValues(Holm)]),
+            (Variances::Unequal, vec![Adjust::GamesHowell, Adjust::PValues(Hommel)]),
+        ] {
+            let layout = layout(&groups_of(case), variances);
+            for adjust in adjusts {
+                let row = &compared(&layout, Set::AllPairs, adjust).rows[0];
+                close(row.p_adjusted, row.p, 1e-10, adjust.name());
+            }
+        }
+    }
+}
+
 /// Groups given by size, mean and SD: enough for everything that rests on means.
 fn summaries() -> impl Strategy<Value = Vec<(usize, f64, f64)>> {
     proptest::collection::vec((2..12_usize, -2.0..2.0_f64, 0.3..2.0_f64), 3..6)
+}
+
+/// Numbers of every size, 0 and equal ones among them.
+pub fn extreme() -> impl Strategy<Value = f64> {
+    let sizes = (-1.0..1.0_f64, -300..300_i32).prop_map(|(x, e)| x * libm::pow(10.0, f64::from(e)));
+    prop_oneof![Just(0.0), Just(1.0), -3.0..3.0_f64, sizes]
+}
+
+/// The layout, where the summaries give estimates at all.
+pub fn try_summaries(groups: &[(usize, f64, f64)], variances: Variances) -> Option<Layout> {
+    let labels: Vec<String> = (0..groups.len()).map(|i| format!("L{i}")).collect();
+    let groups = groups.iter().map(|(n, mean, sd)| GroupSummary {
+        n: *n,
+        mean: *mean,
+        variance: (*n > 1).then_some(sd * sd),
+    });
+    let summary = Summary { origin: 0.0, groups: groups.collect() };
+    let estimates = Estimates::one_way(&labels, &summary, variances).ok()?;
+    Some(Layout { summary, estimates })
 }
 
 fn from_summaries(groups: &[(usize, f64, f64)], variances: Variances) -> Layout {
@@ -366,6 +427,31 @@ fn from_summaries(groups: &[(usize, f64, f64)], variances: Variances) -> Layout 
 
 proptest! {
     #![proptest_config(ProptestConfig { cases: 24, ..ProptestConfig::default() })]
+
+    #[test]
+    fn single_step_decisions_intervals_effects_and_both_readings_agree(groups in summaries(), alpha in 0.001..0.2_f64) {
+        let single_step = [Adjust::Tukey, Adjust::GamesHowell, Adjust::Scheffe,
+            Adjust::PValues(None), Adjust::PValues(Bonferroni), Adjust::PValues(Sidak)];
+        for variances in [Variances::Equal, Variances::Unequal] {
+            let layout = from_summaries(&groups, variances);
+            for set in [Set::AllPairs, Set::AgainstControl(1), Set::AgainstRest] {
+                for sides in [Sides::Both, Sides::Greater, Sides::Less] {
+                    for adjust in single_step {
+                        if adjust.unsuitable(Family::Set(set), variances, sides).is_some() { continue }
+                        let result = sided(&layout, set, adjust, sides, alpha);
+                        for row in result.rows.iter().filter(|row| (row.p_adjusted - alpha).abs() > 1e-7) {
+                            prop_assert!(row.p_adjusted >= row.p);
+                            prop_assert_eq!(row.interval.excludes_zero(), row.rejected, "{} {:?}", adjust.name(), row);
+                            prop_assert_eq!(row.p <= row.alpha.unwrap(), row.rejected, "{} {:?}", adjust.name(), row);
+                            let effect = row.effect.as_ref().unwrap().d_interval.unwrap();
+                            prop_assert_eq!(effect.lower > 0.0 || effect.upper < 0.0, row.rejected);
+                            prop_assert!(row.effect.as_ref().unwrap().d * row.estimate >= 0.0);
+                        }
+                    }
+                }
+            }
+        }
+    }
 
     #[test]
     fn the_order_of_the_levels_and_the_scale_of_the_outcome_change_no_p_value(
@@ -384,6 +470,33 @@ proptest! {
                 let same = other.rows.iter().find(|r| r.coefficients == coefficients || r.coefficients == negative);
                 let same = same.expect("every pair is there");
                 prop_assert!((same.p_adjusted - row.p_adjusted).abs() <= 1e-7 * row.p_adjusted);
+            }
+        }
+    }
+
+    #[test]
+    fn no_numbers_make_it_panic_or_answer_with_what_is_no_number(
+        groups in proptest::collection::vec((1..5_usize, extreme(), extreme()), 2..5), alpha in 1e-9..0.999_f64
+    ) {
+        let groups: Vec<_> = groups.into_iter().map(|(n, mean, sd)| (n, mean, sd.abs())).collect();
+        for variances in [Variances::Equal, Variances::Unequal] {
+            let Some(layout) = try_summaries(&groups, variances) else { continue };
+            for adjust in levelwise::methods::multiplicity::ALL {
+                for (set, sides) in [(Set::AllPairs, Sides::Both), (Set::AgainstControl(1), Sides::Less)] {
+                    let contrasts = ready_set(set, &layout.estimates.labels);
+                    let result = compare(&Request { estimates: &layout.estimates, summary: Some(&layout.summary),
+                        contrasts: &contrasts, family: Family::Set(set), adjust, sides, alpha, confidence: 1.0 - alpha });
+                    for row in result.iter().flat_map(|result| &result.rows) {
+                        let effect = row.effect.as_ref().map_or([0.0; 2], |effect| [effect.d, effect.g]);
+                        let numbers = [row.estimate, row.se, row.df, row.t, row.statistic, row.p, row.p_adjusted,
+                            row.critical, row.interval.lower, row.interval.upper, effect[0], effect[1]];
+                        prop_assert!(!numbers.iter().any(|x| x.is_nan()), "{row:?}");
+                        prop_assert!((row.p..=1.0).contains(&row.p_adjusted), "{row:?}");
+                    }
+                    if let Ok(result) = &result {
+                        let _ = explain(&layout.estimates, result);
+                    }
+                }
             }
         }
     }

@@ -3,7 +3,7 @@
 //! independently for this project to the digits written here. Common practice is marked so.
 
 use crate::cases::{cases, number, relative_error};
-use crate::comparisons::{Layout, groups_of, layout};
+use crate::comparisons::{Layout, extreme, groups_of, layout, try_summaries};
 use levelwise::methods::departure::overall;
 use levelwise::methods::trend::{
     NoTrend, PolynomialTrend, TrendRequest, Weights, coefficients, highest_degree, polynomial,
@@ -278,5 +278,30 @@ proptest! {
         prop_assert!((result.rows[0].t - t.estimate / t.se).abs() < 1e-12 * (1.0 + result.rows[0].t.abs()));
         prop_assert!((result.rows[0].slope - t.estimate).abs() < 1e-12);
         prop_assert!(result.lack_of_fit.is_empty());
+    }
+
+    #[test]
+    fn no_numbers_make_it_panic_or_answer_with_what_is_no_number(
+        groups in proptest::collection::vec((1..5_usize, extreme(), extreme()), 2..6),
+        mut scores in proptest::collection::vec(extreme(), 6), degree in 0..6_usize
+    ) {
+        scores.sort_by(f64::total_cmp);
+        scores.truncate(groups.len());
+        let groups: Vec<_> = groups.into_iter().map(|(n, mean, sd)| (n, mean, sd.abs())).collect();
+        for variances in [Variances::Equal, Variances::Unequal] {
+            let Some(layout) = try_summaries(&groups, variances) else { continue };
+            for weights in [Weights::N, Weights::Equal] {
+                let Ok(result) = trend(&layout, &scores, degree, weights) else { continue };
+                for row in &result.rows {
+                    let numbers = [row.estimate, row.se, row.df, row.t, row.p, row.interval.lower, row.interval.upper,
+                        row.slope, row.slope_interval.lower, row.slope_interval.upper, row.ss, row.share.unwrap_or(0.0)];
+                    prop_assert!(!numbers.iter().any(|x| x.is_nan()), "{row:?}");
+                }
+                for left in &result.lack_of_fit {
+                    prop_assert!(left.test.f >= 0.0 && (0.0..=1.0).contains(&left.test.p), "{left:?}");
+                }
+                prop_assert!(result.fitted.iter().all(|value| !value.is_nan()), "{result:?}");
+            }
+        }
     }
 }

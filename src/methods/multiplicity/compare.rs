@@ -59,6 +59,8 @@ pub struct ComparisonRow {
     /// Of this comparison by itself, on the sides asked for.
     pub p: f64,
     pub p_adjusted: f64,
+    /// Bound on the error of `p_adjusted` where it comes from numerical integration.
+    pub p_error: Option<f64>,
     /// The level at which the raw p-value is judged; `None` where the procedure has none.
     pub alpha: Option<f64>,
     /// p_adjusted <= alpha of the family.
@@ -344,6 +346,15 @@ fn beyond(critical: f64, df: f64, sides: Sides) -> Result<f64, OutOfDomain> {
     Ok(if sides == Sides::Both { (2.0 * upper).min(1.0) } else { upper })
 }
 
+/// Relative error of the adjusted p-values of procedures whose distribution is integrated.
+fn relative_error(adjust: Adjust) -> Option<f64> {
+    match adjust {
+        Adjust::Tukey | Adjust::GamesHowell => Some(range::RELATIVE_ERROR),
+        Adjust::Dunnett => Some(control::RELATIVE_ERROR),
+        _ => None,
+    }
+}
+
 /// The one value of all, where there is one.
 fn common(mut values: impl Iterator<Item = Option<f64>>) -> Option<f64> {
     let first = values.next()??;
@@ -391,6 +402,7 @@ impl Decided {
             statistic_name: if on_range { "q" } else { "t" },
             p: test.p,
             p_adjusted: self.adjusted[i],
+            p_error: relative_error(request.adjust).map(|relative| relative * self.adjusted[i]),
             alpha: self.alphas[i],
             rejected: self.adjusted[i] <= request.alpha,
             critical: self.critical[i] * scale,

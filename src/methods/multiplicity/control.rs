@@ -7,6 +7,9 @@ use super::Sides;
 use crate::numerics::OutOfDomain;
 use crate::study::Estimates;
 
+/// Relative error that the distribution's tail stays below (`tests/reference/accuracy.rs` lists what it reaches).
+pub const RELATIVE_ERROR: f64 = 1e-9;
+
 /// The loading λ of every level but the control, in their order. The covariance of the means must be diagonal.
 pub fn loadings(estimates: &Estimates, control: usize) -> Vec<f64> {
     let v = |i: usize| estimates.covariance[(i, i)];

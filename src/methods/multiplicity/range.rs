@@ -8,6 +8,9 @@
 use crate::numerics::OutOfDomain;
 use crate::numerics::distributions::studentized_range;
 
+/// Relative error that the distribution's tail stays below (`tests/reference/accuracy.rs` lists what it reaches).
+pub const RELATIVE_ERROR: f64 = 1e-12;
+
 /// The statistic q of a pair with this t.
 pub fn q(t: f64) -> f64 {
     t.abs() * std::f64::consts::SQRT_2

@@ -263,6 +263,10 @@ fn row(request: &TrendRequest, degree: usize, c: Vec<f64>, ss_between: f64) -> R
     let size = sum(c.iter().zip(weights_of(request)).map(|(c, w)| c * c / w));
     let ss = found.estimate * found.estimate
         / sum(c.iter().zip(&request.estimates.n).map(|(c, n)| c * c / *n as f64));
+    let slope = found.estimate / size;
+    if !(slope.is_finite() && ss.is_finite() && ss_between.is_finite()) {
+        return Err(NoTrend::NotFinite { name });
+    }
     Ok(TrendRow {
         degree,
         name,
@@ -272,7 +276,7 @@ fn row(request: &TrendRequest, degree: usize, c: Vec<f64>, ss_between: f64) -> R
         t,
         p: (2.0 * student_t::sf(t.abs(), found.df)?).min(1.0),
         interval,
-        slope: found.estimate / size,
+        slope,
         slope_interval: Bounds { lower: interval.lower / size, upper: interval.upper / size },
         ss,
         share: (ss_between > 0.0).then(|| ss / ss_between),

@@ -50,6 +50,7 @@ fn headline(laid: &Laid) -> String {
         (0, 1) => format!("{} is not shown to differ from zero", name(laid, &result.rows[0])),
         (0, _) => format!("None of the {} shows a difference", words::comparisons(all)),
         (1, 1) => format!("{}: {}", name(laid, found[0]), direction(laid, found[0])),
+        (2, 2) => "Both comparisons show a difference".to_string(),
         (of, all) if of == all => format!("All {} show a difference", words::comparisons(all)),
         (of, all) => format!(
             "{of} of {} {} a difference",
@@ -100,7 +101,7 @@ fn table(laid: &Laid) -> Table {
         .number_column(statistic)
         .number_column("df")
         .number_column("p, raw")
-        .number_column("judged at")
+        .number_column("alpha for raw p")
         .number_column("p, adjusted")
         .text_column(format!("Decision at {}", number::percent(result.alpha)))
         .number_column("d")
@@ -168,8 +169,13 @@ fn notes(laid: &Laid) -> Vec<String> {
     if result.rows.iter().any(|row| row.alpha.is_some())
         && result.adjust.error_rate() != ErrorRate::PerComparison
     {
+        let step = if result.adjust.single_step() {
+            ""
+        } else {
+            " The alpha beside a row is that of the step at which it was decided."
+        };
         notes.push(format!(
-            "Two readings of one decision: the adjusted p against {alpha}, or the raw p against the level in \"judged at\". Never both corrections at once."
+            "Two readings of one decision: the adjusted p against {alpha}, or the raw p against the alpha beside it. Never both corrections at once.{step}"
         ));
     }
     notes.push(effect_note(laid));
@@ -187,11 +193,16 @@ fn notes(laid: &Laid) -> Vec<String> {
     notes
 }
 
-fn effect_note(laid: &Laid) -> String {
-    let by = match laid.study.variances {
+/// The standard deviation that standardises.
+fn standardiser(laid: &Laid) -> &'static str {
+    match laid.study.variances {
         Variances::Equal => "the SD pooled over all levels",
         Variances::Unequal => "the root of the mean variance of the levels compared",
-    };
+    }
+}
+
+fn effect_note(laid: &Laid) -> String {
+    let by = standardiser(laid);
     let scaled = laid.asked.contrasts.iter().any(|contrast| (contrast.half_weight() - 1.0).abs() > 1e-9);
     let scale = if scaled {
         " Contrasts are scaled for it to the mean of one set less the mean of another."
@@ -279,6 +290,9 @@ fn writeup(laid: &Laid) -> String {
     sentences.extend(said.map(|row| row_sentence(laid, row)));
     if !all {
         sentences.extend(others(laid));
+    }
+    if result.rows.iter().any(|row| row.effect.is_some()) {
+        sentences.push(format!("d is the {} divided by {}.", estimate_word(laid), standardiser(laid)));
     }
     sentences.join(" ")
 }

@@ -69,7 +69,7 @@ fn table(asked: &Asked, result: &GivenComparisons, also: &[(Adjust, Vec<f64>)]) 
     ))
     .text_column("Comparison")
     .number_column("p, given")
-    .number_column("judged at")
+    .number_column("alpha for given p")
     .number_column("p, adjusted")
     .text_column(format!("Decision at {}", number::percent(asked.alpha)));
     for (adjust, _) in also {
@@ -94,7 +94,7 @@ fn table(asked: &Asked, result: &GivenComparisons, also: &[(Adjust, Vec<f64>)]) 
         return table;
     }
     table.note(format!(
-        "Two readings of one decision: the adjusted p against {}, or the given p against the level in \"judged at\". Never both corrections at once.",
+        "Two readings of one decision: the adjusted p against {}, or the given p against the alpha beside it. Never both corrections at once.",
         number::plain(asked.alpha)
     ))
 }

@@ -84,6 +84,7 @@ fn row(laid: &Laid, i: usize) -> Value {
     ];
     numbers.into_iter().for_each(|(key, value)| drop(object.insert(key.into(), number(value))));
     object.insert("statistic_name".into(), json!(row.statistic_name));
+    insert(&mut object, "p_error", row.p_error.map(number));
     insert(&mut object, "alpha", row.alpha.map(number));
     object.insert("rejected".into(), json!(row.rejected));
     let own = procedure_has_intervals(laid);

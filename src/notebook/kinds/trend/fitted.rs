@@ -101,10 +101,20 @@ fn table(laid: &Laid) -> Table {
         "Coefficient: what the fitted curve has of this degree, per unit of score (linear), per squared unit (quadratic) and so on.".to_string(),
         "A trend of degree 1 is a straight line; each further degree lets the curve bend once more.".to_string(),
         share_note(laid),
-        "d: the contrast, scaled to the mean of one set less the mean of another, divided by the SD; g: without its small-sample bias.".to_string(),
+        effect_note(laid),
     ];
     notes.extend(left_out(laid.study));
     notes.into_iter().fold(table, Table::note)
+}
+
+fn effect_note(laid: &Laid) -> String {
+    let by = match laid.study.variances {
+        Variances::Equal => "the SD pooled over all levels",
+        Variances::Unequal => "the root of the mean variance of the levels",
+    };
+    format!(
+        "d: the contrast, scaled to the mean of one set less the mean of another, divided by {by}; g: the same without its small-sample bias. The interval of d is from the noncentral t, at the level of the interval of the coefficient."
+    )
 }
 
 fn share_note(laid: &Laid) -> String {
