@@ -106,6 +106,39 @@ fn a_plan_waits_and_names_its_method() {
 }
 
 #[test]
+fn rows_left_out_are_counted_under_the_groups() {
+    let mut study = blood_counts(Variances::Unequal);
+    study.account[0].missing = 1;
+    study.account[1].excluded = 2;
+    let text = shown(&evaluated(MEANS, study.clone()));
+    let note = "Not analysed: 1 row with a missing value and 2 rows excluded by rule; the study's answer accounts for them.";
+    assert!(text.contains(note), "{text}");
+    assert!(!shown(&evaluated(MEANS, blood_counts(Variances::Unequal))).contains("Not analysed"));
+}
+
+#[test]
+fn tests_that_decide_differently_are_named() {
+    let cautions = |variances| {
+        let study = study(
+            &[
+                ("control", &[7.4, 8.5, 7.2, 8.24]),
+                ("A", &[9.76, 8.8, 7.68]),
+                ("B", &[12.8, 9.68, 12.16, 9.2]),
+            ],
+            variances,
+        );
+        evaluated(MEANS, study).answer.cautions
+    };
+    for variances in [Variances::Equal, Variances::Unequal] {
+        let found = cautions(variances);
+        assert!(
+            found.iter().any(|caution| caution.starts_with("The two F tests decide differently")),
+            "{found:?}"
+        );
+    }
+}
+
+#[test]
 fn pooling_over_unequal_spread_is_cautioned() {
     let spread = study(
         &[("a", &[1.0, 9.0, -7.0, 2.0, 4.0, -3.0]), ("b", &[1.5, 2.0, 3.0, 2.2, 2.4, 1.9, 2.1, 2.6])],

@@ -5,6 +5,7 @@
 
 use super::expect::{cell, check, results, settled};
 use levelwise::notebook::engine::Condition;
+use levelwise::notebook::sentence::in_words;
 
 fn power(fields: &str) -> String {
     format!("levelwise = 1\n[[cell]]\nkind = \"power\"\nname = \"plan\"\n{fields}")
@@ -20,8 +21,8 @@ fn eta_squared_of_046_needs_five_per_group_and_fifteen_in_all() {
     let plan = results(&engine, "plan");
     assert_eq!(plan["n"], serde_json::json!({ "group 1": 5, "group 2": 5, "group 3": 5 }));
     assert_eq!(plan["total"], 15);
-    assert!((number(&plan["power"]["estimate"]) - 0.80895261590018281777).abs() < 1e-9);
-    assert!((number(&plan["power_one_fewer"]) - 0.67061585079576720937).abs() < 1e-9);
+    assert!((number(&plan["power"]["estimate"]) - 0.808_952_615_900_182_8).abs() < 1e-9);
+    assert!((number(&plan["power_one_fewer"]) - 0.670_615_850_795_767_2).abs() < 1e-9);
     let cell = cell(&engine, 0);
     assert_eq!(cell.headline, "5 in each of 3 groups, 15 in all: power 0.809 (target 0.8) for f = 0.923");
     let writeup = cell.outcome.expect("an outcome").answer.writeup.clone().expect("a write-up");
@@ -39,11 +40,25 @@ fn eta_squared_of_046_needs_five_per_group_and_fifteen_in_all() {
 fn power_and_smallest_effect_are_found_as_well() {
     let engine = settled(&power("groups = 3\neffect = 0.4\nfind = \"power\"\nn = 20\n"));
     let found = number(&results(&engine, "plan")["power"]["estimate"]);
-    assert!((found - 0.77573043506324663642).abs() < 1e-9, "{found}");
+    assert!((found - 0.775_730_435_063_246_6).abs() < 1e-9, "{found}");
     let engine =
         settled(&power("groups = 3\nfind = \"smallest effect\"\nn = 20\ntarget = 0.77573043506324663642\n"));
     let found = number(&results(&engine, "plan")["minimum_effect"]);
     assert!((found - 0.4).abs() < 1e-9, "{found}");
+}
+
+#[test]
+fn the_sentence_shows_what_the_question_needs() {
+    let sentence = |fields: &str| in_words(&cell(&settled(&power(fields)), 0).sentence);
+    assert_eq!(
+        sentence("means = [10, 11]\nsd = 1\n"),
+        "For the overall test of 2 groups, find the n per group at error rate 0.05 and power 0.8. The effect, in one of \
+         these ways: f not given; eta squared not given; expected means 10, 11 with SD 1."
+    );
+    assert_eq!(
+        sentence("groups = 3\nfind = \"smallest effect\"\nn = 20\n"),
+        "For the overall test of 3 groups, find the smallest effect at error rate 0.05 and power 0.8 with 20 in each group."
+    );
 }
 
 #[test]

@@ -29,25 +29,29 @@ pub const TABLE: KindTable = KindTable {
             Holds::Above(0.0),
             "effect f",
             "Cohen's f: the SD of the true means over the SD inside the groups",
-        ),
+        )
+        .or("not given"),
         Field::new(
             "eta_squared",
             Holds::Between(0.0, 1.0),
             "eta squared",
             "The share of the variance that lies between the groups",
-        ),
+        )
+        .or("not given"),
         Field::new(
             "means",
             Holds::Numbers,
             "expected means",
             "The true means that are expected, one a group",
-        ),
+        )
+        .or("not given"),
         Field::new(
             "sd",
             Holds::Above(0.0),
             "expected SD",
             "The expected standard deviation inside the groups",
-        ),
+        )
+        .or("not given"),
         Field::new("n", Holds::Whole(2, 1_000_000), "n per group", "Participants in each group"),
         Field::new("target", Holds::Between(0.0, 1.0), "target power", "The power that is wanted").or("0.8"),
         Field::new("alpha", Holds::Between(0.0, 1.0), "error rate", "The error rate of the test").or("0.05"),
@@ -75,11 +79,11 @@ pub const TABLE: KindTable = KindTable {
             "find",
             &["n per group", "power"],
             &[
-                Piece::Words("for an effect given as f"),
+                Piece::Words(". The effect, in one of these ways: f"),
                 Piece::Blank("effect"),
-                Piece::Words("or eta squared"),
+                Piece::Words("; eta squared"),
                 Piece::Blank("eta_squared"),
-                Piece::Words("or expected means"),
+                Piece::Words("; expected means"),
                 Piece::Blank("means"),
                 Piece::Words("with SD"),
                 Piece::Blank("sd"),
@@ -117,7 +121,8 @@ pub fn evaluate(ask: &Ask) -> Outcome {
     let read = read(&mut reader);
     match (reader.finish(()), read) {
         (Ok(()), Some(read)) => match overall::outcome(&read) {
-            Ok(outcome) => outcome,
+            // Shown in the sentence while the number of groups follows from the means.
+            Ok(outcome) => outcome.with_in_force("groups", read.groups.to_string()),
             Err(error) => overall::refused(ask, &read, &error),
         },
         (Err(problems), _) => Outcome::mend(problems),

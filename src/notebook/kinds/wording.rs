@@ -53,17 +53,23 @@ pub fn effect(value: f64) -> String {
     if value > 0.0 && value < 0.000_5 { "<0.001".to_owned() } else { number::fixed(value, 3) }
 }
 
-/// "0.271, 90 % CI 0.000 to 0.442"; without an interval the estimate alone.
-pub fn effect_with_interval(size: &EffectSize, confidence: f64) -> String {
+/// "omega squared = 0.271", or "omega squared < 0.001".
+pub fn effect_equals(name: &str, value: f64) -> String {
+    let shown = effect(value);
+    match shown.strip_prefix('<') {
+        Some(bound) => format!("{name} < {bound}"),
+        None => format!("{name} = {shown}"),
+    }
+}
+
+/// "omega squared = 0.271, 90 % CI 0.000 to 0.442"; without an interval the estimate alone.
+pub fn effect_with_interval(name: &str, size: &EffectSize, confidence: f64) -> String {
+    let estimate = effect_equals(name, size.estimate);
     match (size.lower, size.upper) {
-        (Some(lower), Some(upper)) => format!(
-            "{}, {} CI {} to {}",
-            effect(size.estimate),
-            number::percent(confidence),
-            effect(lower),
-            effect(upper)
-        ),
-        _ => effect(size.estimate),
+        (Some(lower), Some(upper)) => {
+            format!("{estimate}, {} CI {} to {}", number::percent(confidence), effect(lower), effect(upper))
+        }
+        _ => estimate,
     }
 }
 
@@ -123,10 +129,16 @@ pub fn groups_table(study: &Study, summary: &Summary) -> Table {
     }
 }
 
-/// "Left out: 3 missing, 1 excluded.", where there were any.
+/// "Not analysed: 3 rows with a missing value and 1 row excluded by rule …", where there were any.
 pub fn left_out(study: &Study) -> Option<String> {
     let missing: usize = study.account.iter().map(|account| account.missing).sum();
     let excluded: usize = study.account.iter().map(|account| account.excluded).sum();
-    (missing + excluded > 0)
-        .then(|| format!("Not analysed: {missing} rows with a missing value, {excluded} rows left out by rule; the study accounts for them."))
+    let rows = |n: usize, why: &str| match n {
+        0 => None,
+        1 => Some(format!("1 row {why}")),
+        n => Some(format!("{} rows {why}", number::count(n))),
+    };
+    let parts = [rows(missing, "with a missing value"), rows(excluded, "excluded by rule")];
+    let parts = listed(parts.into_iter().flatten());
+    (!parts.is_empty()).then(|| format!("Not analysed: {parts}; the study's answer accounts for them."))
 }

@@ -216,16 +216,12 @@ impl Means<'_> {
         let verdict = if self.rejected() { "differed" } else { "were not shown to differ" };
         let size = match (&effects.welch, &effects.classical) {
             (Some(welch), _) => {
-                format!(
-                    ", omega squared (from Welch's F) = {}",
-                    effect_with_interval(&welch.omega_squared, effects.confidence)
-                )
+                let name = "omega squared (from Welch's F)";
+                format!(", {}", effect_with_interval(name, &welch.omega_squared, effects.confidence))
             }
             (None, Some(classical)) => {
-                format!(
-                    ", omega squared = {}",
-                    effect_with_interval(&classical.omega_squared, effects.confidence)
-                )
+                let size = &classical.omega_squared;
+                format!(", {}", effect_with_interval("omega squared", size, effects.confidence))
             }
             (None, None) => String::new(),
         };
@@ -248,14 +244,18 @@ impl Means<'_> {
             let size = effects.welch.as_ref().map(|effect| effect.omega_squared);
             let size = size.or(effects.classical.as_ref().map(|effect| effect.omega_squared));
             let reach = size.and_then(|size| size.upper).map(|upper| {
-                format!(" The data are compatible with a share of the variation up to {}.", effect(upper))
+                format!(
+                    " The {} interval of omega squared reaches up to {}.",
+                    number::percent(effects.confidence),
+                    effect(upper)
+                )
             });
             cautions.push(format!("Not shown to differ does not mean equal.{}", reach.unwrap_or_default()));
         }
         if let (Ok(classical), Ok(welch)) = (&self.classical, &self.welch)
             && (classical.p <= self.study.alpha) != (welch.p <= self.study.alpha)
         {
-            cautions.push("The two F tests decide differently here. The one that the study named before the data were seen counts; choosing by the result would not keep the error rate.".to_owned());
+            cautions.push("The two F tests decide differently here. The one that the study names counts, if it was named before the data were seen; choosing by the result would not keep the error rate.".to_owned());
         }
         cautions.extend(spread_caution(self.study, self.summary));
         cautions.extend(small_caution(self.study, self.summary));

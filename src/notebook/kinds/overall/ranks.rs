@@ -6,7 +6,7 @@ use crate::methods::profile::OrderStatistics;
 use crate::notebook::ask::Ask;
 use crate::notebook::diagnostics::Diagnostic;
 use crate::notebook::kinds::wording::{
-    effect, left_out, outcome_with_unit, p_cell, p_statement, refused, remedy, sizes,
+    effect, effect_equals, left_out, outcome_with_unit, p_cell, p_statement, refused, remedy, sizes,
 };
 use crate::notebook::outcome::Outcome;
 use crate::study::{Observed, Sample, Study};
@@ -100,11 +100,11 @@ fn mean_ranks_table(study: &Study, sample: &Sample, test: &KruskalWallis) -> Tab
 fn ranks_writeup(study: &Study, sample: &Sample, test: &KruskalWallis, result: &str) -> String {
     let verdict = if test.p <= study.alpha { "differed" } else { "were not shown to differ" };
     format!(
-        "The distributions of {} over {} were compared with the Kruskal-Wallis test (corrected for ties, large-sample p-value) at {}. The ranks {verdict}, {result}, epsilon squared = {}.",
+        "The distributions of {} over {} were compared with the Kruskal-Wallis test (corrected for ties, large-sample p-value) at {}. The ranks {verdict}, {result}, {}.",
         outcome_with_unit(study),
         sizes(&study.levels.labels, sample.groups.iter().map(Vec::len)),
         number::percent(study.alpha),
-        effect(test.epsilon_squared),
+        effect_equals("epsilon squared", test.epsilon_squared),
     )
 }
 
