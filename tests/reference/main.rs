@@ -13,6 +13,7 @@ mod nist_strd;
 mod noncentral_f;
 mod noncentral_t;
 mod one_way;
+mod open_data;
 mod profile;
 mod properties;
 mod shapiro_wilk;
