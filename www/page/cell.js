@@ -81,7 +81,7 @@ export function createCell(id, state, actions) {
   function drawTable(cell, now) {
     if (cell.kind !== 'data') return;
     // While the table is read again the one before stays in sight, and with it the keyboard.
-    if (cell.condition === 'working' && cell.table_rows === null && (grid || place)) return;
+    if (cell.condition === 'working' && (grid || place)) return;
     const rows = cell.table_rows ?? 0;
     if (rows === 0 && !place) {
       grid = null;
