@@ -8,12 +8,13 @@ use std::collections::{BTreeMap, BTreeSet};
 use std::fs;
 use std::path::{Path, PathBuf};
 
-/// Rust's own standard library comes with the compiler, not as a package: its notice stands here. The text is that
-/// of the MIT licence, one of the two that the library is offered under.
+/// Rust's own standard library comes with the compiler, not as a package: its notice stands here.
 const STANDARD_LIBRARY: &str = "\
 The Rust standard library, and the parts of it named alloc, core, std, compiler_builtins, dlmalloc and hashbrown.
-Copyright (c) The Rust Project Contributors. MIT OR Apache-2.0.
+Copyright (c) The Rust Project Contributors. MIT OR Apache-2.0.";
 
+/// The terms of the MIT licence, for libraries that offer it without bringing its text along.
+const MIT_TERMS: &str = "\
 Permission is hereby granted, free of charge, to any person obtaining a copy of this software and associated
 documentation files (the \"Software\"), to deal in the Software without restriction, including without limitation
 the rights to use, copy, modify, merge, publish, distribute, sublicense, and/or sell copies of the Software, and to
@@ -35,16 +36,20 @@ SOFTWARE.
 pub fn collect(project: &Project, metadata: &Value, bundled: &BTreeSet<String>) -> Result<String> {
     let mut by_text: BTreeMap<String, Vec<String>> = BTreeMap::new();
     let mut add = |title: String, text: String| by_text.entry(text).or_default().push(title);
-    for (title, folder, declared) in linked_crates(metadata)? {
-        add(title, licence_text(&folder, &declared)?);
+    for linked in linked_crates(metadata)? {
+        add(linked.title, licence_text(&linked.folder, &linked.declared, &linked.authors)?);
     }
     for folder in bundled_packages(project, bundled) {
         let manifest: Value = serde_json::from_str(&read_text(&folder.join("package.json"))?)?;
         let title = format!("{} {}", text_of(&manifest["name"]), text_of(&manifest["version"]));
-        add(title, licence_text(&folder, text_of(&manifest["license"]))?);
+        add(
+            title,
+            licence_text(&folder, text_of(&manifest["license"]), text_of(&manifest["author"]["name"]))?,
+        );
     }
     let own = read_text(&project.root.join("LICENSE"))?;
-    let mut parts = vec![format!("Levelwise\n\n{}", own.trim()), STANDARD_LIBRARY.trim().to_owned()];
+    let mut parts =
+        vec![format!("Levelwise\n\n{}", own.trim()), format!("{STANDARD_LIBRARY}\n\n{}", MIT_TERMS.trim())];
     let mut groups: Vec<(String, String)> =
         by_text.into_iter().map(|(text, titles)| (titles.join(", "), text)).collect();
     groups.sort();
@@ -56,8 +61,16 @@ fn text_of(value: &Value) -> &str {
     value.as_str().unwrap_or("")
 }
 
+/// A crate whose code ends in the module.
+struct Linked {
+    title: String,
+    folder: PathBuf,
+    declared: String,
+    authors: String,
+}
+
 /// The crates whose code ends in the module: reached over normal dependencies, macros left out.
-fn linked_crates(metadata: &Value) -> Result<Vec<(String, PathBuf, String)>> {
+fn linked_crates(metadata: &Value) -> Result<Vec<Linked>> {
     let by_id: BTreeMap<&str, &Value> =
         packages(metadata)?.iter().map(|package| (text_of(&package["id"]), package)).collect();
     let nodes = metadata["resolve"]["nodes"].as_array().context("cargo metadata resolves nothing")?;
@@ -74,8 +87,14 @@ fn linked_crates(metadata: &Value) -> Result<Vec<(String, PathBuf, String)>> {
         let folder =
             Path::new(text_of(&package["manifest_path"])).parent().context("a manifest has a folder")?;
         if !package["source"].is_null() {
-            let title = format!("{} {}", text_of(&package["name"]), text_of(&package["version"]));
-            found.push((title, folder.to_owned(), text_of(&package["license"]).to_owned()));
+            let authors: Vec<&str> =
+                package["authors"].as_array().into_iter().flatten().map(text_of).collect();
+            found.push(Linked {
+                title: format!("{} {}", text_of(&package["name"]), text_of(&package["version"])),
+                folder: folder.to_owned(),
+                declared: text_of(&package["license"]).to_owned(),
+                authors: authors.join(", "),
+            });
         }
         for dependency in node["deps"].as_array().into_iter().flatten() {
             let kinds = dependency["dep_kinds"].as_array();
@@ -84,7 +103,6 @@ fn linked_crates(metadata: &Value) -> Result<Vec<(String, PathBuf, String)>> {
             }
         }
     }
-    found.sort();
     Ok(found)
 }
 
@@ -106,8 +124,8 @@ fn bundled_packages(project: &Project, bundled: &BTreeSet<String>) -> BTreeSet<P
 }
 
 /// The text of the licence that comes with a library: where several are offered the shorter MIT text is enough.
-/// A package that brings no text is named with the licence it declares.
-fn licence_text(folder: &Path, declared: &str) -> Result<String> {
+/// A package that brings no text is named with its authors and the licence it declares.
+fn licence_text(folder: &Path, declared: &str, authors: &str) -> Result<String> {
     let mut names: Vec<String> = fs::read_dir(folder)
         .with_context(|| format!("cannot list {}", folder.display()))?
         .filter_map(|entry| Some(entry.ok()?.file_name().to_string_lossy().into_owned()))
@@ -126,7 +144,13 @@ fn licence_text(folder: &Path, declared: &str) -> Result<String> {
         texts.push(read_text(&folder.join(name))?.replace('\r', "").trim().to_owned());
     }
     if texts.is_empty() {
-        texts.push(format!("Licence: {declared}"));
+        texts.push(format!(
+            "Copyright (c) {}. {declared}.",
+            if authors.is_empty() { "its authors" } else { authors }
+        ));
+        if declared.contains("MIT") {
+            texts.push(MIT_TERMS.trim().to_owned());
+        }
     }
     Ok(texts.join("\n\n"))
 }

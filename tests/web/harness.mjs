@@ -225,18 +225,6 @@ async function downloaded(folder, name) {
   throw new Error(`no file ${name} was saved in 5 s`);
 }
 
-/**
- * Waits until something that is not in the page's document holds.
- * @param {() => boolean} holds
- * @param {string} what for the message when it does not in 10 s
- */
-export async function until(holds, what) {
-  for (let tries = 0; !holds(); tries += 1) {
-    assert(tries < 200, `waited 10 s in vain: ${what}`);
-    await new Promise((done) => setTimeout(done, 50));
-  }
-}
-
 /** Refuses to start tests on a page that was not built. */
 export function builtPage() {
   assert(existsSync(HTML), `${HTML} is not there: build it with cargo pack build`);

@@ -2,8 +2,11 @@
 
 import assert from 'node:assert/strict';
 import { createHash } from 'node:crypto';
+import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
 import { test } from 'node:test';
-import { builtPage, until, withPage } from './harness.mjs';
+import { builtPage, openPage, withPage } from './harness.mjs';
 
 const html = builtPage();
 
@@ -53,7 +56,22 @@ for (const from of /** @type {const} */ (['file', 'http'])) {
   test(`the page opens from ${from} and its engine is ready, with nothing to complain about`, async () => {
     await withPage({ from }, async ({ page }) => {
       assert.equal(await page.title(), 'Levelwise');
-      await until(() => page.workers().length === 1, 'the worker starts');
+      await page.waitForFunction(() => /** @type {any} */ (window).engineLog.some((/** @type {any} */ entry) => entry.type === 'ready'));
+      assert.equal(page.workers().length, 1);
     });
   });
 }
+
+test('a file that was changed on its way does not run', async () => {
+  const folder = mkdtempSync(join(tmpdir(), 'levelwise-changed-'));
+  const file = join(folder, 'levelwise.html');
+  writeFileSync(file, html.replace(/<script>/, '<script>;'));
+  const opened = await openPage({ file });
+  try {
+    assert.match((await opened.problems()).join('\n'), /policy: script-src/);
+    assert.equal(opened.page.workers().length, 0);
+  } finally {
+    await opened.close();
+    rmSync(folder, { recursive: true });
+  }
+});
