@@ -10,7 +10,7 @@ use crate::numerics::special::{Tail, incomplete_beta, log_beta_quantile};
 /// Lower-tail probability P(X <= `x`) with shapes `a` and `b`.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `x` is not from 0 to 1, or a shape is not from 1e-10 to 1e30.
+/// [`OutOfDomain`] if `x` is not from 0 to 1, or a shape is not from 0.001 to 1e30.
 pub fn cdf(x: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
     let x = probability("x", x)?;
     Ok(incomplete_beta(shape("a", a)?, shape("b", b)?, x, 1.0 - x).lower)
@@ -19,7 +19,7 @@ pub fn cdf(x: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
 /// Upper-tail probability P(X > `x`) with shapes `a` and `b`.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `x` is not from 0 to 1, or a shape is not from 1e-10 to 1e30.
+/// [`OutOfDomain`] if `x` is not from 0 to 1, or a shape is not from 0.001 to 1e30.
 ///
 /// # Accuracy
 /// As listed in `tests/reference/accuracy.rs`.
@@ -38,7 +38,7 @@ pub fn sf(x: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
 /// The x with P(X <= x) = `p`; 0 at 0, 1 at 1.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `p` is not from 0 to 1, or a shape is not from 1e-10 to 1e30.
+/// [`OutOfDomain`] if `p` is not from 0 to 1, or a shape is not from 0.001 to 1e30.
 pub fn quantile(p: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
     let p = probability("p", p)?;
     if p > 0.5 { upper_quantile(1.0 - p, a, b) } else { at_tail(p, a, b, Tail::Lower) }
@@ -47,7 +47,7 @@ pub fn quantile(p: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
 /// The x with P(X > x) = `upper_p`; 1 at 0, 0 at 1.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `upper_p` is not from 0 to 1, or a shape is not from 1e-10 to 1e30.
+/// [`OutOfDomain`] if `upper_p` is not from 0 to 1, or a shape is not from 0.001 to 1e30.
 pub fn upper_quantile(upper_p: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
     let p = probability("upper_p", upper_p)?;
     if p > 0.5 { quantile(1.0 - p, a, b) } else { at_tail(p, a, b, Tail::Upper) }

@@ -12,7 +12,7 @@ use crate::numerics::special::{Tail, incomplete_gamma, log_gamma_quantile};
 /// Lower-tail probability P(X <= `x`) with `df` degrees of freedom.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `x` is negative or not finite, or `df` is not from 1e-10 to 1e30.
+/// [`OutOfDomain`] if `x` is negative or not finite, or `df` is not from 0.001 to 1e30.
 pub fn cdf(x: f64, df: f64) -> Result<f64, OutOfDomain> {
     Ok(incomplete_gamma(0.5 * shape("df", df)?, 0.5 * not_negative("x", x)?).lower)
 }
@@ -20,7 +20,7 @@ pub fn cdf(x: f64, df: f64) -> Result<f64, OutOfDomain> {
 /// Upper-tail probability P(X > `x`) with `df` degrees of freedom.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `x` is negative or not finite, or `df` is not from 1e-10 to 1e30.
+/// [`OutOfDomain`] if `x` is negative or not finite, or `df` is not from 0.001 to 1e30.
 ///
 /// # Accuracy
 /// As listed in `tests/reference/accuracy.rs`.
@@ -39,7 +39,7 @@ pub fn sf(x: f64, df: f64) -> Result<f64, OutOfDomain> {
 /// The x with P(X <= x) = `p`; 0 at 0, infinite at 1.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `p` is not from 0 to 1, or `df` is not from 1e-10 to 1e30.
+/// [`OutOfDomain`] if `p` is not from 0 to 1, or `df` is not from 0.001 to 1e30.
 pub fn quantile(p: f64, df: f64) -> Result<f64, OutOfDomain> {
     let p = probability("p", p)?;
     if p > 0.5 { upper_quantile(1.0 - p, df) } else { at_tail(p, df, Tail::Lower) }
@@ -48,7 +48,7 @@ pub fn quantile(p: f64, df: f64) -> Result<f64, OutOfDomain> {
 /// The x with P(X > x) = `upper_p`; infinite at 0, 0 at 1.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `upper_p` is not from 0 to 1, or `df` is not from 1e-10 to 1e30.
+/// [`OutOfDomain`] if `upper_p` is not from 0 to 1, or `df` is not from 0.001 to 1e30.
 pub fn upper_quantile(upper_p: f64, df: f64) -> Result<f64, OutOfDomain> {
     let p = probability("upper_p", upper_p)?;
     if p > 0.5 { quantile(1.0 - p, df) } else { at_tail(p, df, Tail::Upper) }

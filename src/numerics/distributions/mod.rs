@@ -48,14 +48,14 @@ fn probability(argument: &'static str, value: f64) -> Result<f64, OutOfDomain> {
 
 /// Shapes and degrees of freedom below this are refused: the distributions there are all but two points, and
 /// intermediate results would leave the range of doubles.
-const SMALLEST_SHAPE: f64 = 1e-10;
+const SMALLEST_SHAPE: f64 = 1e-3;
 
 /// `value` if it can be a shape parameter.
 fn shape(argument: &'static str, value: f64) -> Result<f64, OutOfDomain> {
     if (SMALLEST_SHAPE..=1e30).contains(&value) {
         Ok(value)
     } else {
-        Err(OutOfDomain { argument, value, allowed: "greater than 0 (from 1e-10 to 1e30)" })
+        Err(OutOfDomain { argument, value, allowed: "greater than 0 (from 0.001 to 1e30)" })
     }
 }
 
@@ -68,7 +68,7 @@ fn degrees_of_freedom(argument: &'static str, value: f64) -> Result<f64, OutOfDo
     } else if value >= SMALLEST_SHAPE {
         Ok(value)
     } else {
-        Err(OutOfDomain { argument, value, allowed: "greater than 0 (at least 1e-10; infinity is allowed)" })
+        Err(OutOfDomain { argument, value, allowed: "greater than 0 (at least 0.001; infinity is allowed)" })
     }
 }
 

@@ -2,7 +2,7 @@
 //! whose squared means sum to the noncentrality ncp.
 //!
 //! A Poisson mixture of incomplete gamma functions: df times the noncentral F with infinite second df. Domain: x >= 0,
-//! df from 1e-10 to 1e30, ncp from 0 to 1e7.
+//! df from 0.001 to 1e30, ncp from 0 to 1e7.
 //!
 //! # References
 //! 1. Johnson, Kotz and Balakrishnan (1995), Continuous Univariate Distributions 2, chapter 29.
@@ -15,7 +15,7 @@ use crate::numerics::special::Tail;
 /// Lower-tail probability P(X <= `x`) with `df` degrees of freedom and noncentrality `ncp`.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `x` is negative or not finite, `df` is not from 1e-10 to 1e30, or `ncp` is not from 0 to 1e7.
+/// [`OutOfDomain`] if `x` is negative or not finite, `df` is not from 0.001 to 1e30, or `ncp` is not from 0 to 1e7.
 ///
 /// # Accuracy
 /// As listed in `tests/reference/accuracy.rs`.
@@ -26,7 +26,7 @@ pub fn cdf(x: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomain> {
 /// Upper-tail probability P(X > `x`) with `df` degrees of freedom and noncentrality `ncp`.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `x` is negative or not finite, `df` is not from 1e-10 to 1e30, or `ncp` is not from 0 to 1e7.
+/// [`OutOfDomain`] if `x` is negative or not finite, `df` is not from 0.001 to 1e30, or `ncp` is not from 0 to 1e7.
 ///
 /// # Accuracy
 /// As listed in `tests/reference/accuracy.rs`.
@@ -37,7 +37,7 @@ pub fn sf(x: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomain> {
 /// The x with P(X <= x) = `p`; 0 at 0, infinite at 1.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `p` is not from 0 to 1, `df` is not from 1e-10 to 1e30, or `ncp` is not from 0 to 1e7.
+/// [`OutOfDomain`] if `p` is not from 0 to 1, `df` is not from 0.001 to 1e30, or `ncp` is not from 0 to 1e7.
 pub fn quantile(p: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomain> {
     Ok(shape("df", df)? * noncentral_f::quantile(p, df, f64::INFINITY, ncp)?)
 }
@@ -45,7 +45,7 @@ pub fn quantile(p: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomain> {
 /// The x with P(X > x) = `upper_p`; infinite at 0, 0 at 1.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `upper_p` is not from 0 to 1, `df` is not from 1e-10 to 1e30, or `ncp` is not from 0 to 1e7.
+/// [`OutOfDomain`] if `upper_p` is not from 0 to 1, `df` is not from 0.001 to 1e30, or `ncp` is not from 0 to 1e7.
 pub fn upper_quantile(upper_p: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomain> {
     Ok(shape("df", df)? * noncentral_f::upper_quantile(upper_p, df, f64::INFINITY, ncp)?)
 }

@@ -2,8 +2,8 @@
 //! pⱼ = e^(-λ) λʲ / j! and I one tail of the incomplete gamma or beta function.
 //!
 //! Neighbouring I differ by a term T with a simple ratio, so each tail is a sum of positive terms in the direction
-//! in which I grows: downwards in j for the lower tail, upwards for the upper. The walk begins where the Poisson
-//! weight alone is 1e-17 of its largest, and ends where the product no longer counts. Nothing is subtracted, and
+//! in which I grows: downwards in j for the lower tail, upwards for the upper. The walk begins where the products
+//! are at most 1e-17 of the largest, and ends where they no longer count. Nothing is subtracted, and
 //! I and T are carried with a common scale, so that tails below 1e-300 of the start do not underflow.
 //!
 //! # References
@@ -44,13 +44,16 @@ pub(super) fn tail(kernel: Kernel, mean: f64, tail: Tail) -> f64 {
         Kernel::Beta { y: 0.0, .. } => return if tail == Tail::Lower { 1.0 } else { 0.0 },
         _ => {}
     }
-    // Bennett's and Chernoff's bounds: beyond these the Poisson weight has fallen by e⁻⁴⁰.
+    // Bennett's and Chernoff's bounds: beyond these the weight has fallen by e⁻⁴⁰.
     let mut first = match tail {
-        Tail::Lower => libm::ceil(mean + 0.5 * (80.0 / 3.0 + (80.0 * 80.0 / 9.0 + 320.0 * mean).sqrt())),
+        Tail::Lower => {
+            let turn = kernel.turn(mean);
+            libm::ceil(turn + 0.5 * (80.0 / 3.0 + (80.0 * 80.0 / 9.0 + 320.0 * turn).sqrt()))
+        }
         Tail::Upper => libm::floor((mean - (80.0 * mean).sqrt()).max(0.0)),
     };
     // A small mean makes that far too far: its powers would underflow.
-    while first > 0.0 && log_weight(mean, first) < -100.0 {
+    while first > mean && first > 0.0 && log_weight(mean, first) < -100.0 {
         first -= 1.0;
     }
     walk(kernel, mean, tail, first)
@@ -109,6 +112,24 @@ fn log_weight(mean: f64, j: f64) -> f64 {
 }
 
 impl Kernel {
+    /// An index above which the products pⱼ I(a + j) of the lower tail fall at least as fast as Poisson weights of that
+    /// mean do.
+    ///
+    /// I(j)/I(j-1) is at most 1 and at most the largest ratio of terms from there on, so that the products' ratio is at most
+    /// mean/j times that: below 1 from its root on, and falling at least like 1/j.
+    fn turn(&self, mean: f64) -> f64 {
+        let growth = |j: f64| match *self {
+            Kernel::Beta { a, b, x, .. } => x * ((a + b + j - 1.0) / (a + j)).max(1.0),
+            Kernel::Gamma { a, x } => x / (a + j),
+        };
+        let (mut low, mut high) = (0.0, mean);
+        for _ in 0..60 {
+            let middle = 0.5 * (low + high);
+            if mean * growth(middle).min(1.0) > middle { low = middle } else { high = middle }
+        }
+        high
+    }
+
     /// T(j+1) / T(j).
     fn ratio(&self, j: f64) -> f64 {
         match *self {
