@@ -56,37 +56,41 @@ pub fn assign(
 ) -> Result<Assigned, TooManyLevels> {
     let mut labels = Labels::new(groups, table.decimal, listed);
     let excluded = excluded_rows(table);
+    let codes = Codes::of(groups, table.rows);
     if listed.is_none() {
-        for row in (0..table.rows).filter(|&row| !excluded[row] && !groups.missing(row)) {
-            labels.take_in(groups.text(row))?;
+        let mut seen = vec![false; codes.texts.len()];
+        for (code, _) in codes.rows.iter().zip(&excluded).filter(|(_, excluded)| !**excluded) {
+            if let Some(code) = *code
+                && !std::mem::replace(&mut seen[code as usize], true)
+            {
+                labels.take_in(codes.texts[code as usize])?;
+            }
         }
     }
+    let levels: Vec<Option<usize>> = codes.texts.iter().map(|text| labels.find(text)).collect();
     let mut counts = vec![Counts::default(); labels.labels.len()];
     let mut values = vec![Vec::new(); labels.labels.len()];
     let (mut without_level, mut not_listed) = (Apart::default(), Apart::default());
-    let mut not_listed_levels: Vec<String> = Vec::new();
-    for (row, &excluded) in excluded.iter().enumerate() {
-        let text = groups.text(row);
-        let apart = if groups.missing(row) {
-            &mut without_level
-        } else if let Some(level) = labels.find(text) {
-            let counts = &mut counts[level];
-            counts.received += 1;
-            match outcome.offset(row) {
-                _ if excluded => counts.excluded += 1,
-                None => counts.missing += 1,
-                Some(offset) => values[level].push(offset),
+    for (row, (code, &excluded)) in codes.rows.iter().zip(&excluded).enumerate() {
+        let apart = match code.map(|code| levels[code as usize]) {
+            Some(Some(level)) => {
+                let counts = &mut counts[level];
+                counts.received += 1;
+                match outcome.offset(row) {
+                    _ if excluded => counts.excluded += 1,
+                    None => counts.missing += 1,
+                    Some(offset) => values[level].push(offset),
+                }
+                continue;
             }
-            continue;
-        } else {
-            if not_listed_levels.len() < MOST_NAMED && !not_listed_levels.iter().any(|known| known == text) {
-                not_listed_levels.push(text.to_owned());
-            }
-            &mut not_listed
+            Some(None) => &mut not_listed,
+            None => &mut without_level,
         };
         apart.received += 1;
         apart.excluded += usize::from(excluded);
     }
+    let strangers = codes.texts.iter().zip(&levels).filter(|(_, level)| level.is_none());
+    let not_listed_levels = strangers.map(|(text, _)| (*text).to_owned()).take(MOST_NAMED).collect();
     let labels = labels.labels;
     let account = labels.iter().zip(&counts).zip(&values).map(|((level, counts), values)| LevelAccount {
         level: level.clone(),
@@ -116,46 +120,70 @@ fn excluded_rows(table: &Table) -> Vec<bool> {
     excluded
 }
 
+/// The different texts of a column, and which of them each row has; `None` where it is missing.
+struct Codes<'a> {
+    texts: Vec<&'a str>,
+    rows: Vec<Option<u32>>,
+}
+
+impl<'a> Codes<'a> {
+    fn of(column: &'a Column, rows: usize) -> Self {
+        let mut codes = Self { texts: Vec::new(), rows: Vec::with_capacity(rows) };
+        let mut known: BTreeMap<&str, Option<u32>> = BTreeMap::new();
+        // Rows of one group often follow each other.
+        let mut last: Option<(&str, Option<u32>)> = None;
+        for row in 0..rows {
+            let text = column.text(row);
+            let code = match last {
+                Some((before, code)) if before == text => code,
+                _ => *known.entry(text).or_insert_with(|| {
+                    (!column.missing(row)).then(|| {
+                        codes.texts.push(text);
+                        codes.texts.len() as u32 - 1
+                    })
+                }),
+            };
+            last = Some((text, code));
+            codes.rows.push(code);
+        }
+        codes
+    }
+}
+
 /// Finds levels by text and, in a column of numbers, by value.
-struct Labels<'a> {
+struct Labels {
     labels: Vec<String>,
     /// Value of each label in a column of numbers.
     values: Option<Vec<Option<f64>>>,
     mark: DecimalMark,
-    known: BTreeMap<&'a str, Option<usize>>,
 }
 
-impl<'a> Labels<'a> {
+impl Labels {
     fn new(groups: &Column, mark: DecimalMark, listed: Option<&[String]>) -> Self {
         let labels = listed.unwrap_or_default().to_vec();
         // A listed level is written in the cell's text, where the point is the decimal mark.
         let value = |label: &String| number(label, mark).or_else(|| number(label, DecimalMark::Point));
         let values = (groups.kind == ColumnKind::Number).then(|| labels.iter().map(value).collect());
-        Self { labels, values, mark, known: BTreeMap::new() }
+        Self { labels, values, mark }
     }
 
-    fn find(&mut self, text: &'a str) -> Option<usize> {
-        if let Some(known) = self.known.get(text) {
-            return *known;
-        }
+    fn find(&self, text: &str) -> Option<usize> {
         let by_text = self.labels.iter().position(|label| label == text);
-        let found = by_text.or_else(|| {
+        by_text.or_else(|| {
+            let values = self.values.as_ref()?;
             let value = number(text, self.mark)?;
-            self.values.as_ref()?.iter().position(|known| *known == Some(value))
-        });
-        self.known.insert(text, found);
-        found
+            values.iter().position(|known| *known == Some(value))
+        })
     }
 
     /// Adds the level if it is new.
-    fn take_in(&mut self, text: &'a str) -> Result<(), TooManyLevels> {
+    fn take_in(&mut self, text: &str) -> Result<(), TooManyLevels> {
         if self.find(text).is_some() {
             return Ok(());
         }
         if self.labels.len() == MOST_LEVELS {
             return Err(TooManyLevels);
         }
-        self.known.insert(text, Some(self.labels.len()));
         self.labels.push(text.to_owned());
         if let Some(values) = &mut self.values {
             values.push(number(text, self.mark));

@@ -75,8 +75,8 @@ pub fn evaluate(ask: &Ask) -> Outcome {
     if let Err(errors) = table.select(&derive, &exclude) {
         return Outcome::mend(errors.iter().map(|error| unselectable(ask, error)).collect());
     }
-    let separator = format!("{}, as found", separator_in_words(table.separator));
-    let decimal = format!("{}, as found", decimal_in_words(table.decimal));
+    let separator = format!("{} (as found)", separator_in_words(table.separator));
+    let decimal = format!("{} (as found)", decimal_in_words(table.decimal));
     Outcome::settled(answer(&table), results(&table))
         .with_in_force("separator", separator)
         .with_in_force("decimal", decimal)
