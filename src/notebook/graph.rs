@@ -6,6 +6,7 @@ use super::diagnostics::{Diagnostic, quoted_choices, suggestion};
 use super::fields::Holds;
 use super::kinds::Kind;
 use std::collections::BTreeMap;
+use std::collections::btree_map::Entry;
 
 /// What the graph needs to know of a cell. Cells are spoken of by their place in the list.
 pub struct Node<'a> {
@@ -162,8 +163,8 @@ impl Graph {
                     path.dedup();
                     return Some(path);
                 }
-                if !came_from.contains_key(&source) {
-                    came_from.insert(source, at);
+                if let Entry::Vacant(place) = came_from.entry(source) {
+                    place.insert(at);
                     queue.push_back(source);
                 }
             }
