@@ -117,6 +117,8 @@ pub struct Column {
     pub n_missing: usize,
     /// True where the person named the kind instead of leaving it to be found.
     pub forced: bool,
+    /// True for a column computed from others, which the table's text does not contain.
+    pub derived: bool,
     pub(super) source: Source,
 }
 
@@ -155,6 +157,7 @@ impl Column {
             n_not_numbers: 0,
             n_missing,
             forced: false,
+            derived: true,
             source: Source { cells, index: 0, missing: Arc::from([String::new()]), mark: DecimalMark::Point },
         }
     }

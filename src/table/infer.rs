@@ -222,6 +222,7 @@ pub(super) fn column(
         n_not_numbers,
         n_missing: missing,
         forced: forced.is_some(),
+        derived: false,
         source,
     })
 }

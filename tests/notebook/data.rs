@@ -61,6 +61,7 @@ fn a_table_shows_how_it_was_read() {
         columns.rows.iter().map(|row| row.cells.iter().map(|cell| cell.text.as_str()).collect()).collect();
     assert_eq!(texts[1], ["group", "label", "0", "none, drill"]);
     assert_eq!(texts[2], ["score", "number", "1", "9 to 140"]);
+    assert_eq!(texts[3], ["double", "number", "1", "18 to 280"]);
     assert_eq!(left_out.rows[0].cells[3].text, "3");
     assert!(in_words(&data.sentence).starts_with(
         "A table with columns separated by commas (as found) and numbers written with a decimal point (as found);"

@@ -1,6 +1,6 @@
 //! A table of raw values.
 
-use crate::answer::{self, Answer, Cell, Row, number};
+use crate::answer::{self, Answer, Cell, Precision, Row, number};
 use crate::notebook::ask::{Ask, Reader, describe_value};
 use crate::notebook::diagnostics::Diagnostic;
 use crate::notebook::fields::{Choice, Field, Holds, KindTable, Part, Piece};
@@ -32,7 +32,7 @@ pub const TABLE: KindTable = KindTable {
         Field::new("table", Holds::LongText, "table", "Delimited text with a header row").required(),
         Field::new("separator", Holds::Choice(SEPARATORS), "column separator", "What stands between two columns").or("whatever separates them in the first line"),
         Field::new("decimal", Holds::Choice(DECIMALS), "decimal sign", "How decimals are written").or("a point or a comma, as found"),
-        Field::new("missing", Holds::Texts, "codes for missing values", "What is written where a value is missing").or("nothing, NA or ."),
+        Field::new("missing", Holds::Texts, "codes for missing values", "What is written where a value is missing").or("nothing, \"NA\" or \".\""),
         Field::new("columns", Holds::NamedTexts, "forced types", "Columns whose type is not the one found: a line \"name: number\" or \"name: label\" each").or("as found"),
         Field::new("exclude", Holds::Records(&[Part { name: "where", number: false }, Part { name: "reason", number: false }]), "rows left out", "Rows left out of every analysis: a line \"condition; reason\" each, such as \"score > 100; typing error\"").or("none"),
         Field::new("derive", Holds::NamedTexts, "new columns", "New columns computed from others: a line \"name: expression\" each, such as \"gain: after - before\"").or("none"),
@@ -280,6 +280,11 @@ fn values_in_words(table: &Table, column: &Column) -> String {
         let lowest = rows().min_by(|a, b| a.0.total_cmp(&b.0));
         let highest = rows().max_by(|a, b| a.0.total_cmp(&b.0));
         return match (lowest, highest) {
+            // A computed column starts at zero, so that its offsets are its values.
+            (Some((low, _)), Some((high, _))) if column.derived => {
+                let precision = Precision::for_values(&[low, high]);
+                format!("{} to {}", number::estimate(low, precision), number::estimate(high, precision))
+            }
             (Some((_, low)), Some((_, high))) => {
                 format!("{} to {}", column.text(low), column.text(high))
             }
