@@ -4,6 +4,7 @@
 mod comparisons;
 mod data;
 mod expect;
+mod extremes;
 mod given;
 mod note;
 mod overall;

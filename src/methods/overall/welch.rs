@@ -26,7 +26,8 @@ impl WelchTest {
     ///
     /// # Errors
     /// [`NoOverallTest::NoEstimates`] for fewer than two levels, an empty level, a level with one observation or
-    /// without variation of its own: its weight would be unknown or infinite.
+    /// without variation of its own: its weight would be unknown or infinite. Or values whose squares leave the
+    /// range of numbers.
     ///
     /// # Source
     /// Welch (1951), Biometrika 38, 330–336, doi 10.1093/biomet/38.3-4.330; for using it by default Delacre et al.
@@ -61,6 +62,7 @@ fn weights(labels: &[String], summary: &Summary) -> Result<Vec<f64>, NoEstimates
     let weights = groups.iter().zip(labels).map(|(group, label)| match group.variance {
         None => Err(NoEstimates::SingleObservation { level: label.clone() }),
         Some(0.0) => Err(NoEstimates::NoVariation { level: label.clone() }),
+        Some(variance) if !variance.is_finite() => Err(NoEstimates::OutOfRange),
         Some(variance) => Ok(group.n as f64 / variance),
     });
     weights.collect()

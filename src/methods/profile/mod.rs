@@ -146,16 +146,28 @@ fn moments(group: &GroupSummary, origin: f64, confidence: f64) -> Moments {
         Some(t * se).filter(|half| half.is_finite())
     });
     // The offset and its half width are added first: both are small beside the origin.
-    let bound = |sign: f64| half.map(|half| origin + (group.mean + sign * half));
-    Moments { mean: Some(mean), sd, se, lower: bound(-1.0), upper: bound(1.0) }
+    let bound =
+        |sign: f64| half.map(|half| origin + (group.mean + sign * half)).filter(|bound| bound.is_finite());
+    // The sum of the largest numbers has no mean that could be written.
+    Moments {
+        mean: Some(mean).filter(|mean| mean.is_finite()),
+        sd,
+        se,
+        lower: bound(-1.0),
+        upper: bound(1.0),
+    }
 }
 
 impl OrderStatistics {
-    /// Minimum, quartiles, median and maximum of values given as offsets from `origin`; `None` without values.
+    /// Minimum, quartiles, median and maximum of values given as offsets from `origin`; `None` without values,
+    /// or where an offset and the origin together leave the range of numbers.
     pub fn of(offsets: &[f64], origin: f64) -> Option<Self> {
         let mut sorted = offsets.to_vec();
         sorted.sort_by(f64::total_cmp);
         let (first, last) = (*sorted.first()?, *sorted.last()?);
+        if !(origin + first).is_finite() || !(origin + last).is_finite() {
+            return None;
+        }
         Some(Self {
             min: origin + first,
             lower_quartile: origin + quantile(&sorted, 0.25),
@@ -177,5 +189,7 @@ pub fn quantile(sorted: &[f64], p: f64) -> f64 {
     let (part, index) = (position - below, below as usize);
     let lower = sorted[index];
     let upper = sorted[(index + 1).min(sorted.len() - 1)];
-    if part == 0.5 { lower / 2.0 + upper / 2.0 } else { lower + part * (upper - lower) }
+    // As a weighted sum where the difference would leave the range of numbers.
+    let gap = upper - lower;
+    if part == 0.5 || !gap.is_finite() { lower * (1.0 - part) + upper * part } else { lower + part * gap }
 }

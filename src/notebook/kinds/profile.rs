@@ -74,10 +74,14 @@ fn headline(study: &Study, profile: &Profile) -> String {
         return format!("No values of {} yet", study.outcome);
     };
     format!(
-        "{} values of {} in {} groups; means from {} ({}) to {} ({})",
+        "{} values of {} in {}; means from {} ({}) to {} ({})",
         number::count(n),
         study.outcome,
-        profile.groups.len(),
+        if profile.groups.len() == 1 {
+            "1 group".to_owned()
+        } else {
+            format!("{} groups", profile.groups.len())
+        },
         number::estimate(lowest.0, precision),
         lowest.1,
         number::estimate(highest.0, precision),
