@@ -2,6 +2,7 @@
 
 use super::{Laid, cautions, figures, json, words};
 use crate::answer::{Answer, Cell, Precision, Row, Table, number};
+use crate::methods::effect_size::Interval;
 use crate::methods::multiplicity::{
     Adjust, ComparisonRow, Disagreement, ErrorRate, Explanation, Family, Sides,
 };
@@ -15,8 +16,8 @@ const SAID_EACH: usize = 10;
 /// The settled answer.
 pub fn outcome(laid: &Laid) -> Outcome {
     let mut answer = Answer::new(headline(laid)).with_table(table(laid));
-    if let Some(beside) = beside(laid) {
-        answer = answer.with_table(beside);
+    for table in [effects(laid), beside(laid)].into_iter().flatten() {
+        answer = answer.with_table(table);
     }
     answer = answer.with_figure(figures::differences(laid)).with_figure(figures::groups(laid));
     if let Some(found) = &laid.explanation {
@@ -103,19 +104,13 @@ fn table(laid: &Laid) -> Table {
         .number_column("p, raw")
         .number_column("alpha for raw p")
         .number_column("p, adjusted")
-        .text_column(format!("Decision at {}", number::percent(result.alpha)))
-        .number_column("d")
-        .number_column("Interval of d")
-        .number_column("g");
+        .text_column(format!("Decision at {}", number::percent(result.alpha)));
     result.rows.iter().for_each(|row| table.push(table_row(laid, row)));
     notes(laid).into_iter().fold(table, Table::note)
 }
 
 fn table_row(laid: &Laid, row: &ComparisonRow) -> Row {
     let (result, precision) = (&laid.comparisons, precision(laid));
-    let effect = row.effect.as_ref();
-    let d_interval = effect.and_then(|effect| effect.d_interval);
-    let two = Precision::decimals(2);
     let raw = match row.alpha {
         Some(alpha) => p_cell(row.p, alpha),
         None => Cell::p_value(row.p),
@@ -130,9 +125,6 @@ fn table_row(laid: &Laid, row: &ComparisonRow) -> Row {
         row.alpha.map_or_else(Cell::absent, level_cell),
         p_cell(row.p_adjusted, result.alpha),
         Cell::text(words::decision(row, result.sides)),
-        effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.d, two)),
-        d_interval.map_or_else(Cell::absent, |bounds| Cell::interval(bounds.lower, bounds.upper, two)),
-        effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.g, two)),
     ];
     let row_cells = Row::new(cells);
     if row.rejected { row_cells.strong() } else { row_cells }
@@ -178,7 +170,6 @@ fn notes(laid: &Laid) -> Vec<String> {
             "Two readings of one decision: the adjusted p against {alpha}, or the raw p against the alpha beside it. Never both corrections at once.{step}"
         ));
     }
-    notes.push(effect_note(laid));
     if laid.asked.family == Family::Contrasts {
         let rank = crate::methods::contrasts::rank(&json::coefficients(&laid.asked.contrasts));
         if rank < result.family_size {
@@ -201,17 +192,42 @@ fn standardiser(laid: &Laid) -> &'static str {
     }
 }
 
-fn effect_note(laid: &Laid) -> String {
-    let by = standardiser(laid);
+/// d and g of every row, with the interval that goes with its decision.
+fn effects(laid: &Laid) -> Option<Table> {
+    let result = &laid.comparisons;
+    if result.rows.iter().all(|row| row.effect.is_none()) {
+        return None;
+    }
     let scaled = laid.asked.contrasts.iter().any(|contrast| (contrast.half_weight() - 1.0).abs() > 1e-9);
-    let scale = if scaled {
-        " Contrasts are scaled for it to the mean of one set less the mean of another."
-    } else {
-        ""
+    let scale = if scaled { ", scaled to the mean of one set less the mean of another" } else { "" };
+    let mut table = Table::new(format!(
+        "Effect sizes of the same comparisons: d, the {} divided by {}{scale}; g, the same without its small-sample bias",
+        estimate_word(laid),
+        standardiser(laid),
+    ))
+    .text_column("Comparison")
+    .number_column("d")
+    .number_column("Interval of d")
+    .number_column("g")
+    .number_column("Interval of g");
+    let two = Precision::decimals(2);
+    let bounds = |interval: Option<Interval>| {
+        interval.map_or_else(Cell::absent, |it| Cell::interval(it.lower, it.upper, two))
     };
-    format!(
-        "d: the difference divided by {by}; g: the same without its small-sample bias. The interval of d is from the noncentral t at the level of the row's critical value, so it agrees with the interval of the difference.{scale}"
-    )
+    for row in &result.rows {
+        let effect = row.effect.as_ref();
+        let cells = Row::new([
+            Cell::text(name(laid, row)),
+            effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.d, two)),
+            bounds(effect.and_then(|effect| effect.d_interval)),
+            effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.g, two)),
+            bounds(effect.and_then(|effect| effect.g_interval)),
+        ]);
+        table.push(if row.rejected { cells.strong() } else { cells });
+    }
+    Some(table.note(
+        "The intervals are from the noncentral t at the level of the row's critical value, so they agree with those of the estimates above.",
+    ))
 }
 
 /// Other procedures beside the one that decides.

@@ -18,6 +18,9 @@ pub fn outcome(laid: &Laid) -> Outcome {
     if !laid.trend.lack_of_fit.is_empty() {
         answer = answer.with_table(lack_of_fit(laid));
     }
+    if let Some(effects) = effects(laid) {
+        answer = answer.with_table(effects);
+    }
     answer = answer.with_figure(drawing(laid)).with_table(contrasts(laid)).with_writeup(writeup(laid));
     answer.cautions = cautions(laid);
     Outcome::settled(answer, json::results(laid))
@@ -92,29 +95,45 @@ fn table(laid: &Laid) -> Table {
         .number_column("p")
         .text_column(format!("Decision at {}", number::percent(laid.asked.alpha)))
         .number_column("SS")
-        .number_column("Share of SS between")
-        .number_column("d")
-        .number_column("Interval of d")
-        .number_column("g");
+        .number_column("Share of SS between");
     laid.trend.rows.iter().for_each(|row| table.push(table_row(laid, row)));
     let mut notes = vec![
         "Coefficient: what the fitted curve has of this degree, per unit of score (linear), per squared unit (quadratic) and so on.".to_string(),
         "A trend of degree 1 is a straight line; each further degree lets the curve bend once more.".to_string(),
         share_note(laid),
-        effect_note(laid),
     ];
     notes.extend(left_out(laid.study));
     notes.into_iter().fold(table, Table::note)
 }
 
-fn effect_note(laid: &Laid) -> String {
+/// d and g of every degree.
+fn effects(laid: &Laid) -> Option<Table> {
+    if laid.trend.rows.iter().all(|row| row.effect.is_none()) {
+        return None;
+    }
     let by = match laid.study.variances {
         Variances::Equal => "the SD pooled over all levels",
         Variances::Unequal => "the root of the mean variance of the levels",
     };
-    format!(
-        "d: the contrast, scaled to the mean of one set less the mean of another, divided by {by}; g: the same without its small-sample bias. The interval of d is from the noncentral t, at the level of the interval of the coefficient."
-    )
+    let mut table = Table::new(format!(
+        "Effect sizes of the same trends: d, the contrast scaled to the mean of one set less the mean of another and divided by {by}; g, the same without its small-sample bias"
+    ))
+    .text_column("Trend")
+    .number_column("d")
+    .number_column(format!("{} interval of d", number::percent(laid.asked.confidence)))
+    .number_column("g");
+    let two = Precision::decimals(2);
+    for row in &laid.trend.rows {
+        let effect = row.effect.as_ref();
+        let bounds = effect.and_then(|effect| effect.d_interval);
+        table.push(Row::new([
+            Cell::text(row.name),
+            effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.d, two)),
+            bounds.map_or_else(Cell::absent, |it| Cell::interval(it.lower, it.upper, two)),
+            effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.g, two)),
+        ]));
+    }
+    Some(table.note("The intervals are from the noncentral t, so they agree with the tests above."))
 }
 
 fn share_note(laid: &Laid) -> String {
@@ -135,9 +154,6 @@ fn share_note(laid: &Laid) -> String {
 fn table_row(laid: &Laid, row: &TrendRow) -> Row {
     let precision = Precision::from_spread((row.slope_interval.upper - row.slope_interval.lower) / 2.0);
     let ss = Precision::from_spread(laid.trend.ss_between / 100.0);
-    let two = Precision::decimals(2);
-    let effect = row.effect.as_ref();
-    let bounds = effect.and_then(|effect| effect.d_interval);
     let decision = if shown(laid, row) { words::direction(row) } else { "not shown" };
     let cells = Row::new([
         Cell::text(row.name),
@@ -150,9 +166,6 @@ fn table_row(laid: &Laid, row: &TrendRow) -> Row {
         Cell::text(decision),
         Cell::estimate(row.ss, ss),
         row.share.map_or_else(Cell::absent, |share| Cell::number(number::percent(share), share)),
-        effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.d, two)),
-        bounds.map_or_else(Cell::absent, |it| Cell::interval(it.lower, it.upper, two)),
-        effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.g, two)),
     ]);
     if shown(laid, row) { cells.strong() } else { cells }
 }
