@@ -72,7 +72,7 @@ async function read(file, cell, actions) {
     return;
   }
   if (file.size > LARGEST_FILE) {
-    actions.onProblem(`“${file.name}” has ${megabytes(file.size)}; this page reads files of up to ${megabytes(LARGEST_FILE)}. Save it with only the columns that are needed.`);
+    actions.onProblem(`“${file.name}” is a file of ${megabytes(file.size)}; this page reads files of up to ${megabytes(LARGEST_FILE)}. Save it with only the columns that are needed.`);
     return;
   }
   try {

@@ -119,6 +119,8 @@ function makeField(blank, help, onChange) {
   });
   control.addEventListener('blur', () => {
     help.hidden = true;
+    // The line is shared by all blanks; away from the keyboard each has its own help in its title.
+    control.removeAttribute('aria-describedby');
   });
   const tail = document.createTextNode('');
   return { ...field, element: h('span', { class: 'keep' }, field.element, tail), tail, shape: blank.control };
