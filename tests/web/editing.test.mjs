@@ -76,10 +76,12 @@ test('what is typed into a blank stands in the text, what is typed into the text
     await drop(page, PLAN);
     await page.click('[aria-label^="Text of Study"]');
     await comes(page, `document.querySelector('.text-face')?.shadowRoot.activeElement !== null`);
-    await page.focus('[data-field="control"]');
-    await page.keyboard.type('none');
+    await page.focus('[data-field="scores"]');
+    await page.keyboard.type('0, 15, 30');
+    await comes(page, `document.querySelector('.text-face').shadowRoot.querySelector('.cm-content').textContent.includes('scores = [0, 15, 30]')`);
+    assert.equal(await page.evaluate(() => document.activeElement?.getAttribute('data-field')), 'scores', 'the keyboard stays in the blank');
+    await page.select('[data-field="control"]', 'none');
     await comes(page, `document.querySelector('.text-face').shadowRoot.querySelector('.cm-content').textContent.includes('control = "none"')`);
-    assert.equal(await page.evaluate(() => document.activeElement?.getAttribute('data-field')), 'control', 'the keyboard stays in the blank');
     assert.match(await editorText(page), /levels = \["none", "15 min", "30 min"\] # in minutes/, 'comments are kept');
 
     await page.evaluate(() => /** @type {HTMLElement} */ (document.querySelector('.text-face')?.shadowRoot?.querySelector('.cm-content')).focus());
@@ -105,10 +107,10 @@ test('an unknown field is marked in the text and explained below the sentence, a
 test('cells are moved, doubled, deleted, named and brought back without a mouse', async () => {
   await withPage({}, async ({ page }) => {
     await drop(page, PLAN);
-    await page.focus('[data-field="control"]');
+    await page.focus('[data-field="scores"]');
     await press(page, 'Alt+ArrowUp');
     await comes(page, `document.querySelector('.cell h2').textContent === 'Study'`);
-    assert.equal(await page.evaluate(() => document.activeElement?.getAttribute('data-field')), 'control', 'the keyboard moves with the cell');
+    assert.equal(await page.evaluate(() => document.activeElement?.getAttribute('data-field')), 'scores', 'the keyboard moves with the cell');
 
     await page.focus('[aria-label^="Duplicate: Study"]');
     await page.keyboard.press('Enter');
@@ -150,8 +152,8 @@ test('a notebook that is saved and opened again is the same', async () => {
 test('when the engine fails, a fresh one takes over with everything that was typed', async () => {
   await withPage({}, async ({ page, downloaded }) => {
     await drop(page, PLAN);
-    await page.focus('[data-field="control"]');
-    await page.keyboard.type('none');
+    await page.focus('[data-field="scores"]');
+    await page.keyboard.type('0, 15, 30');
     await page.keyboard.press('Tab');
     await comes(page, `document.querySelector('.unsaved').textContent.includes('not saved')`);
     const old = page.workers()[0];
@@ -160,13 +162,13 @@ test('when the engine fails, a fresh one takes over with everything that was typ
       self.postMessage({ type: 'failed', message: 'a test stopped it' });
     });
     await comes(page, `document.querySelector('.notice').textContent.includes('Nothing you typed is lost')`);
-    await comes(page, `document.querySelectorAll('.cell').length === 2 && document.querySelector('[data-field="control"]').value === 'none'`);
+    await comes(page, `document.querySelectorAll('.cell').length === 2 && document.querySelector('[data-field="scores"]').value === '0, 15, 30'`);
     await page.focus('[data-field="unit"]');
     await page.keyboard.type('words');
     await press(page, 'Control+s');
     const saved = await downloaded(/^plan\.levelwise\.toml$/);
     assert.match(saved, /^# Kept as it is\.\nlevelwise = 1\n/);
-    assert.match(saved, /control = "none"/);
+    assert.match(saved, /scores = \[0, 15, 30\]/);
     assert.match(saved, /unit = "words"/);
   });
 });

@@ -42,8 +42,8 @@ export function createCell(id, state, actions) {
   const element = h('section', { class: 'cell', 'aria-labelledby': head.titleId, id: `cell-${id}` }, head.element, content);
   element.addEventListener('keydown', (event) => {
     const direction = { ArrowUp: -1, ArrowDown: 1 }[event.key];
-    // In a list of choices and in the text the same keys have a meaning already.
-    const taken = event.target instanceof Element && event.target.matches('select, input[list], .text-face');
+    // In a list of choices and in the text face the same keys have a meaning already.
+    const taken = event.target instanceof Element && event.target.matches('select, .text-face');
     if (!direction || !event.altKey || event.defaultPrevented || taken) return;
     event.preventDefault();
     actions.moveBy(id, direction);

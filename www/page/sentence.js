@@ -134,10 +134,20 @@ function makeField(blank, help, onChange) {
  */
 function drawCommon(control, blank, problem) {
   control.setAttribute('aria-label', blank.label);
-  control.title = problem || blank.help;
+  control.title = problem || helpOf(blank);
   if (blank.problem || problem) control.setAttribute('aria-invalid', 'true');
   else control.removeAttribute('aria-invalid');
   control.classList.toggle('default', blank.is_default);
+}
+
+/**
+ * The help line of a blank. Where something is typed, it says what can be.
+ * @param {Blank} blank
+ */
+function helpOf(blank) {
+  const words = blank.choices.map((choice) => choice.value).filter((value) => value !== '');
+  if (blank.control === 'choice' || words.length === 0 || words.length > 24) return blank.help;
+  return `${blank.help}${/[.!?]$/.test(blank.help) ? '' : '.'} Known here: ${words.join(', ')}.`;
 }
 
 /**
@@ -180,8 +190,7 @@ function choiceOptions(blank) {
   const offered = blank.choices.find((choice) => choice.value === '');
   const atDefault = blank.value === '';
   const rest = offered?.label ?? (atDefault ? blank.shown : 'leave it to the default');
-  // What the default says in the same words need not be offered twice.
-  const list = choices.filter(({ value, label }) => label !== rest || value === blank.value).map(({ value, label }) => h('option', { value }, label));
+  const list = choices.map(({ value, label }) => h('option', { value }, label));
   if (!atDefault && !choices.some((choice) => choice.value === blank.value)) {
     list.unshift(h('option', { value: blank.value }, blank.shown || blank.value));
   }
@@ -193,20 +202,21 @@ function choiceOptions(blank) {
 }
 
 /**
+ * A blank to type in. Words stand in a control that can go on in a second line as the sentence does; only a long text can
+ * have line breaks of its own.
  * @param {Blank} blank
  * @param {(field: string, value: string) => void} onChange
  */
 function typedField(blank, onChange) {
   const long = blank.control === 'long';
-  const control = long
-    ? h('textarea', { rows: 1, spellcheck: blank.field === 'text' })
-    : h('input', { type: 'text', autocomplete: 'off', spellcheck: false, inputMode: blank.control === 'number' ? 'decimal' : 'text' });
-  const suggestions = h('datalist', { id: freshId('suggestions') });
-  const element = h('span', { class: `blank ${long ? 'long' : 'typed'}` }, control, !long && suggestions);
+  const control =
+    blank.control === 'number'
+      ? h('input', { type: 'text', autocomplete: 'off', spellcheck: false, inputMode: 'decimal' })
+      : h('textarea', { rows: 1, spellcheck: blank.field === 'text' });
+  const element = h('span', { class: `blank ${long ? 'long' : 'typed'}` }, control);
   /** @type {ReturnType<typeof setTimeout>|undefined} */
   let pause;
   let sent = blank.value;
-  let listed = '';
 
   const fit = () => {
     element.dataset['shown'] = control.value || control.placeholder;
@@ -214,6 +224,7 @@ function typedField(blank, onChange) {
   const send = () => {
     clearTimeout(pause);
     pause = undefined;
+    if (!long) control.value = control.value.replace(/\s*\n\s*/g, ' ');
     if (control.value === sent) return;
     sent = control.value;
     onChange(blank.field, control.value);
@@ -224,6 +235,13 @@ function typedField(blank, onChange) {
     pause = setTimeout(send, PAUSE);
   });
   control.addEventListener('change', send);
+  if (!long) {
+    control.addEventListener('keydown', (event) => {
+      if (/** @type {KeyboardEvent} */ (event).key !== 'Enter') return;
+      event.preventDefault();
+      send();
+    });
+  }
   control.addEventListener('blur', send);
   return {
     element,
@@ -244,13 +262,6 @@ function typedField(blank, onChange) {
       control.placeholder = now.value === '' ? now.shown || '…' : '';
       fit();
       drawCommon(control, now, problem);
-      const list = JSON.stringify(now.choices);
-      if (!long && list !== listed) {
-        listed = list;
-        suggestions.replaceChildren(...now.choices.map(({ value, label }) => h('option', { value, label: label === value ? undefined : label })));
-        if (now.choices.length > 0) control.setAttribute('list', suggestions.id);
-        else control.removeAttribute('list');
-      }
     },
     send,
   };
