@@ -29,5 +29,5 @@ pub fn relative_error(computed: f64, expected: f64) -> f64 {
 /// StRD sets).
 pub fn log_relative_error(computed: f64, expected: f64) -> f64 {
     let error = relative_error(computed, expected);
-    if error == 0.0 { 15.0 } else { (-error.log10()).min(15.0) }
+    if error == 0.0 { 15.0 } else { (-libm::log10(error)).min(15.0) }
 }
