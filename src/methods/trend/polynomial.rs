@@ -89,8 +89,10 @@ pub struct PolynomialTrend {
     pub confidence: f64,
     pub ss_between: f64,
     pub rows: Vec<TrendRow>,
-    /// The curve with all degrees at the scores, as offsets from the estimates' origin.
-    pub fitted: Vec<f64>,
+    /// The mean of the levels in the weights of the contrasts, as an offset from the estimates' origin.
+    pub centre: f64,
+    /// The weight of each level in the contrasts.
+    pub level_weights: Vec<f64>,
     /// One for each degree up to the one asked for that leaves something to test.
     pub lack_of_fit: Vec<LackOfFit>,
 }
@@ -143,34 +145,39 @@ pub fn polynomial(request: &TrendRequest) -> Result<PolynomialTrend, NoTrend> {
         variances: variances(estimates),
         confidence: request.confidence,
         ss_between,
-        fitted: fitted(request, &rows),
+        centre: centre(request),
+        level_weights: weights_of(request),
         rows,
         lack_of_fit: lack_of_fit(request)?,
     })
 }
 
 impl PolynomialTrend {
-    /// The fitted curve at a score inside the range of the scores, as an offset from the estimates' origin.
+    /// The curve with the degrees up to `degree` at a score inside the range of the scores, as an offset from the
+    /// estimates' origin.
     ///
-    /// The polynomial of degree d is the one through d + 1 of its own points at the scores, by Lagrange's formula.
-    pub fn at(&self, x: f64) -> f64 {
-        let (last, degree) = (self.scores.len() - 1, self.rows.len());
+    /// It is the polynomial through `degree` + 1 of its own points at the scores, by Lagrange's formula.
+    pub fn at(&self, x: f64, degree: usize) -> f64 {
+        let (last, degree) = (self.scores.len() - 1, degree.min(self.rows.len()));
         let nodes: Vec<usize> = (0..=degree).map(|j| j * last / degree.max(1)).collect();
         let part = |i: usize| {
             let others = nodes.iter().filter(|j| **j != i);
             others.map(|j| (x - self.scores[*j]) / (self.scores[i] - self.scores[*j])).product::<f64>()
         };
-        sum(nodes.iter().map(|i| self.fitted[*i] * part(*i)))
+        sum(nodes.iter().map(|i| self.fitted(*i, degree) * part(*i)))
+    }
+
+    /// The centre plus the slopes of the degrees up to `degree` times their polynomials, at the level `i`.
+    fn fitted(&self, i: usize, degree: usize) -> f64 {
+        let terms =
+            self.rows.iter().take(degree).map(|row| row.slope * row.coefficients[i] / self.level_weights[i]);
+        self.centre + sum(terms)
     }
 }
 
-/// The weighted mean plus every degree's slope times its polynomial.
-fn fitted(request: &TrendRequest, rows: &[TrendRow]) -> Vec<f64> {
+fn centre(request: &TrendRequest) -> f64 {
     let w = weights_of(request);
-    let means = &request.estimates.means;
-    let centre = sum(w.iter().zip(means).map(|(w, m)| w * m)) / sum(w.iter().copied());
-    let terms = |i: usize| rows.iter().map(move |row| row.slope * row.coefficients[i]);
-    (0..means.len()).map(|i| centre + sum(terms(i).map(|term| term / w[i]))).collect()
+    sum(w.iter().zip(&request.estimates.means).map(|(w, m)| w * m)) / sum(w.iter().copied())
 }
 
 /// The contrasts c_i = w_i P_r(x_i) for r = 1..=`degree`, P_r monic and orthogonal in the weights.

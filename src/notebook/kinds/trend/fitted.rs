@@ -3,7 +3,7 @@
 use super::{Laid, json, plan, words};
 use crate::answer::figure::{self, Point, Span, Trend, TrendPoint};
 use crate::answer::{Answer, Cell, Figure, Precision, Row, Table, number};
-use crate::methods::trend::{LackOfFit, TrendRow, Weights};
+use crate::methods::trend::{LackOfFit, TrendRow, Weights, degree_name};
 use crate::notebook::kinds::wording::{left_out, listed, outcome_with_unit, p_cell, p_statement, sizes};
 use crate::notebook::outcome::Outcome;
 use crate::numerics::distributions::student_t;
@@ -87,7 +87,6 @@ fn table(laid: &Laid) -> Table {
     let level = number::percent(laid.asked.confidence);
     let mut table = Table::new(format!("{}: {}", outcome_with_unit(laid.study), method(laid)))
         .text_column("Trend")
-        .text_column("Looks for")
         .number_column("Coefficient")
         .number_column(format!("{level} interval"))
         .number_column("t")
@@ -156,8 +155,7 @@ fn table_row(laid: &Laid, row: &TrendRow) -> Row {
     let ss = Precision::from_spread(laid.trend.ss_between / 100.0);
     let decision = if shown(laid, row) { words::direction(row) } else { "not shown" };
     let cells = Row::new([
-        Cell::text(row.name),
-        Cell::text(words::meaning(row.degree)),
+        Cell::text(format!("{} ({})", row.name, words::meaning(row.degree))),
         Cell::estimate(row.slope, precision),
         Cell::interval(row.slope_interval.lower, row.slope_interval.upper, precision),
         Cell::statistic(row.t),
@@ -231,6 +229,15 @@ fn contrasts(laid: &Laid) -> Table {
     table
 }
 
+/// The degree of the drawn curve: the one asked for where it leaves something over. A curve through every mean would
+/// only swing between them, so then it is the highest degree that is shown; none where none is.
+fn curve_degree(laid: &Laid) -> usize {
+    if laid.asked.degree + 1 < laid.asked.scores.len() {
+        return laid.asked.degree;
+    }
+    laid.trend.rows.iter().rev().find(|row| shown(laid, row)).map_or(0, |row| row.degree)
+}
+
 fn drawing(laid: &Laid) -> Figure {
     let (study, estimates, scores) = (laid.study, laid.estimates, &laid.asked.scores);
     let points = (0..estimates.labels.len()).map(|i| TrendPoint {
@@ -240,16 +247,18 @@ fn drawing(laid: &Laid) -> Figure {
         interval: mean_interval(laid, i),
     });
     let (first, last) = (scores[0], scores[scores.len() - 1]);
-    let curve = (0..=CURVE).map(|step| {
+    let degree = curve_degree(laid);
+    let curve = (0..=CURVE).filter(|_| degree > 0).map(|step| {
         let share = step as f64 / CURVE as f64;
         let x = first * (1.0 - share) + last * share;
-        Point { x, y: estimates.origin + laid.trend.at(x) }
+        Point { x, y: estimates.origin + laid.trend.at(x, degree) }
     });
     let spread = match study.variances {
         Variances::Equal => "SD pooled over all levels",
         Variances::Unequal => "own SD",
     };
-    let through = if laid.asked.degree + 1 == scores.len() { ", through every mean" } else { "" };
+    let which =
+        if degree == laid.asked.degree { "the degree asked for" } else { "the highest that is shown" };
     figure::trend(&Trend {
         title: format!("{} over the scores of {}", study.outcome, study.factor),
         x_axis: format!("Score of {}", study.factor),
@@ -258,7 +267,7 @@ fn drawing(laid: &Laid) -> Figure {
             "Bars: mean with its {} interval, each level by itself ({spread})",
             number::percent(laid.asked.confidence)
         ),
-        curve_words: format!("Curve: all trends up to degree {}{through}", laid.asked.degree),
+        curve_words: format!("Curve: the trends up to {} ({which})", degree_name(degree)),
         points: points.collect(),
         curve: curve.collect(),
     })
