@@ -9,6 +9,7 @@ mod central;
 mod comparisons;
 mod effect_size;
 mod invariances;
+mod many_to_one;
 mod nist_strd;
 mod noncentral_f;
 mod noncentral_t;

@@ -8,6 +8,7 @@
 pub mod beta;
 pub mod chi_squared;
 pub mod fisher_f;
+pub mod many_to_one;
 pub mod noncentral_chi_squared;
 pub mod noncentral_f;
 pub mod noncentral_t;
@@ -15,6 +16,7 @@ pub mod normal;
 mod poisson_mixture;
 mod scale_mixture;
 pub mod student_t;
+pub mod studentized_maximum;
 pub mod studentized_range;
 
 use crate::numerics::OutOfDomain;
