@@ -29,7 +29,7 @@ export function createCell(id, state, actions) {
   const known = () => {
     const { cells, kinds } = state();
     const cell = cells.get(id);
-    return { sentence: cell?.sentence ?? [], fields: kinds.find((kind) => kind.name === cell?.kind)?.fields ?? [] };
+    return { sentence: cell?.sentence ?? [], fields: kinds.find((kind) => kind.name === cell?.kind)?.fields ?? [], kinds: kinds.map((kind) => kind.name) };
   };
   const mark = conditionMark();
   const head = createHead(id, mark.element, actions);

@@ -7,7 +7,7 @@
 /** @typedef {import('./messages.js').Blank} Blank */
 /** @typedef {{ label: string, apply: string, detail?: string, info?: string }} Option */
 /** @typedef {{ from: number, options: Option[] }} Completions */
-/** @typedef {Pick<CellView, 'sentence'> & { fields: readonly string[] }} Known `fields`: every field of the kind, also those outside the sentence */
+/** @typedef {Pick<CellView, 'sentence'> & { fields: readonly string[], kinds: readonly string[] }} Known `fields`: every field of the kind, also those outside the sentence */
 
 /**
  * The options at `position` (UTF-16 units) of `text`, or null where nothing sensible can be offered.
@@ -67,14 +67,18 @@ function fieldNames(text, from, cell) {
  * @returns {Completions|null}
  */
 function fieldValues(field, typed, position, cell) {
-  const blank = blanks(cell).find((candidate) => candidate.field === field);
-  if (!blank || blank.choices.length === 0) return null;
+  const choices = field === 'kind' ? cell.kinds.map((kind) => ({ value: kind, label: kind })) : blanks(cell).find((blank) => blank.field === field)?.choices ?? [];
+  if (choices.length === 0) return null;
+  const bare = blanks(cell).some((blank) => blank.field === field && blank.control === 'number');
   const opened = openQuote(typed);
-  const from = position - (opened === null ? /[^\s,[\]{}]*$/.exec(typed)?.[0].length ?? 0 : opened.length + 1);
-  const options = blank.choices
+  const word = opened === null ? /[^\s,[\]{}]*$/.exec(typed)?.[0] ?? '' : `"${opened}`;
+  // A value begins right after the equals sign, or in a list after its bracket or a comma.
+  if (!/(^|[[,])\s*$/.test(typed.slice(0, typed.length - word.length))) return null;
+  const from = position - word.length;
+  const options = choices
     .filter((choice) => choice.value !== '')
     .map(({ value, label }) => {
-      const written = blank.control === 'number' ? value : quoted(value);
+      const written = bare ? value : quoted(value);
       return { label: written, apply: written, ...(label === value ? {} : { detail: label }) };
     });
   return { from, options };

@@ -75,10 +75,10 @@ export function createSentence(onChange) {
     element,
     help,
     draw,
-    /** Puts the keyboard into the first blank that has a problem, else the first one. */
+    /** Puts the keyboard into the first blank that has a problem or is not filled in, else the first one. */
     focus() {
       const all = [...fields.values()].map((field) => field.control);
-      const first = all.find((control) => control.getAttribute('aria-invalid') === 'true') ?? all[0];
+      const first = all.find((control) => control.matches('.open, [aria-invalid="true"]')) ?? all[0];
       first?.focus();
       return first !== undefined;
     },
@@ -137,7 +137,9 @@ function drawCommon(control, blank, problem) {
   control.title = problem || helpOf(blank);
   if (blank.problem || problem) control.setAttribute('aria-invalid', 'true');
   else control.removeAttribute('aria-invalid');
-  control.classList.toggle('default', blank.is_default);
+  // What has no default and is not filled in yet shows only an ellipsis.
+  control.classList.toggle('open', blank.value === '' && blank.shown === '…');
+  control.classList.toggle('default', blank.is_default && blank.shown !== '…');
 }
 
 /**

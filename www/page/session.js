@@ -7,6 +7,7 @@ import { compiledEngine, workerSource } from './blocks.js';
 import { createEngine } from './engine.js';
 import { saveNotebook, saveReport } from './files.js';
 import { notebookFile, preambleOf } from './keep.js';
+import { cellTitle } from './kinds.js';
 import { afterFailure, afterRecovery, afterUpdate, cellsInOrder, withRows } from './state.js';
 
 /** @typedef {import('./messages.js').Message} Message */
@@ -25,6 +26,8 @@ export function createSession(store) {
   let preamble = '';
   let failedAt = -Infinity;
   let tell = (/** @type {string} */ _words) => {};
+  /** Answers computed since all was settled the last time. */
+  let renewed = 0;
   /** The request with which a fresh engine is being given the cells; 0 otherwise. */
   let recovery = 0;
 
@@ -65,7 +68,7 @@ export function createSession(store) {
         if (recovery) store.update((state) => afterRecovery(state, message.order));
         recovery = 0;
         store.update((state) => afterUpdate(state, message));
-        if (message.settled && message.recomputed.length > 0) tell(renewed(message.recomputed.length));
+        tellWhenSettled(message);
         break;
       case 'rows':
         store.update((state) => withRows(state, message));
@@ -81,6 +84,14 @@ export function createSession(store) {
         break;
       default:
     }
+  }
+
+  function tellWhenSettled(/** @type {import('./messages.js').Update} */ message) {
+    renewed += message.recomputed.length;
+    if (!message.settled) return;
+    const words = settledWords(renewed, cellsInOrder(store.get()));
+    renewed = 0;
+    if (words) tell(words);
   }
 
   function refused(/** @type {number} */ seq, /** @type {string} */ words) {
@@ -154,7 +165,13 @@ export function createSession(store) {
   };
 }
 
-/** @param {number} count */
-function renewed(count) {
-  return count === 1 ? 'One answer renewed.' : `${count} answers renewed.`;
+/**
+ * What is said when all is computed: how much was, and which cells need the person.
+ * @param {number} count
+ * @param {readonly import('./messages.js').CellView[]} cells
+ */
+function settledWords(count, cells) {
+  const renewed = count === 0 ? '' : count === 1 ? 'One answer renewed.' : `${count} answers renewed.`;
+  const needing = cells.filter((cell) => cell.condition === 'needs you').map(cellTitle);
+  return needing.length === 0 ? renewed : `${renewed} Needs you: ${needing.join(', ')}.`.trim();
 }

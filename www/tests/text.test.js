@@ -8,7 +8,7 @@ import { spaced } from '../page/spacing.js';
 import { fileKind, fileStem, looksLikeTable, notebookName, tabSeparated } from '../page/tables.js';
 
 const blank = (field, choices, control = 'choice') => ({ type: 'blank', field, label: field, value: '', shown: '', control, help: '', is_default: true, problem: false, choices: choices.map((value) => ({ value, label: value })) });
-const study = { fields: ['outcome', 'unit'], sentence: [{ type: 'words', text: 'Compare ' }, blank('outcome', ['words recalled', 'age']), blank('control', ['none', '15 min'], 'text'), blank('alpha', ['0.05'], 'number')] };
+const study = { kinds: ['note', 'study'], fields: ['outcome', 'unit'], sentence: [{ type: 'words', text: 'Compare ' }, blank('outcome', ['words recalled', 'age']), blank('control', ['none', '15 min'], 'text'), blank('alpha', ['0.05'], 'number')] };
 const at = (marked) => completionsAt(marked.replace('|', ''), marked.indexOf('|'), study);
 const labels = (found) => found?.options.map((option) => option.label);
 
@@ -20,6 +20,7 @@ test('at the start of a line the fields that are not given yet are offered', () 
 test('after the equals sign the choices of that field are offered, in quotes unless they are numbers', () => {
   assert.deepEqual(labels(at('outcome = |')), ['"words recalled"', '"age"']);
   assert.deepEqual(labels(at('alpha = |')), ['0.05']);
+  assert.deepEqual(labels(at('kind = "st|')), ['"note"', '"study"']);
   assert.equal(at('outcome = "wo|').from, 10);
   assert.deepEqual(labels(at('control = ["none",\n  "1|')), ['"none"', '"15 min"']);
 });
@@ -35,6 +36,7 @@ test('the parts of a sentence get their spaces', () => {
 test('inside a long text, and for a field without choices, nothing is offered', () => {
   assert.equal(at('text = """\nou|'), null);
   assert.equal(at('unit = "|'), null);
+  assert.equal(at('outcome = "age" "|'), null);
 });
 
 test('the difference of two texts is the smallest single replacement', () => {
