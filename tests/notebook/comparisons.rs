@@ -108,6 +108,21 @@ fn no_word_makes_a_missing_difference_an_equality_and_no_star_marks_a_difference
 }
 
 #[test]
+fn against_a_control_is_dunnetts_or_welch_with_holm() {
+    let equal = settled("family = \"each against control\"", controlled(Variances::Equal));
+    assert_eq!(equal.results["adjust"], "Dunnett");
+    near(&[equal.results["critical"].as_f64().unwrap()], &[2.513483], 5e-7);
+    near(&numbers(&equal, "p_adjusted"), &[0.620102, 0.00582536], 5e-7);
+    let greater =
+        settled("family = \"each against control\"\nsides = \"greater\"", controlled(Variances::Equal));
+    near(&numbers(&greater, "p_adjusted"), &[0.324978, 0.00291388], 5e-7);
+    assert_eq!(greater.results["rows"][0]["upper"], "inf");
+    let unequal = settled("family = \"each against control\"", controlled(Variances::Unequal));
+    assert_eq!(unequal.results["adjust"], "Holm");
+    near(&numbers(&unequal, "df"), &[6.7759, 6.3330], 5e-5);
+}
+
+#[test]
 fn both_readings_of_a_correction_stand_side_by_side() {
     let bonferroni =
         settled("adjust = \"Bonferroni\"\nalso = [\"Holm\", \"Scheffe\"]", blood_counts(Variances::Equal));

@@ -155,6 +155,26 @@ fn tukey_kramer_games_howell_and_scheffe_agree_with_the_twelve_data_sets() {
     }
 }
 
+#[test]
+fn dunnett_agrees_with_the_twelve_data_sets() {
+    for case in cases("datasets") {
+        let layout = layout(&groups_of(&case), Variances::Equal);
+        let both = compared(&layout, Set::AgainstControl(0), Adjust::Dunnett);
+        let greater = sided(&layout, Set::AgainstControl(0), Adjust::Dunnett, Sides::Greater, 0.05);
+        close(both.critical.unwrap(), number(&case["dunnett"]["critical_d"]), TOLERANCE, "critical d");
+        for (i, expected) in case["dunnett"]["comparisons"].as_array().unwrap().iter().enumerate() {
+            let (row, what) = (&both.rows[i], format!("{} {}", case["name"], both.rows[i].name));
+            close(row.estimate, number(&expected["diff"]), 1e-9, &what);
+            close(row.t, number(&expected["t"]), 1e-9, &what);
+            close(row.p_adjusted, number(&expected["p"]), TOLERANCE, &what);
+            close(greater.rows[i].p_adjusted, number(&expected["p_greater"]), TOLERANCE, &what);
+            close(row.interval.lower, number(&expected["ci_lower"]), 1e-7, &what);
+            close(row.interval.upper, number(&expected["ci_upper"]), 1e-7, &what);
+            assert_eq!(greater.rows[i].interval.upper, f64::INFINITY);
+        }
+    }
+}
+
 fn etch() -> Vec<Vec<f64>> {
     [
         [575, 542, 530, 539, 570],
@@ -222,6 +242,17 @@ fn the_blood_counts_give_the_values_computed_for_them() {
 }
 
 #[test]
+fn dunnetts_own_example_gives_his_critical_values_and_the_p_values_computed_for_it() {
+    let layout = layout(&blood(), Variances::Equal);
+    let both = compared(&layout, Set::AgainstControl(0), Adjust::Dunnett);
+    printed(&[both.critical.unwrap()], &["2.513483"], "two-sided critical value");
+    printed(&column(&both), &[".620102", ".00582536"], "two-sided");
+    let greater = sided(&layout, Set::AgainstControl(0), Adjust::Dunnett, Sides::Greater, 0.05);
+    printed(&[greater.critical.unwrap()], &["2.121078"], "one-sided critical value");
+    printed(&column(&greater), &[".324978", ".00291388"], "one-sided");
+}
+
+#[test]
 fn effect_sizes_of_the_blood_counts_agree_alone_and_at_tukeys_level() {
     let layout = layout(&blood(), Variances::Equal);
     let alone = compared(&layout, Set::AllPairs, Adjust::PValues(None));
@@ -261,6 +292,25 @@ fn a_contrast_of_the_blood_counts_agrees_with_one_error_term_and_with_separate_v
         let row = &result.rows[0];
         assert_eq!(row.words, "mean of L1 and L2 minus L0");
         printed(&[row.estimate, row.se, row.t, row.df, row.p_adjusted], &expected, "contrast");
+    }
+}
+
+/// Dunnett (1955, 1964), tables of t for p treatments and df degrees of freedom at 5 %.
+#[test]
+fn dunnetts_tables_are_met_to_their_last_digit() {
+    let table = [
+        (Sides::Both, [(2, 5, "3.030"), (2, 12, "2.502"), (3, 16, "2.592"), (4, 20, "2.651")]),
+        (Sides::Greater, [(2, 5, "2.440"), (2, 12, "2.108"), (3, 16, "2.227"), (4, 20, "2.304")]),
+    ];
+    for (sides, rows) in table {
+        for (treatments, df, expected) in rows {
+            // Any means and variance do; what counts are equal sizes and the df, which are put in by hand.
+            let groups: Vec<Vec<f64>> = (0..=treatments).map(|i| vec![i as f64, i as f64 + 1.0]).collect();
+            let mut layout = layout(&groups, Variances::Equal);
+            layout.estimates.df = levelwise::study::DegreesOfFreedom::Common(f64::from(df));
+            let result = sided(&layout, Set::AgainstControl(0), Adjust::Dunnett, sides, 0.05);
+            printed(&[result.critical.unwrap()], &[expected], "Dunnett's table");
+        }
     }
 }
 
@@ -389,6 +439,11 @@ fn two_groups_are_the_t_test_whatever_the_procedure() {
                 close(row.p_adjusted, row.p, 1e-10, adjust.name());
             }
         }
+        let layout = layout(&groups_of(case), Variances::Equal);
+        for sides in [Sides::Both, Sides::Greater, Sides::Less] {
+            let row = &sided(&layout, Set::AgainstControl(0), Adjust::Dunnett, sides, 0.05).rows[0];
+            close(row.p_adjusted, row.p, 1e-10, "Dunnett");
+        }
     }
 }
 
@@ -430,7 +485,7 @@ proptest! {
 
     #[test]
     fn single_step_decisions_intervals_effects_and_both_readings_agree(groups in summaries(), alpha in 0.001..0.2_f64) {
-        let single_step = [Adjust::Tukey, Adjust::GamesHowell, Adjust::Scheffe,
+        let single_step = [Adjust::Tukey, Adjust::GamesHowell, Adjust::Dunnett, Adjust::Scheffe,
             Adjust::PValues(None), Adjust::PValues(Bonferroni), Adjust::PValues(Sidak)];
         for variances in [Variances::Equal, Variances::Unequal] {
             let layout = from_summaries(&groups, variances);

@@ -5,6 +5,7 @@
 
 use super::Sides;
 use crate::numerics::OutOfDomain;
+use crate::numerics::distributions::many_to_one;
 use crate::study::Estimates;
 
 /// Relative error that the distribution's tail stays below (`tests/reference/accuracy.rs` lists what it reaches).
@@ -20,23 +21,23 @@ pub fn loadings(estimates: &Estimates, control: usize) -> Vec<f64> {
 /// Adjusted p-value of a comparison with this t: P(max |T| ≥ |t|), or P(max T ≥ t) towards the side asked for.
 ///
 /// # Errors
-/// [`OutOfDomain`] always, until the distribution of the largest of these t statistics is among the distributions.
-pub fn adjusted_p(_t: f64, _loadings: &[f64], df: f64, _sides: Sides) -> Result<f64, OutOfDomain> {
-    Err(not_there(df))
+/// [`OutOfDomain`] from the distribution.
+pub fn adjusted_p(t: f64, loadings: &[f64], df: f64, sides: Sides) -> Result<f64, OutOfDomain> {
+    match sides {
+        Sides::Both => many_to_one::sf(t.abs(), loadings, df, many_to_one::Sides::Both),
+        Sides::Greater => many_to_one::sf(t, loadings, df, many_to_one::Sides::Greater),
+        Sides::Less => many_to_one::sf(-t, loadings, df, many_to_one::Sides::Greater),
+    }
 }
 
 /// The critical value d: differences of more than d standard errors are significant at `alpha`.
 ///
 /// # Errors
-/// [`OutOfDomain`] always, until the distribution of the largest of these t statistics is among the distributions.
-pub fn critical(_alpha: f64, _loadings: &[f64], df: f64, _sides: Sides) -> Result<f64, OutOfDomain> {
-    Err(not_there(df))
-}
-
-fn not_there(df: f64) -> OutOfDomain {
-    OutOfDomain {
-        argument: "df of Dunnett's distribution, which is not built yet,",
-        value: df,
-        allowed: "left to another procedure",
-    }
+/// [`OutOfDomain`] from the distribution.
+pub fn critical(alpha: f64, loadings: &[f64], df: f64, sides: Sides) -> Result<f64, OutOfDomain> {
+    let sides = match sides {
+        Sides::Both => many_to_one::Sides::Both,
+        Sides::Greater | Sides::Less => many_to_one::Sides::Greater,
+    };
+    many_to_one::upper_quantile(alpha, loadings, df, sides)
 }

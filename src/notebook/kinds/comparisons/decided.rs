@@ -104,7 +104,7 @@ fn table(laid: &Laid) -> Table {
         .number_column("p, raw")
         .number_column("alpha for raw p")
         .number_column("p, adjusted")
-        .text_column(format!("Decision at {}", number::percent(result.alpha)));
+        .text_column("Decision");
     result.rows.iter().for_each(|row| table.push(table_row(laid, row)));
     notes(laid).into_iter().fold(table, Table::note)
 }

@@ -71,7 +71,7 @@ fn table(asked: &Asked, result: &GivenComparisons, also: &[(Adjust, Vec<f64>)]) 
     .number_column("p, given")
     .number_column("alpha for given p")
     .number_column("p, adjusted")
-    .text_column(format!("Decision at {}", number::percent(asked.alpha)));
+    .text_column("Decision");
     for (adjust, _) in also {
         table = table.number_column(format!("p, {}", words::procedure(*adjust)));
     }

@@ -3,7 +3,7 @@
 use super::{Laid, json, plan, words};
 use crate::answer::figure::{self, Point, Span, Trend, TrendPoint};
 use crate::answer::{Answer, Cell, Figure, Precision, Row, Table, number};
-use crate::methods::trend::{LackOfFit, TrendRow, Weights, degree_name};
+use crate::methods::trend::{LackOfFit, TrendRow, Weights};
 use crate::notebook::kinds::wording::{left_out, listed, outcome_with_unit, p_cell, p_statement, sizes};
 use crate::notebook::outcome::Outcome;
 use crate::numerics::distributions::student_t;
@@ -18,10 +18,11 @@ pub fn outcome(laid: &Laid) -> Outcome {
     if !laid.trend.lack_of_fit.is_empty() {
         answer = answer.with_table(lack_of_fit(laid));
     }
-    if let Some(effects) = effects(laid) {
-        answer = answer.with_table(effects);
-    }
-    answer = answer.with_figure(drawing(laid)).with_table(contrasts(laid)).with_writeup(writeup(laid));
+    answer = answer
+        .with_table(sizes_of_trends(laid))
+        .with_figure(drawing(laid))
+        .with_table(contrasts(laid))
+        .with_writeup(writeup(laid));
     answer.cautions = cautions(laid);
     Outcome::settled(answer, json::results(laid))
 }
@@ -92,47 +93,47 @@ fn table(laid: &Laid) -> Table {
         .number_column("t")
         .number_column("df")
         .number_column("p")
-        .text_column(format!("Decision at {}", number::percent(laid.asked.alpha)))
-        .number_column("SS")
-        .number_column("Share of SS between");
+        .text_column("Decision");
     laid.trend.rows.iter().for_each(|row| table.push(table_row(laid, row)));
     let mut notes = vec![
         "Coefficient: what the fitted curve has of this degree, per unit of score (linear), per squared unit (quadratic) and so on.".to_string(),
         "A trend of degree 1 is a straight line; each further degree lets the curve bend once more.".to_string(),
-        share_note(laid),
     ];
     notes.extend(left_out(laid.study));
     notes.into_iter().fold(table, Table::note)
 }
 
-/// d and g of every degree.
-fn effects(laid: &Laid) -> Option<Table> {
-    if laid.trend.rows.iter().all(|row| row.effect.is_none()) {
-        return None;
-    }
+/// How much of the differences between the means each degree has: its share, d and g.
+fn sizes_of_trends(laid: &Laid) -> Table {
     let by = match laid.study.variances {
         Variances::Equal => "the SD pooled over all levels",
         Variances::Unequal => "the root of the mean variance of the levels",
     };
     let mut table = Table::new(format!(
-        "Effect sizes of the same trends: d, the contrast scaled to the mean of one set less the mean of another and divided by {by}; g, the same without its small-sample bias"
+        "Sizes of the same trends: share of the sum of squares between the groups; d, the contrast scaled to the mean of one set less the mean of another and divided by {by}; g, the same without its small-sample bias"
     ))
     .text_column("Trend")
+    .number_column("SS")
+    .number_column("Share")
     .number_column("d")
     .number_column(format!("{} interval of d", number::percent(laid.asked.confidence)))
     .number_column("g");
-    let two = Precision::decimals(2);
+    let (two, ss) = (Precision::decimals(2), Precision::from_spread(laid.trend.ss_between / 100.0));
     for row in &laid.trend.rows {
         let effect = row.effect.as_ref();
         let bounds = effect.and_then(|effect| effect.d_interval);
         table.push(Row::new([
             Cell::text(row.name),
+            Cell::estimate(row.ss, ss),
+            row.share.map_or_else(Cell::absent, |share| Cell::number(number::percent(share), share)),
             effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.d, two)),
             bounds.map_or_else(Cell::absent, |it| Cell::interval(it.lower, it.upper, two)),
             effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.g, two)),
         ]));
     }
-    Some(table.note("The intervals are from the noncentral t, so they agree with the tests above."))
+    table
+        .note(share_note(laid))
+        .note("The intervals of d are from the noncentral t, so they agree with the tests above.")
 }
 
 fn share_note(laid: &Laid) -> String {
@@ -152,7 +153,6 @@ fn share_note(laid: &Laid) -> String {
 
 fn table_row(laid: &Laid, row: &TrendRow) -> Row {
     let precision = Precision::from_spread((row.slope_interval.upper - row.slope_interval.lower) / 2.0);
-    let ss = Precision::from_spread(laid.trend.ss_between / 100.0);
     let decision = if shown(laid, row) { words::direction(row) } else { "not shown" };
     let cells = Row::new([
         Cell::text(format!("{} ({})", row.name, words::meaning(row.degree))),
@@ -162,8 +162,6 @@ fn table_row(laid: &Laid, row: &TrendRow) -> Row {
         Cell::df(row.df),
         p_cell(row.p, laid.asked.alpha),
         Cell::text(decision),
-        Cell::estimate(row.ss, ss),
-        row.share.map_or_else(Cell::absent, |share| Cell::number(number::percent(share), share)),
     ]);
     if shown(laid, row) { cells.strong() } else { cells }
 }
@@ -267,7 +265,7 @@ fn drawing(laid: &Laid) -> Figure {
             "Bars: mean with its {} interval, each level by itself ({spread})",
             number::percent(laid.asked.confidence)
         ),
-        curve_words: format!("Curve: the trends up to {} ({which})", degree_name(degree)),
+        curve_words: format!("Curve: polynomial of degree {degree} ({which})"),
         points: points.collect(),
         curve: curve.collect(),
     })
