@@ -58,6 +58,8 @@ function decorate(body, cell, fileStem, say) {
       ),
     );
   });
+  // One landmark for each cell is enough to find one's way by; its parts are groups.
+  for (const part of body.querySelectorAll('section, [role="region"]')) part.setAttribute('role', 'group');
   if (cell.writeup) {
     const place = body.querySelector('.a-writeup');
     const bar = takeaway(button('Copy write-up', 'Copy write-up to the clipboard', async () => report(say, 'Write-up', await copy(cell.writeup))));

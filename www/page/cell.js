@@ -2,7 +2,7 @@
 
 import { createAnswer } from './answer.js';
 import { conditionMark } from './condition.js';
-import { drawing, freshId, h, setText } from './dom.js';
+import { drawing, h, setText } from './dom.js';
 import { createGrid } from './grid.js';
 import { cellTitle, kindTitle } from './kinds.js';
 import { createPastePlace } from './paste-place.js';
@@ -39,7 +39,7 @@ export function createCell(id, state, actions) {
   const table = h('div', { class: 'table-place' });
   const answer = createAnswer(actions.say);
   const content = h('div', { class: 'content' }, faces, problems, table, answer.element);
-  const element = h('section', { class: 'cell', 'aria-labelledby': head.titleId, id: `cell-${id}` }, head.element, content);
+  const element = h('section', { class: 'cell', id: `cell-${id}` }, head.element, content);
   element.addEventListener('keydown', (event) => {
     const direction = { ArrowUp: -1, ArrowDown: 1 }[event.key];
     // In a list of choices and in the text face the same keys have a meaning already.
@@ -107,6 +107,7 @@ export function createCell(id, state, actions) {
       const cell = now.cells.get(id);
       if (!cell) return;
       head.draw(cell, now);
+      element.setAttribute('aria-label', cell.name ? cellTitle(cell) : `${cellTitle(cell)}, cell ${now.order.indexOf(id) + 1}`);
       mark.draw(cell.condition);
       element.dataset['kind'] = cell.kind ?? 'unknown';
       element.classList.toggle('plain', cell.kind === 'note' && cell.answer !== '');
@@ -143,8 +144,7 @@ export function createCell(id, state, actions) {
  * @param {Actions} actions
  */
 function createHead(id, mark, actions) {
-  const titleId = freshId('title');
-  const heading = h('h2', { id: titleId, tabIndex: -1 });
+  const heading = h('h2', { tabIndex: -1 });
   // A long name goes on in a second line, which only this control can.
   const name = h('textarea', { rows: 1, class: 'name', spellcheck: false, placeholder: 'name' });
   const nameBox = h('span', { class: 'blank typed name-box' }, name);
@@ -179,7 +179,6 @@ function createHead(id, mark, actions) {
 
   return {
     element,
-    titleId,
     focus: () => heading.focus(),
     /**
      * @param {CellView} cell
