@@ -2,8 +2,8 @@
 
 use levelwise::numerics::OutOfDomain;
 use levelwise::numerics::distributions::{
-    beta, chi_squared, fisher_f, noncentral_chi_squared, noncentral_f, noncentral_t, normal, student_t,
-    studentized_range,
+    beta, chi_squared, fisher_f, many_to_one, noncentral_chi_squared, noncentral_f, noncentral_t, normal,
+    student_t, studentized_maximum, studentized_range,
 };
 use proptest::prelude::*;
 
@@ -141,5 +141,22 @@ proptest! {
         let solved = noncentral_f::noncentrality(f, df1, df, p).unwrap();
         let back = noncentral_f::cdf(f, df1, df, solved).unwrap();
         prop_assert!((back / p - 1.0).abs() < 1e-10 || solved == 0.0 && back <= p, "F: {back} {p}");
+    }
+
+    #[test]
+    fn comparisons_with_a_control_answer_or_refuse_every_number(
+        d in any_number(), df in any_number(), loadings in prop::collection::vec(-1.0..1.0f64, 0..5), any in any_number()
+    ) {
+        let with_any: Vec<f64> = loadings.iter().copied().chain([any]).collect();
+        for sides in [many_to_one::Sides::Both, many_to_one::Sides::Greater] {
+            is_probability(many_to_one::cdf(d, &loadings, df, sides))?;
+            is_probability(many_to_one::sf(d, &with_any, df, sides))?;
+            is_number(many_to_one::quantile(d, &loadings, df, sides))?;
+            is_number(many_to_one::upper_quantile(d, &with_any, df, sides))?;
+        }
+        is_probability(studentized_maximum::cdf(d, loadings.len(), df))?;
+        is_probability(studentized_maximum::sf(d, loadings.len(), df))?;
+        is_number(studentized_maximum::quantile(d, loadings.len(), df))?;
+        is_number(studentized_maximum::upper_quantile(d, loadings.len(), df))?;
     }
 }

@@ -7,6 +7,7 @@
 
 pub mod beta;
 pub mod chi_squared;
+pub mod continuous;
 pub mod fisher_f;
 pub mod many_to_one;
 pub mod noncentral_chi_squared;
@@ -14,6 +15,7 @@ pub mod noncentral_f;
 pub mod noncentral_t;
 pub mod normal;
 mod poisson_mixture;
+pub mod rank_counts;
 mod scale_mixture;
 pub mod student_t;
 pub mod studentized_maximum;
