@@ -8,6 +8,7 @@ mod cases;
 mod central;
 mod comparisons;
 mod continuous;
+mod contrasts;
 mod effect_size;
 mod invariances;
 mod many_to_one;

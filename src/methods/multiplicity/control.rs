@@ -9,7 +9,7 @@ use crate::numerics::distributions::many_to_one;
 use crate::study::Estimates;
 
 /// Relative error that the distribution's tail stays below (`tests/reference/accuracy.rs` lists what it reaches).
-pub const RELATIVE_ERROR: f64 = 1e-9;
+pub const RELATIVE_ERROR: f64 = 1e-11;
 
 /// The loading λ of every level but the control, in their order. The covariance of the means must be diagonal.
 pub fn loadings(estimates: &Estimates, control: usize) -> Vec<f64> {
