@@ -93,11 +93,15 @@ fn table(laid: &Laid) -> Table {
         .number_column("t")
         .number_column("df")
         .number_column("p")
-        .text_column("Decision");
+        .text_column("Decision")
+        .number_column("SS");
     laid.trend.rows.iter().for_each(|row| table.push(table_row(laid, row)));
     let mut notes = vec![
         "Coefficient: what the fitted curve has of this degree, per unit of score (linear), per squared unit (quadratic) and so on.".to_string(),
-        "A trend of degree 1 is a straight line; each further degree lets the curve bend once more.".to_string(),
+        format!(
+            "Each degree lets the curve bend once more: {}.",
+            listed(laid.trend.rows.iter().map(|row| format!("{} is {}", row.name, words::meaning(row.degree))))
+        ),
     ];
     notes.extend(left_out(laid.study));
     notes.into_iter().fold(table, Table::note)
@@ -113,18 +117,16 @@ fn sizes_of_trends(laid: &Laid) -> Table {
         "Sizes of the same trends: share of the sum of squares between the groups; d, the contrast scaled to the mean of one set less the mean of another and divided by {by}; g, the same without its small-sample bias"
     ))
     .text_column("Trend")
-    .number_column("SS")
     .number_column("Share")
     .number_column("d")
     .number_column(format!("{} interval of d", number::percent(laid.asked.confidence)))
     .number_column("g");
-    let (two, ss) = (Precision::decimals(2), Precision::from_spread(laid.trend.ss_between / 100.0));
+    let two = Precision::decimals(2);
     for row in &laid.trend.rows {
         let effect = row.effect.as_ref();
         let bounds = effect.and_then(|effect| effect.d_interval);
         table.push(Row::new([
             Cell::text(row.name),
-            Cell::estimate(row.ss, ss),
             row.share.map_or_else(Cell::absent, |share| Cell::number(number::percent(share), share)),
             effect.map_or_else(Cell::absent, |effect| Cell::estimate(effect.d, two)),
             bounds.map_or_else(Cell::absent, |it| Cell::interval(it.lower, it.upper, two)),
@@ -153,15 +155,17 @@ fn share_note(laid: &Laid) -> String {
 
 fn table_row(laid: &Laid, row: &TrendRow) -> Row {
     let precision = Precision::from_spread((row.slope_interval.upper - row.slope_interval.lower) / 2.0);
+    let ss = Precision::from_spread(laid.trend.ss_between / 100.0);
     let decision = if shown(laid, row) { words::direction(row) } else { "not shown" };
     let cells = Row::new([
-        Cell::text(format!("{} ({})", row.name, words::meaning(row.degree))),
+        Cell::text(row.name),
         Cell::estimate(row.slope, precision),
         Cell::interval(row.slope_interval.lower, row.slope_interval.upper, precision),
         Cell::statistic(row.t),
         Cell::df(row.df),
         p_cell(row.p, laid.asked.alpha),
         Cell::text(decision),
+        Cell::estimate(row.ss, ss),
     ]);
     if shown(laid, row) { cells.strong() } else { cells }
 }
