@@ -121,3 +121,157 @@ fn a_sentence_edit_of_a_broken_text_is_refused_and_changes_nothing() {
     assert_eq!(engine.write(), before);
     assert!(!engine.can_undo());
 }
+
+#[test]
+fn a_pasted_table_stands_in_the_file_as_it_was_pasted() {
+    let mut engine = Engine::new();
+    apply(&mut engine, Edit::Table { cell: None, text: "arm\tscore\r\n\"a\\b\"\t1\r\nb\t2".into() });
+    assert!(
+        engine.write().contains("\ntable = '''\narm\tscore\n\"a\\b\"\t1\nb\t2\n'''\n"),
+        "{}",
+        engine.write()
+    );
+    let cell = engine.order()[0];
+    apply(&mut engine, Edit::TableValue { cell, row: 1, column: 0, value: "'''".into() });
+    assert_eq!(engine.table(cell).expect("a table").columns[0].text(1), "'''");
+}
+
+#[test]
+fn a_pasted_table_with_one_outcome_and_one_grouping_column_fills_the_study() {
+    let mut engine = Engine::new();
+    apply(&mut engine, Edit::Table { cell: None, text: "arm,score\na,1\na,2\nb,4\nb,6".into() });
+    let study = engine.cell(engine.order()[1]).expect("a cell");
+    assert_eq!(
+        (study.kind, study.condition),
+        (Some(Kind::Study), Condition::Settled),
+        "{:?}",
+        study.diagnostics
+    );
+}
+
+/// A notebook with two branches: a table with a study and its questions, and a power cell for itself.
+const BRANCHES: &str = r#"levelwise = 1
+[[cell]]
+kind = "data"
+name = "d"
+table = '''
+id,arm,score
+p1,a,1
+p2,a,2
+p3,b,4
+p4,b,6
+p5,c,9
+p6,c,7
+'''
+[[cell]]
+kind = "study"
+name = "s"
+data = "d"
+outcome = "score"
+groups = "arm"
+[[cell]]
+kind = "overall"
+name = "o"
+study = "s"
+[[cell]]
+kind = "comparisons"
+name = "c"
+study = "s"
+[[cell]]
+kind = "power"
+name = "p"
+groups = 3
+effect = 0.4
+"#;
+
+fn names(engine: &Engine, cells: &[u32]) -> Vec<String> {
+    cells
+        .iter()
+        .map(|&id| engine.cell(id).and_then(|cell| cell.name.map(str::to_string)).unwrap_or_default())
+        .collect()
+}
+
+fn changed_value(engine: &mut Engine, column: usize, value: &str) -> Vec<String> {
+    let cell = engine.order()[0];
+    let recomputed = apply(engine, Edit::TableValue { cell, row: 0, column, value: value.into() });
+    names(engine, &recomputed)
+}
+
+#[test]
+fn a_changed_value_recomputes_what_depends_on_it_and_nothing_else() {
+    let mut engine = opened(BRANCHES);
+    assert_eq!(changed_value(&mut engine, 2, "1.5"), ["d", "s", "o", "c"]);
+    assert_eq!(changed_value(&mut engine, 2, "1"), [""; 0], "the old answers are found again");
+}
+
+#[test]
+fn a_value_that_the_study_does_not_use_disturbs_nobody_beyond_it() {
+    let mut engine = opened(BRANCHES);
+    assert_eq!(changed_value(&mut engine, 0, "p0"), ["d", "s"]);
+}
+
+#[test]
+fn a_field_recomputes_its_cell_only_unless_others_read_from_it() {
+    let mut engine = opened(BRANCHES);
+    let [_, study, _, comparisons, power] = engine.order()[..] else { panic!("five cells") };
+    let set = |engine: &mut Engine, cell, field: &str, value: &str| {
+        let recomputed = apply(engine, Edit::Field { cell, field: field.into(), value: value.into() });
+        names(engine, &recomputed)
+    };
+    assert_eq!(set(&mut engine, comparisons, "adjust", "Holm"), ["c"]);
+    assert_eq!(set(&mut engine, power, "groups", "4"), ["p"]);
+    assert_eq!(set(&mut engine, study, "alpha", "1 %"), ["s", "o", "c"]);
+    assert_eq!(
+        set(&mut engine, study, "better", "sideways"),
+        ["s"],
+        "a study to be mended leaves the others waiting"
+    );
+    assert_eq!(engine.cell(comparisons).expect("a cell").condition, Condition::Waiting);
+    assert_eq!(engine.cell(power).expect("a cell").condition, Condition::Settled);
+}
+
+#[test]
+fn renaming_a_cell_takes_its_readers_along_and_recomputes_nothing() {
+    let mut engine = opened(BRANCHES);
+    let study = engine.order()[1];
+    assert_eq!(apply(&mut engine, Edit::Rename { cell: study, name: "trial".into() }), [0u32; 0]);
+    assert!(engine.write().matches("study = \"trial\"").count() == 2);
+    assert!(
+        engine.is_settled()
+            && engine.cell(engine.order()[2]).expect("a cell").condition == Condition::Settled
+    );
+}
+
+#[test]
+fn edits_between_slices_are_taken_and_the_outcome_is_the_same() {
+    let mut whole = opened(BRANCHES);
+    let mut sliced = Engine::new();
+    sliced.open(BRANCHES).expect("a notebook");
+    assert!(!sliced.is_settled());
+    assert!(sliced.advance());
+    let cell = sliced.order()[1];
+    let edit = Edit::Field { cell, field: "variances".into(), value: "equal".into() };
+    sliced.apply(edit.clone()).expect("accepted");
+    while sliced.advance() {}
+    let recomputed = sliced.take_changes().recomputed;
+    assert_eq!(
+        names(&sliced, &recomputed),
+        ["d", "p", "s", "o", "c"],
+        "the study was not computed for the older ask"
+    );
+    whole.apply(edit).expect("accepted");
+    whole.settle();
+    let results = levelwise::notebook::results::results;
+    assert_eq!(results(&whole), results(&sliced));
+}
+
+#[test]
+fn deleting_the_study_leaves_its_readers_waiting_for_a_name_and_undo_settles_them_from_kept_answers() {
+    let mut engine = opened(BRANCHES);
+    let study = engine.order()[1];
+    assert_eq!(apply(&mut engine, Edit::Remove { cell: study }), [0u32; 0]);
+    let overall = engine.order()[1];
+    assert_eq!(engine.cell(overall).expect("a cell").condition, Condition::NeedsYou);
+    assert_eq!(apply(&mut engine, Edit::Undo), [0u32; 0]);
+    assert_eq!(engine.cell(overall).expect("a cell").condition, Condition::Settled);
+}

@@ -73,10 +73,11 @@ impl Ask {
         cells.filter_map(|field| Some((field, self.text_of(field.name)?))).collect()
     }
 
-    /// What decides the answer: every field but the name, without comments, order or spacing.
+    /// What decides the answer: every field but the name, without comments, order or spacing. The names of the cells
+    /// that it reads from are not part of it: what these hand over is.
     pub fn essence(&self) -> String {
         let mut essence = self.kind.name().to_string();
-        for field in self.kind.table().fields {
+        for field in self.kind.table().fields.iter().filter(|field| !matches!(field.holds, Holds::Cell(_))) {
             if let Some(item) = self.item(field.name) {
                 essence.push('\n');
                 essence.push_str(field.name);

@@ -108,7 +108,7 @@ fn after_kind(text: &str, name: &str) -> String {
 fn value_of(field: &Field, typed: &str) -> Value {
     let trimmed = typed.trim();
     match field.holds {
-        Holds::LongText => Value::from(typed.replace("\r\n", "\n").replace('\r', "\n")),
+        Holds::LongText => long_text(&typed.replace("\r\n", "\n").replace('\r', "\n")),
         Holds::Choice(choices) => {
             let known = choices.iter().find(|choice| choice.value.eq_ignore_ascii_case(trimmed));
             Value::from(known.map_or(trimmed, |choice| choice.value))
@@ -138,6 +138,16 @@ fn value_of(field: &Field, typed: &str) -> Value {
         }
         Holds::Text | Holds::Cell(_) | Holds::Column | Holds::Level => Value::from(trimmed),
     }
+}
+
+/// Several lines between quotes that leave everything as it is, tabs and backslashes included, so that a pasted
+/// table can be read in the file; escaped only where the text itself rules that out.
+fn long_text(text: &str) -> Value {
+    let plain = !text.contains("'''")
+        && !text.ends_with('\'')
+        && !text.chars().any(|c| c.is_control() && !matches!(c, '\n' | '\t'));
+    let literal = plain.then(|| format!("'''\n{text}'''").parse::<Value>().ok()).flatten();
+    literal.unwrap_or_else(|| Value::from(text))
 }
 
 /// A number as TOML writes it: a decimal comma and a per cent sign are understood. Anything else stays text.
