@@ -256,7 +256,7 @@ fn edits_between_slices_are_taken_and_the_outcome_is_the_same() {
     let recomputed = sliced.take_changes().recomputed;
     assert_eq!(
         names(&sliced, &recomputed),
-        ["d", "p", "s", "o", "c"],
+        ["d", "s", "o", "c", "p"],
         "the study was not computed for the older ask"
     );
     whole.apply(edit).expect("accepted");
