@@ -555,4 +555,24 @@ proptest! {
             }
         }
     }
+
+    #[test]
+    fn procedures_stand_in_their_known_order(groups in summaries()) {
+        let layout = from_summaries(&groups, Variances::Equal);
+        let p = |set, adjust| column(&compared(&layout, set, adjust));
+        let below = |one: Vec<f64>, other: Vec<f64>| one.iter().zip(&other).all(|(a, b)| *a <= b * (1.0 + 1e-9));
+        // Šidák's inequality (1967) for Dunnett's correlations; the range of the means is one contrast among all.
+        let control = Set::AgainstControl(0);
+        prop_assert!(below(p(control, Adjust::Dunnett), p(control, Adjust::PValues(Sidak))));
+        prop_assert!(below(p(Set::AllPairs, Adjust::Tukey), p(Set::AllPairs, Adjust::Scheffe)));
+        // One side looks at half of the tail when the difference lies on it.
+        let (both, greater) = (
+            sided(&layout, control, Adjust::PValues(None), Sides::Both, 0.05),
+            sided(&layout, control, Adjust::PValues(None), Sides::Greater, 0.05),
+        );
+        for (both, greater) in both.rows.iter().zip(&greater.rows) {
+            let expected = if both.t > 0.0 { both.p / 2.0 } else { 1.0 - both.p / 2.0 };
+            prop_assert!((greater.p - expected).abs() < 1e-14);
+        }
+    }
 }
