@@ -3,7 +3,6 @@
  * neither the worker nor the store.
  */
 
-import { copy } from './copy.js';
 import { cellTitle } from './kinds.js';
 import * as states from './state.js';
 
@@ -140,9 +139,6 @@ export function createActions({ store, send, flush, chooseFile, say }) {
     },
     dismiss() {
       update((state) => ({ ...state, notice: null }));
-    },
-    async copyText(/** @type {string} */ text) {
-      say((await copy(text)) ? 'Copied.' : 'The browser did not let this page copy.');
     },
   };
 }

@@ -93,7 +93,6 @@ export function createCell(id, state, actions) {
         ask: (from, count) => actions.askRows(id, from, count),
         setValue: (row, column, value) => actions.setValue(id, row, column, value),
         setTable: (pasted) => actions.setTable(id, pasted),
-        copy: actions.copyText,
       });
       table.replaceChildren(grid.element, h('p', { class: 'table-hint' }, 'Type over a value to change it. A table pasted here replaces this one; undo brings it back.'));
     }

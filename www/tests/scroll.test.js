@@ -1,5 +1,6 @@
 import assert from 'node:assert/strict';
 import { test } from 'node:test';
+import { columnWidths } from '../page/grid-parts.js';
 import { TALLEST, bodyHeight, scrollToRow, visibleRows } from '../page/scroll.js';
 
 const small = { total: 100, rowHeight: 28, viewHeight: 280 };
@@ -38,4 +39,12 @@ test('every row can be brought into view from the top and from the bottom', () =
 
 test('a row in view does not move the table', () => {
   assert.equal(scrollToRow(small, 56, 5), 56);
+});
+
+test('columns grow with their values and never shrink while the same table is shown', () => {
+  const window = (rows) => ({ type: 'rows', cell: 1, from: 0, total: 3, excluded: [], columns: [{ name: 'arm', type: 'label' }], rows });
+  const first = columnWidths([], window([['a'.repeat(15)]]));
+  assert.deepEqual(first, [8, 17]);
+  assert.deepEqual(columnWidths(first, window([['b']])), first);
+  assert.deepEqual(columnWidths(first, window([['c'.repeat(500)]])), [8, 32]);
 });
