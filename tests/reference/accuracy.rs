@@ -39,6 +39,7 @@ const PERMITTED: &[(&str, f64)] = &[
     ("studentized maximum, tail", 1e-13),
     ("studentized maximum, quantile", 1e-13),
     ("rank counts", 1e-14),
+    ("multivariate t, rank 2", 1e-12),
     ("noncentral t, tail", 1e-13),
     // One limit is 1.2e-5 beside a standard error of 1: its last bits are those of the level.
     ("noncentral t, noncentrality", 1e-10),

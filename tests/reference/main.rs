@@ -12,6 +12,7 @@ mod contrasts;
 mod effect_size;
 mod invariances;
 mod many_to_one;
+mod multivariate_t;
 mod nist_strd;
 mod noncentral_f;
 mod noncentral_t;

@@ -139,7 +139,9 @@ impl Comparisons {
             let value = loadings.len() as f64;
             return Err(OutOfDomain { argument: "number of loadings", value, allowed: "from 1 to 1000" });
         }
-        if let Some(&value) = loadings.iter().find(|loading| !(loading.abs() <= LARGEST_LOADING)) {
+        if let Some(&value) =
+            loadings.iter().find(|loading| loading.is_nan() || loading.abs() > LARGEST_LOADING)
+        {
             return Err(OutOfDomain { argument: "loadings", value, allowed: "between -1 and 1" });
         }
         // With both sides only the size of a loading counts.

@@ -10,6 +10,7 @@ pub mod chi_squared;
 pub mod continuous;
 pub mod fisher_f;
 pub mod many_to_one;
+pub mod multivariate_t;
 pub mod noncentral_chi_squared;
 pub mod noncentral_f;
 pub mod noncentral_t;
