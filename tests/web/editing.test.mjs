@@ -156,9 +156,13 @@ test('when the engine fails, a fresh one takes over with everything that was typ
     await page.keyboard.type('0, 15, 30');
     await page.keyboard.press('Tab');
     await comes(page, `document.querySelector('.unsaved').textContent.includes('not saved')`);
-    const old = page.workers()[0];
+    // Typed and not yet sent when the engine fails.
+    await page.$eval('.cell[data-kind="study"] [data-field="outcome"]', (blank) => {
+      /** @type {HTMLTextAreaElement} */ (blank).value = 'words recalled';
+      blank.dispatchEvent(new Event('input'));
+    });
     // What a failing engine makes the worker do.
-    await old?.evaluate(() => {
+    await page.workers()[0]?.evaluate(() => {
       self.postMessage({ type: 'failed', message: 'a test stopped it' });
     });
     await comes(page, `document.querySelector('.notice').textContent.includes('Nothing you typed is lost')`);
@@ -170,6 +174,7 @@ test('when the engine fails, a fresh one takes over with everything that was typ
     assert.match(saved, /^# Kept as it is\.\nlevelwise = 1\n/);
     assert.match(saved, /scores = \[0, 15, 30\]/);
     assert.match(saved, /unit = "words"/);
+    assert.match(saved, /outcome = "words recalled"/);
   });
 });
 

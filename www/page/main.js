@@ -80,10 +80,11 @@ async function begin() {
     actions.setTable(null, text);
   });
   addEventListener('beforeunload', (event) => {
+    flush();
     if (store.get().unsaved) event.preventDefault();
   });
 
-  await session.start(say);
+  await session.start(say, flush);
   const asked = exampleAsked(location.hash);
   if (asked !== null) openExample(asked);
 }

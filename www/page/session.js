@@ -42,7 +42,15 @@ export function createSession(store) {
   /** Saves that have been asked for and not come back, in order. @type {{ name: string, changed: number }[]} */
   const saving = [];
 
+  /** What was asked while no engine had the cells, naming them by their old ids; null while one has them. @type {Request[]|null} */
+  let missed = null;
+  let flush = () => {};
+
   function send(/** @type {Request} */ request) {
+    if (missed && request.type !== 'open') {
+      if (request.type !== 'rows') missed.push(request);
+      return changed;
+    }
     const seq = engine.send(request);
     if (request.type === 'save') saving.push({ name: store.get().fileName, changed });
     else if (request.type === 'rows') asides = [...asides.slice(-50), seq];
@@ -65,9 +73,8 @@ export function createSession(store) {
       case 'update':
         // What a fresh engine says before it has the cells would take them off the page.
         if (message.seq < recovery) break;
-        if (recovery) store.update((state) => afterRecovery(state, message.order));
-        recovery = 0;
-        store.update((state) => afterUpdate(state, message));
+        if (recovery) recovered(message);
+        else store.update((state) => afterUpdate(state, message));
         tellWhenSettled(message);
         break;
       case 'rows':
@@ -97,19 +104,39 @@ export function createSession(store) {
   function refused(/** @type {number} */ seq, /** @type {string} */ words) {
     // Rows of a table that has gone meanwhile were asked for by the page, not by the person.
     if (asides.includes(seq)) return;
-    if (seq === opening?.seq) {
-      preamble = opening.preamble;
-      store.update((state) => ({ ...state, fileName: opening?.name ?? state.fileName, unsaved: opening?.unsaved ?? state.unsaved }));
-    }
+    if (seq === opening?.seq) backFromOpening();
     // What a blank shows is the person's typing; it goes back to what is in force.
     store.update((state) => ({ ...state, heard: Math.max(state.heard, seq), notice: { text: words, tone: 'problem' } }));
   }
 
+  /** The notebook that was to be opened is not; the one before still stands. */
+  function backFromOpening() {
+    if (!opening) return;
+    const { name, unsaved } = opening;
+    preamble = opening.preamble;
+    store.update((state) => ({ ...state, fileName: name, unsaved }));
+  }
+
   function restart() {
     const text = keptText();
+    // Texts typed meanwhile are in there already.
+    missed = (missed ?? []).filter((request) => request.type !== 'edit_text');
     engine.restart();
-    recovery = send({ type: 'open', text });
+    recovery = engine.send({ type: 'open', text });
     store.update((state) => ({ ...state, engine: 'starting' }));
+  }
+
+  function recovered(/** @type {import('./messages.js').Update} */ message) {
+    recovery = 0;
+    const before = store.get().order;
+    store.update((state) => afterUpdate(afterRecovery(state, message.order), message));
+    const again = missed ?? [];
+    missed = null;
+    const ids = new Map(before.map((id, i) => [id, message.order[i]]));
+    for (const request of again) {
+      const moved = withNewIds(request, ids);
+      if (moved) send(moved);
+    }
   }
 
   function onFailure(/** @type {string} */ words) {
@@ -117,6 +144,9 @@ export function createSession(store) {
     failedAt = performance.now();
     recovery = 0;
     saving.length = 0;
+    if (opening && opening.seq > store.get().heard) backFromOpening();
+    missed ??= [];
+    flush();
     store.update(afterFailure);
     if (again) {
       store.update((state) => ({ ...state, notice: { text: `What the engine said last: ${words}`, tone: 'problem' } }));
@@ -139,9 +169,13 @@ export function createSession(store) {
     send,
     restart,
     keptText,
-    /** @param {(words: string) => void} say */
-    async start(say) {
+    /**
+     * @param {(words: string) => void} say
+     * @param {() => void} flushControls
+     */
+    async start(say, flushControls) {
       tell = say;
+      flush = flushControls;
       engine.start({ source: workerSource(), module: await compiledEngine() });
     },
     /**
@@ -151,6 +185,7 @@ export function createSession(store) {
      * @param {() => void} save
      */
     async openGuarded(text, name, save) {
+      flush();
       if (store.get().unsaved) {
         const answer = await ask('This notebook has changes that are not saved. Opening another one takes its place.', [
           { value: 'save', label: 'Save it, then open' },
@@ -163,6 +198,21 @@ export function createSession(store) {
       open(text, name);
     },
   };
+}
+
+/**
+ * A request that names cells by the ids that a fresh engine gave them; null if its cell is gone.
+ * @param {Request} request
+ * @param {ReadonlyMap<number, number|undefined>} ids
+ * @returns {Request|null}
+ */
+function withNewIds(request, ids) {
+  const key = 'cell' in request ? 'cell' : 'after';
+  /** @type {number|null|undefined} */
+  const old = Reflect.get(request, key);
+  if (old === null || old === undefined) return request;
+  const now = ids.get(old);
+  return now === undefined ? null : { ...request, [key]: now };
 }
 
 /**
