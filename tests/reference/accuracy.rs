@@ -34,7 +34,7 @@ const PERMITTED: &[(&str, f64)] = &[
     ("central, round trip of a quantile", 1e-12),
     ("studentized range, tail", 1e-13),
     ("studentized range, quantile", 1e-13),
-    ("many to one, tail", 1e-12),
+    ("many to one, tail", 1e-13),
     ("many to one, quantile", 1e-12),
     ("studentized maximum, tail", 1e-13),
     ("studentized maximum, quantile", 1e-13),

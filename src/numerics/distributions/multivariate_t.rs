@@ -189,9 +189,8 @@ impl Family {
                     rest[i][j] -= column[i] * column[j];
                 }
             }
-            for i in 0..count {
-                (rest[i][pivot], rest[pivot][i]) = (0.0, 0.0);
-            }
+            rest[pivot].fill(0.0);
+            rest.iter_mut().for_each(|row| row[pivot] = 0.0);
         }
         if let Some(&value) = rest.iter().flatten().find(|value| value.abs() > 1e-6) {
             let allowed = "positive semi-definite (a remainder of 0)";
