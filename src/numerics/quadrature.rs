@@ -52,30 +52,12 @@ impl Rule {
         }
         half * sum
     }
-
-    /// The nodes and weights of this rule moved to the interval from `low` to `high`.
-    pub fn points(&self, low: f64, high: f64) -> impl Iterator<Item = (f64, f64)> + '_ {
-        let (middle, half) = (0.5 * (low + high), 0.5 * (high - low));
-        self.nodes.iter().zip(&self.weights).map(move |(node, weight)| (middle + half * node, half * weight))
-    }
-}
-
-/// The shared rule with 16 nodes.
-pub fn rule_16() -> &'static Rule {
-    static RULE: OnceLock<Rule> = OnceLock::new();
-    RULE.get_or_init(|| Rule::gauss_legendre(16))
 }
 
 /// The shared rule with 32 nodes.
 pub fn rule_32() -> &'static Rule {
     static RULE: OnceLock<Rule> = OnceLock::new();
     RULE.get_or_init(|| Rule::gauss_legendre(32))
-}
-
-/// The shared rule with 64 nodes.
-pub fn rule_64() -> &'static Rule {
-    static RULE: OnceLock<Rule> = OnceLock::new();
-    RULE.get_or_init(|| Rule::gauss_legendre(64))
 }
 
 /// An integral and what is known of its error.
