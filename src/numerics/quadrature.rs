@@ -105,7 +105,9 @@ pub fn trapezoid_outward(peak: f64, step: f64, mut integrand: impl FnMut(i32) ->
             index += direction;
             let term = integrand(index);
             sum += term;
-            if term <= 1e-17 * sum {
+            // Written so that a term that is no number ends the sum too.
+            let counts = term > 1e-17 * sum;
+            if !counts {
                 break;
             }
         }

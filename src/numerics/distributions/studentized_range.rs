@@ -174,6 +174,9 @@ impl Range {
     ///
     /// The step is halved: the rule's error is relative to 1, and here the small values count.
     fn range_cdf(&self, w: f64) -> f64 {
+        if w > 80.0 {
+            return 1.0; // short of it by less than 1e-600
+        }
         let k = (self.others + 1) as f64;
         let step = 0.5 * self.step;
         quadrature::trapezoid_outward(self.peak.min(0.5 * w), step, |i| {
