@@ -161,10 +161,10 @@ proptest! {
     }
 }
 
-/// A fraction of a degree of freedom spreads the quantiles over hundreds of powers of ten; the integrals still end.
+/// At the smallest degrees of freedom allowed the quantiles spread over hundreds of powers of ten; the integrals still end.
 #[test]
 fn quantiles_of_the_studentized_range_end_at_tiny_degrees_of_freedom() {
-    for df in [1e-300, 1e-8, 1e-3, 0.03] {
+    for df in [0.001, 0.003, 0.03] {
         for p in [5e-324, 1e-20, 0.01, 0.5, 0.999_99] {
             for found in [studentized_range::quantile(p, 3, df), studentized_range::upper_quantile(p, 3, df)]
             {
