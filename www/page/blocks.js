@@ -23,8 +23,8 @@ function bytesOf(base64) {
 /** The engine, compiled; each worker makes its own instance of it. */
 export async function compiledEngine() {
   const packed = new Blob([bytesOf(block('engine'))]);
-  const plain = new Response(packed.stream().pipeThrough(new DecompressionStream('gzip')));
-  return WebAssembly.compile(await plain.arrayBuffer());
+  const plain = packed.stream().pipeThrough(new DecompressionStream('gzip'));
+  return WebAssembly.compileStreaming(new Response(plain, { headers: { 'Content-Type': 'application/wasm' } }));
 }
 
 /** The worker's source, as script text. */

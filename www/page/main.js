@@ -1,5 +1,6 @@
 /** The page's beginning: puts the parts together and starts the engine. */
 
+import './compiling.js';
 import { createActions } from './actions.js';
 import { examples as readExamples } from './blocks.js';
 import { h, setText } from './dom.js';

@@ -3,7 +3,8 @@
  */
 
 import { ask } from './ask.js';
-import { compiledEngine, workerSource } from './blocks.js';
+import { workerSource } from './blocks.js';
+import { compiling } from './compiling.js';
 import { createEngine } from './engine.js';
 import { saveNotebook, saveReport } from './files.js';
 import { notebookFile, preambleOf } from './keep.js';
@@ -176,7 +177,7 @@ export function createSession(store) {
     async start(say, flushControls) {
       tell = say;
       flush = flushControls;
-      engine.start({ source: workerSource(), module: await compiledEngine() });
+      engine.start({ source: workerSource(), module: await compiling });
     },
     /**
      * Opens a notebook, after asking if changes would be lost.
