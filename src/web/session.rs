@@ -8,6 +8,10 @@ use std::collections::BTreeMap;
 use std::sync::Arc;
 use wasm_bindgen::prelude::*;
 
+/// Cells are computed for about this long, in milliseconds, before the page is told and newer requests are heard: a
+/// frame of a screen with sixty a second. Cells that take longer are told one by one.
+const SLICE: f64 = 16.0;
+
 /// Texts longer than this are not sent again while they stay the same.
 const LONG_TEXT: usize = 20_000;
 
@@ -46,9 +50,16 @@ impl Session {
         }
     }
 
-    /// Computes one cell and tells the page; false when nothing is left to compute.
+    /// Computes a slice of what is left and tells the page; false when nothing is left to compute.
     pub fn advance(&mut self) -> bool {
-        let worked = self.engine.advance();
+        let start = js_sys::Date::now();
+        let mut worked = false;
+        while self.engine.advance() {
+            worked = true;
+            if js_sys::Date::now() - start >= SLICE {
+                break;
+            }
+        }
         if worked {
             self.tell();
         }

@@ -39,18 +39,16 @@ export function createRail(element, onChoose) {
     for (const [id, item] of items) item.setCurrent(id === current);
   }
   let waiting = false;
-  addEventListener(
-    'scroll',
-    () => {
-      if (waiting) return;
-      waiting = true;
-      requestAnimationFrame(() => {
-        waiting = false;
-        markInView();
-      });
-    },
-    { passive: true },
-  );
+  /** Marks it with the next frame: looking for it any earlier would make the browser lay out the page once more. */
+  function markSoon() {
+    if (waiting) return;
+    waiting = true;
+    requestAnimationFrame(() => {
+      waiting = false;
+      markInView();
+    });
+  }
+  addEventListener('scroll', markSoon, { passive: true });
 
   return {
     /** @param {State} now */
@@ -70,7 +68,7 @@ export function createRail(element, onChoose) {
       element.hidden = now.order.length === 0;
       setText(toggle, summary(now));
       inView = -1;
-      markInView();
+      markSoon();
     },
   };
 }
