@@ -106,16 +106,19 @@ fn row_markup(row: &Row, columns: &[Column]) -> Markup {
             @for (place, column) in columns.iter().enumerate() {
                 @let cell = row.cells.get(place).unwrap_or(&empty);
                 @if place == 0 && !cell.absent { (row_heading(cell, column)) }
-                @else { td class=[class_of(column.align)] { (content(cell)) } }
+                @else { td class=[class_of(column.align).or(short(cell))] { (content(cell)) } }
             }
         }
     }
 }
 
 fn row_heading(cell: &Cell, column: &Column) -> Markup {
-    // A short name stays on one line; the numbers beside it may scroll.
-    let short = (cell.text.chars().count() <= 24).then_some("a-short");
-    html! { th scope="row" class=[class_of(column.align).or(short)] { (content(cell)) } }
+    html! { th scope="row" class=[class_of(column.align).or(short(cell))] { (content(cell)) } }
+}
+
+/// Short words stay on one line; the numbers beside them may scroll.
+fn short(cell: &Cell) -> Option<&'static str> {
+    (!cell.text.is_empty() && cell.text.chars().count() <= 24).then_some("a-short")
 }
 
 fn content(cell: &Cell) -> Markup {

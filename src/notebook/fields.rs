@@ -17,6 +17,8 @@ pub struct Field {
     pub label: &'static str,
     /// One sentence of help.
     pub help: &'static str,
+    /// What a line of it looks like, for the fields that hold several lines; shown while the keyboard is in the empty blank.
+    pub example: &'static str,
 }
 
 /// What a field holds.
@@ -107,7 +109,7 @@ impl KindTable {
 impl Field {
     /// An optional field.
     pub const fn new(name: &'static str, holds: Holds, label: &'static str, help: &'static str) -> Self {
-        Self { name, holds, default: None, required: false, label, help }
+        Self { name, holds, default: None, required: false, label, help, example: "" }
     }
 
     /// The same with the default in words.
@@ -118,6 +120,11 @@ impl Field {
     /// The same, but it must be given.
     pub const fn required(self) -> Self {
         Self { required: true, ..self }
+    }
+
+    /// The same with an example of a line.
+    pub const fn such_as(self, example: &'static str) -> Self {
+        Self { example, ..self }
     }
 
     /// The choices, for fields that have a fixed list.

@@ -19,6 +19,8 @@ pub struct Blank {
     pub field: &'static str,
     pub label: &'static str,
     pub help: &'static str,
+    /// What a line looks like; empty where none is needed.
+    pub example: &'static str,
     /// What was given, as typed; empty while the default is in force.
     pub value: String,
     /// What the sentence shows: the value or the default in words.
@@ -35,6 +37,8 @@ pub struct Blank {
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Control {
     Choice,
+    /// Any number of the choices.
+    Several,
     Text,
     Number,
     /// Several lines.
@@ -129,6 +133,7 @@ fn blank(field: &'static Field, ask: &Ask, around: &Around) -> Blank {
         field: field.name,
         label: field.label,
         help: field.help,
+        example: field.example,
         is_default: value.is_empty(),
         problem: around.problems.contains(&field.name),
         control: control(field, &choices),
@@ -141,6 +146,7 @@ fn blank(field: &'static Field, ask: &Ask, around: &Around) -> Blank {
 fn control(field: &Field, choices: &[Offer]) -> Control {
     match field.holds {
         Holds::Choice(_) | Holds::Cell(_) => Control::Choice,
+        Holds::Choices(_) => Control::Several,
         Holds::Column | Holds::Level if !choices.is_empty() => Control::Choice,
         Holds::Between(..) | Holds::Above(_) | Holds::Number | Holds::Whole(..) => Control::Number,
         Holds::LongText | Holds::NamedTexts | Holds::NamedNumbers | Holds::Records(_) => Control::Long,

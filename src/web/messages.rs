@@ -189,6 +189,7 @@ enum PartMessage {
         control: &'static str,
         choices: Vec<OfferMessage>,
         help: &'static str,
+        example: &'static str,
         is_default: bool,
         problem: bool,
     },
@@ -211,6 +212,7 @@ impl PartMessage {
                 shown: blank.shown.clone(),
                 control: match blank.control {
                     Control::Choice => "choice",
+                    Control::Several => "several",
                     Control::Text => "text",
                     Control::Number => "number",
                     Control::Long => "long",
@@ -221,6 +223,7 @@ impl PartMessage {
                     .map(|offer| OfferMessage { value: offer.value.clone(), label: offer.label.clone() })
                     .collect(),
                 help: blank.help,
+                example: blank.example,
                 is_default: blank.is_default,
                 problem: blank.problem,
             },

@@ -137,9 +137,12 @@ fn levels_left_open_come_in_order_of_appearance_and_the_cell_says_so() {
     );
     let study = named(&engine, "recall");
     assert!(
-        in_words(&study.sentence)
-            .contains("Levels: none, 15 min, 30 min, pilot (in order of first appearance); scores: none;")
+        in_words(&study.sentence).contains(
+            "Levels: none, 15 min, 30 min, pilot (in order of first appearance); scores: no scores;"
+        )
     );
+    // A level may be called "none", so the absence of a control is said differently.
+    assert!(in_words(&study.sentence).contains("control: no control."));
     let offered = |field: &str| {
         let blanks = study.sentence.iter().filter_map(|part| match part {
             Part::Blank(blank) if blank.field == field => Some(blank),

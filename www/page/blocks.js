@@ -1,4 +1,4 @@
-/** The data blocks of the file: the engine, the worker's source and the examples. */
+/** The data blocks of the file: the engine, the worker's source, the examples and the licences. */
 
 /** @typedef {{ name: string, title: string, text: string }} Example */
 
@@ -30,6 +30,11 @@ export async function compiledEngine() {
 /** The worker's source, as script text. */
 export function workerSource() {
   return block('worker').replaceAll('<\\/script', '</script');
+}
+
+/** The licences of everything inside this file. */
+export function licences() {
+  return block('licences').replaceAll(/<\\(?=\/script|!--)/gi, '<');
 }
 
 /**

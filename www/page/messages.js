@@ -20,9 +20,10 @@
  * @property {string} label the accessible name
  * @property {string} value the text now in force; "" where the default is
  * @property {string} shown what the sentence shows
- * @property {'choice'|'text'|'number'|'long'} control
+ * @property {'choice'|'several'|'text'|'number'|'long'} control
  * @property {Choice[]} choices the values to choose from; for the other controls, suggestions
  * @property {string} help
+ * @property {string} example what a line looks like, for a blank of several lines
  * @property {boolean} is_default
  * @property {boolean} problem
  */

@@ -1,5 +1,6 @@
-/** The privacy line, always in sight, and how to check that it is true. */
+/** The privacy line, always in sight, how to check that it is true, and whose work the page holds. */
 
+import { licences } from './blocks.js';
 import { h } from './dom.js';
 
 /** @param {HTMLElement} element */
@@ -18,5 +19,18 @@ export function createPrivacy(element) {
     h('p', { class: 'answers' }, h('button', { type: 'button', onclick: () => dialog.close() }, 'Close')),
   );
   const button = h('button', { type: 'button', class: 'quiet', onclick: () => dialog.showModal() }, 'How to check');
-  element.replaceChildren(h('p', {}, h('strong', {}, 'This page cannot send anything'), h('span', { class: 'reason' }, ': its security policy forbids every connection'), '. ', button), dialog);
+  const words = h('pre', { tabIndex: 0, role: 'region', 'aria-label': 'Texts of the licences' });
+  const notices = h(
+    'dialog',
+    { class: 'sheet wide', 'aria-labelledby': 'licences-title' },
+    h('h2', { id: 'licences-title', tabIndex: -1, autofocus: true }, 'Licences'),
+    h('p', {}, 'Levelwise is under the MIT licence. These are the licences of everything inside this file; they are part of it, so they can be read without a network.'),
+    words,
+    h('p', { class: 'answers' }, h('button', { type: 'button', onclick: () => notices.close() }, 'Close')),
+  );
+  const showLicences = () => {
+    words.textContent = licences();
+    notices.showModal();
+  };
+  element.replaceChildren(h('p', {}, h('strong', {}, 'This page cannot send anything'), h('span', { class: 'reason' }, ': its security policy forbids every connection'), '. ', button, ' ', h('button', { type: 'button', class: 'quiet', onclick: showLicences }, 'Licences')), dialog, notices);
 }

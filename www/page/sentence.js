@@ -5,12 +5,13 @@
  */
 
 import { arrange, freshId, h, setText } from './dom.js';
+import { severalField } from './several.js';
 import { spaced } from './spacing.js';
 
 /** @typedef {import('./messages.js').Part} Part */
 /** @typedef {import('./messages.js').Blank} Blank */
 /** @typedef {import('./messages.js').Diagnostic} Diagnostic */
-/** @typedef {HTMLInputElement|HTMLSelectElement|HTMLTextAreaElement} Control */
+/** @typedef {HTMLInputElement|HTMLSelectElement|HTMLTextAreaElement|HTMLButtonElement} Control */
 
 /** How long a pause in typing is before it is sent, in milliseconds. */
 const PAUSE = 450;
@@ -109,7 +110,9 @@ function focusKeeper(element) {
  * @returns {Field}
  */
 function makeField(blank, help, onChange) {
-  const field = blank.control === 'choice' ? choiceField(blank, onChange) : typedField(blank, onChange);
+  const make = { choice: choiceField, several: severalField }[/** @type {string} */ (blank.control)] ?? typedField;
+  const field = make(blank, onChange);
+  const drawField = field.draw;
   const { control } = field;
   control.dataset['field'] = blank.field;
   control.addEventListener('focus', () => {
@@ -123,7 +126,17 @@ function makeField(blank, help, onChange) {
     control.removeAttribute('aria-describedby');
   });
   const tail = document.createTextNode('');
-  return { ...field, element: h('span', { class: 'keep' }, field.element, tail), tail, shape: blank.control };
+  return {
+    ...field,
+    /** @type {Field['draw']} */
+    draw(now, problem, stale) {
+      drawField(now, problem, stale);
+      drawCommon(control, now, problem);
+    },
+    element: h('span', { class: 'keep' }, field.element, tail),
+    tail,
+    shape: blank.control,
+  };
 }
 
 /**
@@ -148,7 +161,7 @@ function drawCommon(control, blank, problem) {
  */
 function helpOf(blank) {
   const words = blank.choices.map((choice) => choice.value).filter((value) => value !== '');
-  if (blank.control === 'choice' || words.length === 0 || words.length > 24) return blank.help;
+  if (blank.control === 'choice' || blank.control === 'several' || words.length === 0 || words.length > 24) return blank.help;
   return `${blank.help}${/[.!?]$/.test(blank.help) ? '' : '.'} Known here: ${words.join(', ')}.`;
 }
 
@@ -164,11 +177,8 @@ function choiceField(blank, onChange) {
   return {
     element,
     control: select,
-    /**
-     * @param {Blank} now
-     * @param {string} problem
-     */
-    draw(now, problem) {
+    /** @param {Blank} now */
+    draw(now) {
       const wanted = JSON.stringify([now.choices, now.value, now.shown]);
       if (wanted !== options) {
         options = wanted;
@@ -176,7 +186,6 @@ function choiceField(blank, onChange) {
         select.value = now.value;
       }
       element.dataset['shown'] = select.selectedOptions[0]?.textContent ?? now.shown;
-      drawCommon(select, now, problem);
     },
     send() {},
   };
@@ -245,15 +254,25 @@ function typedField(blank, onChange) {
     });
   }
   control.addEventListener('blur', send);
+  // How a line is written is shown where it will be written, as soon as the keyboard is there.
+  let shown = '';
+  let example = '';
+  const hint = () => {
+    const there = document.activeElement === control;
+    control.placeholder = control.value !== '' ? '' : (there && example) || shown;
+    fit();
+  };
+  control.addEventListener('focus', hint);
+  control.addEventListener('blur', hint);
   return {
     element,
     control,
     /**
      * @param {Blank} now
-     * @param {string} problem
+     * @param {string} _problem
      * @param {boolean} stale
      */
-    draw(now, problem, stale) {
+    draw(now, _problem, stale) {
       // While the keyboard is in the blank the person's own spelling stays, and so does the place of the caret.
       const active = document.activeElement === control;
       const typing = pause !== undefined || (active && (stale || now.value.trim() === control.value.trim()));
@@ -261,9 +280,9 @@ function typedField(blank, onChange) {
         sent = now.value;
         if (control.value !== now.value) control.value = now.value;
       }
-      control.placeholder = now.value === '' ? now.shown || '…' : '';
-      fit();
-      drawCommon(control, now, problem);
+      shown = now.value === '' ? now.shown || '…' : '';
+      example = now.example;
+      hint();
     },
     send,
   };

@@ -63,14 +63,17 @@ impl<'a> Reader<'a> {
         if item.is_none()
             && let Some(field) = self.field(name).filter(|field| field.required)
         {
-            let choices = match field.choices() {
-                [] => format!("{name} = ..."),
-                choices => format!("{name} = {}", quoted_choices(choices.iter().map(|choice| choice.value))),
+            let value = match (field.choices(), field.holds) {
+                ([], Holds::Column) => "\"the name of a column\"".to_string(),
+                ([], Holds::Cell(_)) => "\"the name of a cell\"".to_string(),
+                ([], Holds::LongText | Holds::Text) => "\"the text\"".to_string(),
+                ([], _) => "the value".to_string(),
+                (choices, _) => quoted_choices(choices.iter().map(|choice| choice.value)),
             };
             self.problem(
                 name,
                 format!(
-                    "The field \"{name}\" is missing ({}). Add {choices}.",
+                    "The field \"{name}\" is missing ({}). Add {name} = {value}.",
                     field.help.trim_end_matches('.')
                 ),
             );
@@ -304,7 +307,7 @@ impl<'a> Reader<'a> {
                     name,
                     span.clone(),
                     format!(
-                        "{name}, entry {}: \"{}\" is missing. Add {} = ...",
+                        "{name}, entry {}: \"{}\" is missing. Add {} with its value.",
                         index + 1,
                         part.name,
                         part.name

@@ -33,9 +33,9 @@ pub const TABLE: KindTable = KindTable {
         Field::new("separator", Holds::Choice(SEPARATORS), "column separator", "What stands between two columns").or("whatever separates them in the first line"),
         Field::new("decimal", Holds::Choice(DECIMALS), "decimal sign", "How decimals are written").or("a point or a comma, as found"),
         Field::new("missing", Holds::Texts, "codes for missing values", "What is written where a value is missing").or("nothing, \"NA\" or \".\""),
-        Field::new("columns", Holds::NamedTexts, "forced types", "Columns whose type is not the one found: a line \"name: number\" or \"name: label\" each").or("as found"),
-        Field::new("exclude", Holds::Records(&[Part { name: "where", number: false }, Part { name: "reason", number: false }]), "rows left out", "Rows left out of every analysis: a line \"condition; reason\" each, such as \"score > 100; typing error\"").or("none"),
-        Field::new("derive", Holds::NamedTexts, "new columns", "New columns computed from others: a line \"name: expression\" each, such as \"gain: after - before\"").or("none"),
+        Field::new("columns", Holds::NamedTexts, "forced types", "Columns whose type is not the one found: a line \"name: number\" or \"name: label\" each").or("as found").such_as("ward: label"),
+        Field::new("exclude", Holds::Records(&[Part { name: "where", number: false }, Part { name: "reason", number: false }]), "rows left out", "Rows left out of every analysis: a line \"condition; reason\" each, such as \"score > 100; typing error\"").or("no row").such_as("score > 100; typing error"),
+        Field::new("derive", Holds::NamedTexts, "new columns", "New columns computed from others: a line \"name: expression\" each, such as \"gain: after - before\"").or("none").such_as("gain: after - before"),
     ],
     sentence: &[
         Piece::Words("A table with columns separated by"),

@@ -24,7 +24,8 @@ pub const TABLE: KindTable = KindTable {
         "groups",
         "A line \"level; n; mean; sd\" for each group",
     )
-    .required()],
+    .required()
+    .such_as("control; 24; 21.4; 6.2")],
     sentence: &[
         Piece::Words("Groups known by size, mean and standard deviation (level; n; mean; sd):"),
         Piece::Blank("groups"),

@@ -19,6 +19,7 @@ const parts = {
   blocks: [
     block('engine', 'application/octet-stream', gzipSync(Buffer.from([0, 97, 115, 109, 1, 0, 0, 0])).toString('base64')),
     block('worker', 'text/plain', await read('tests/fake/worker.js')),
+    block('licences', 'text/plain', 'The licences.'),
     block('examples', 'application/octet-stream', Buffer.from(JSON.stringify(examples)).toString('base64')),
   ].join('\n'),
   script: `<script>${main}</script>`,

@@ -91,6 +91,7 @@ fn caption(laid: &Laid) -> String {
     )
 }
 
+/// What decides stands first: the estimate, its interval, the adjusted p and the decision; how they came about follows.
 fn table(laid: &Laid) -> Table {
     let result = &laid.comparisons;
     let statistic = result.rows.first().map_or("t", |row| row.statistic_name);
@@ -99,12 +100,12 @@ fn table(laid: &Laid) -> Table {
         .text_column("Comparison")
         .number_column(capital(estimate_word(laid)))
         .number_column(capital(&interval))
+        .number_column("p, adjusted")
+        .text_column("Decision")
         .number_column(statistic)
         .number_column("df")
         .number_column("p, raw")
-        .number_column("alpha for raw p")
-        .number_column("p, adjusted")
-        .text_column("Decision");
+        .number_column("alpha for raw p");
     result.rows.iter().for_each(|row| table.push(table_row(laid, row)));
     notes(laid).into_iter().fold(table, Table::note)
 }
@@ -119,12 +120,12 @@ fn table_row(laid: &Laid, row: &ComparisonRow) -> Row {
         Cell::text(name(laid, row)),
         Cell::estimate(row.estimate, precision),
         Cell::interval(row.interval.lower, row.interval.upper, precision),
+        p_cell(row.p_adjusted, result.alpha),
+        Cell::text(words::decision(row, result.sides)),
         Cell::statistic(row.statistic),
         Cell::df(row.df),
         raw,
         row.alpha.map_or_else(Cell::absent, level_cell),
-        p_cell(row.p_adjusted, result.alpha),
-        Cell::text(words::decision(row, result.sides)),
     ];
     let row_cells = Row::new(cells);
     if row.rejected { row_cells.strong() } else { row_cells }

@@ -62,13 +62,15 @@ pub const TABLE: KindTable = KindTable {
             Holds::NamedTexts,
             "contrasts",
             "Named contrasts: a line \"name: expression\" each, such as \"late: (15 min + 30 min)/2 - none\"",
-        ),
+        )
+        .such_as("late: (15 min + 30 min)/2 - none"),
         Field::new(
             "given",
             Holds::NamedNumbers,
             "p-values",
             "Named p-values from elsewhere: a line \"name: p\" each",
-        ),
+        )
+        .such_as("first endpoint: 0.012"),
         Field::new(
             "adjust",
             Holds::Choice(ADJUSTMENTS),
