@@ -7,7 +7,9 @@ import assert from 'node:assert/strict';
 import { readFileSync } from 'node:fs';
 import { createRequire } from 'node:module';
 import { test } from 'node:test';
+import { settled } from './engine-log.mjs';
 import { withPage } from './harness.mjs';
+import { settling } from './person.mjs';
 
 /** @typedef {import('puppeteer-core').Page} Page */
 
@@ -193,5 +195,27 @@ test('nothing is wider than a telephone, and the page has no fault that a checke
       const faults = await page.evaluate(`(async () => { ${axe}; return (await axe.run()).violations.map((fault) => fault.id + ': ' + fault.nodes.map((node) => node.html).join(' ')); })()`);
       assert.deepEqual(faults, [], `${width} px, ${scheme}`);
     }
+  });
+});
+
+test('a list is filled in by ticking, with the keyboard alone, and the licences can be read', async () => {
+  await withPage({ hash: 'example=teaching-trial' }, async ({ page }) => {
+    await settled(page, 0);
+    const button = await page.waitForSelector('section[data-kind="comparisons"] [data-field="also"]');
+    assert(button);
+    await button.focus();
+    await page.keyboard.press('Enter');
+    await page.keyboard.press('Tab');
+    await settling(page, () => page.keyboard.press('Space'));
+    assert.equal(await page.evaluate(() => document.activeElement?.getAttribute('type')), 'checkbox', 'the keyboard stays in the list');
+    await page.keyboard.press('Escape');
+    assert.equal(await button.evaluate((element) => document.activeElement === element), true);
+    assert.equal(await button.evaluate((element) => element.textContent), 'Tukey');
+    assert.equal(await page.$eval('.ticks', (list) => /** @type {HTMLElement} */ (list).hidden), true);
+
+    await page.locator('.privacy button ::-p-text(Licences)').click();
+    const words = await page.$eval('dialog[open] pre', (block) => block.textContent ?? '');
+    assert.match(words, /Permission is hereby granted/);
+    assert.match(words, /Apache License/);
   });
 });
