@@ -25,6 +25,10 @@ use serde::Serialize;
 use sha2::{Digest, Sha256};
 use std::sync::Arc;
 
+/// The most bytes of a cell that is read. While a table is read some ten times its size is in use, and the page's engine
+/// has 4 GB of memory.
+pub const LARGEST_CELL: usize = 256_000_000;
+
 /// The four conditions of a cell.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize)]
 pub enum Condition {
@@ -318,8 +322,22 @@ enum Stage {
 
 /// A parsed cell text.
 fn parse(text: &str) -> (Option<Arc<Ask>>, Vec<Diagnostic>) {
+    if text.len() > LARGEST_CELL {
+        return (None, vec![too_large(text)]);
+    }
     match Ask::parse(text) {
         Ok((ask, problems)) => (Some(Arc::new(ask)), problems),
         Err(problems) => (None, problems),
     }
+}
+
+/// A cell that is kept but not read, said on its first line.
+fn too_large(text: &str) -> Diagnostic {
+    let megabytes = |bytes: usize| bytes.div_ceil(1_000_000);
+    let message = format!(
+        "This cell has {} MB, and a cell can have at most {} MB. Its text is kept as it is, but not read. Leave out rows or columns that are not needed, or split the table.",
+        megabytes(text.len()),
+        LARGEST_CELL / 1_000_000
+    );
+    Diagnostic::new(message, 0..text.lines().next().map_or(0, str::len), None)
 }

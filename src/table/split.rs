@@ -36,6 +36,10 @@ impl Separator {
     }
 }
 
+/// The most fields that are read. A table of short fields takes some 25 bytes of memory for each of them until it is
+/// read, and the page's engine has 4 GB.
+const MOST_FIELDS: usize = 100_000_000;
+
 /// The fields of a table, row by row, in one buffer: 4 bytes a field besides its text.
 #[derive(Debug)]
 pub(super) struct Cells {
@@ -84,6 +88,11 @@ pub(super) struct Split {
 /// # Errors
 /// A text without any row, a row with too few or too many fields, a quote that is never closed.
 pub(super) fn split(text: &str, separator: Separator) -> Result<Split, ReadError> {
+    split_up_to(MOST_FIELDS, text, separator)
+}
+
+fn split_up_to(most_fields: usize, text: &str, separator: Separator) -> Result<Split, ReadError> {
+    // Ends of fields are kept in 32 bits.
     if text.len() >= u32::MAX as usize {
         return Err(ReadError::whole("The table is larger than 4 GB. Split it, or leave columns out."));
     }
@@ -111,6 +120,9 @@ pub(super) fn split(text: &str, separator: Separator) -> Result<Split, ReadError
             }
             return Err(ragged(&record, columns, separator, header_line));
         }
+        if ends.len() + columns > most_fields {
+            return Err(too_many_fields(most_fields, &record, columns));
+        }
         lines.push(record.line);
         ends.extend(records.ends[..columns].iter().map(|end| (record.start + end) as u32));
     }
@@ -118,6 +130,14 @@ pub(super) fn split(text: &str, separator: Separator) -> Result<Split, ReadError
         return Err(unclosed_quote(line));
     }
     Ok(Split { header, header_line, cells: Cells { text: records.into_text(), ends, columns }, lines })
+}
+
+fn too_many_fields(most: usize, record: &Record, columns: usize) -> ReadError {
+    let (rows, line) = (most / columns, record.line);
+    let message = format!(
+        "Line {line}: the table has more than {most} fields, the most that can be worked with ({rows} rows of {columns} columns). Leave out columns that are not needed, or split the table."
+    );
+    ReadError::at_line(line, message)
 }
 
 fn unclosed_quote(line: u32) -> ReadError {
@@ -379,5 +399,24 @@ fn beginning(text: &str) -> &str {
     match bytes.iter().rposition(|&b| b == b'\n' || b == b'\r') {
         Some(end) => &text[..=end],
         None => &text[..(0..=limit).rev().find(|&at| text.is_char_boundary(at)).unwrap_or(0)],
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn more_fields_than_can_be_worked_with_are_refused_on_the_line_that_goes_beyond() {
+        let text = "g,y\na,1\nb,2\nc,3\n";
+        assert!(split_up_to(6, text, Separator::Comma).is_ok());
+        let Err(error) = split_up_to(5, text, Separator::Comma) else {
+            panic!("six fields of five were taken")
+        };
+        assert_eq!(error.line, Some(4));
+        assert_eq!(
+            error.message,
+            "Line 4: the table has more than 5 fields, the most that can be worked with (2 rows of 2 columns). Leave out columns that are not needed, or split the table."
+        );
     }
 }

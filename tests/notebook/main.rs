@@ -1,6 +1,7 @@
 //! Small notebooks and what they give: one file per kind. `expect` reads a notebook whose lines may end in
 //! `# ! part of a message`: the diagnostics must stand on exactly those lines and say so.
 
+mod bad_input;
 mod comparisons;
 mod data;
 mod expect;

@@ -76,8 +76,12 @@ fn ranks_need_single_values_and_say_so_at_their_field() {
     let outcome = evaluated(RANKS, blood_counts(Variances::Unequal));
     assert_eq!(
         outcome.answer.headline,
-        "The ranks of count differ over the 3 levels of drug (Kruskal-Wallis test, H(2) = 6.75, p = 0.034)"
+        "The ranks of count differ over the 3 levels of drug (Kruskal-Wallis test, H(2) = 6.75, exact p = 0.025)"
     );
+    assert_eq!(outcome.results["exact"], true);
+    // Counted by itself with whole numbers: 15598 of the 630630 ways to deal the ranks out.
+    assert!((outcome.results["p"].as_f64().expect("p") - 15_598.0 / 630_630.0).abs() < 1e-15);
+    assert!(shown(&outcome).contains("The large-sample value from chi-squared would be 0.034."));
     assert!((outcome.results["epsilon_squared"]["estimate"].as_f64().expect("size") - 0.482143).abs() < 1e-6);
     let refused = evaluated(RANKS, summarised(blood_counts(Variances::Unequal)));
     assert_eq!(refused.diagnostics[0].field.as_deref(), Some("test"));

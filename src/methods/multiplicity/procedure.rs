@@ -141,8 +141,14 @@ impl Adjust {
             Self::Scheffe if !equal => Some(
                 "Scheffe's procedure needs one standard deviation for all levels, and the study says unequal variances",
             ),
-            Self::Tukey | Self::GamesHowell | Self::Scheffe if !two_sided => {
-                Some("this procedure looks to both sides, and the comparisons are one-sided")
+            Self::Tukey if !two_sided => {
+                Some("Tukey's procedure looks to both sides, and the comparisons are one-sided")
+            }
+            Self::GamesHowell if !two_sided => {
+                Some("Games and Howell's procedure looks to both sides, and the comparisons are one-sided")
+            }
+            Self::Scheffe if !two_sided => {
+                Some("Scheffe's procedure looks to both sides, and the comparisons are one-sided")
             }
             _ => None,
         }

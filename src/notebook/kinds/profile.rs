@@ -73,20 +73,17 @@ fn headline(study: &Study, profile: &Profile) -> String {
     let (Some(lowest), Some(highest)) = (lowest, highest) else {
         return format!("No values of {} yet", study.outcome);
     };
-    format!(
-        "{} values of {} in {}; means from {} ({}) to {} ({})",
-        number::count(n),
-        study.outcome,
-        if profile.groups.len() == 1 {
-            "1 group".to_owned()
-        } else {
-            format!("{} groups", profile.groups.len())
-        },
-        number::estimate(lowest.0, precision),
-        lowest.1,
-        number::estimate(highest.0, precision),
-        highest.1
-    )
+    let groups = if profile.groups.len() == 1 {
+        "1 group".to_owned()
+    } else {
+        format!("{} groups", profile.groups.len())
+    };
+    let described = format!("{} values of {} in {groups}", number::count(n), study.outcome);
+    let (least, most) = (number::estimate(lowest.0, precision), number::estimate(highest.0, precision));
+    if least == most {
+        return format!("{described}; all means {least} as far as shown");
+    }
+    format!("{described}; means from {least} ({}) to {most} ({})", lowest.1, highest.1)
 }
 
 /// One precision for all means: two digits of their standard errors.

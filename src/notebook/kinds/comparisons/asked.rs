@@ -141,7 +141,11 @@ fn given(reader: &mut Reader) -> Option<Vec<(String, f64)>> {
         );
         return None;
     }
+    let known = reader.problems().len();
     let entries = reader.named_numbers("given")?;
+    if reader.problems().len() > known {
+        return None;
+    }
     if entries.is_empty() {
         reader.problem("given", "No p-value is given. Write a name and a p-value for each comparison.");
         return None;

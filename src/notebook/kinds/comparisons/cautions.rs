@@ -108,7 +108,9 @@ fn pooled_spread(laid: &Laid) -> Option<String> {
 fn small_groups(laid: &Laid) -> Option<String> {
     let small = laid.estimates.n.iter().zip(&laid.estimates.labels).filter(|(n, _)| **n < SMALL);
     let names: Vec<String> = small.map(|(n, level)| format!("\"{level}\" (n = {n})")).collect();
-    (laid.comparisons.adjust == Adjust::GamesHowell && !names.is_empty()).then(|| {
+    // With two levels it is Welch's t test alone.
+    let liberal = laid.comparisons.adjust == Adjust::GamesHowell && laid.estimates.labels.len() > 2;
+    (liberal && !names.is_empty()).then(|| {
         format!(
             "The Games-Howell procedure finds somewhat too many differences with groups smaller than {SMALL}: {}. Holm with Welch's t tests is the careful choice.",
             listed(names.into_iter())

@@ -48,7 +48,7 @@ fn headline(laid: &Laid) -> String {
     let found: Vec<&ComparisonRow> = result.rows.iter().filter(|row| row.rejected).collect();
     let (of, all) = (found.len(), result.rows.len());
     let says = match (of, all) {
-        (0, 1) => format!("{} is not shown to differ from zero", name(laid, &result.rows[0])),
+        (0, 1) => format!("{} is {}", name(laid, &result.rows[0]), not_shown(result.sides)),
         (0, _) => format!("None of the {} shows a difference", words::comparisons(all)),
         (1, 1) => format!("{}: {}", name(laid, found[0]), direction(laid, found[0])),
         (2, 2) => "Both comparisons show a difference".to_string(),
@@ -68,6 +68,14 @@ fn headline(laid: &Laid) -> String {
         String::new()
     };
     format!("{says}{which} ({method})")
+}
+
+fn not_shown(sides: Sides) -> &'static str {
+    match sides {
+        Sides::Both => "not shown to differ from zero",
+        Sides::Greater => "not shown to be greater than zero",
+        Sides::Less => "not shown to be less than zero",
+    }
 }
 
 fn direction(laid: &Laid, row: &ComparisonRow) -> String {
@@ -277,22 +285,94 @@ fn explanation(laid: &Laid, found: &Explanation) -> String {
     );
     match found.disagreement {
         Disagreement::OverallOnly => format!(
-            "Why the overall test is significant ({overall}) and no comparison here is: the overall test asks whether any contrast of the means differs from zero, and it is carried by this one: {carrying}. It is not among the comparisons, or it is judged more strictly among {}. The comparison nearest to significance is {near}. Both results stand: the levels differ somewhere, and it is not shown between which of those compared.",
-            words::comparisons(result.family_size)
+            "Why the overall test is significant ({overall}) and no comparison here is: the overall test asks whether any contrast of the means differs from zero, and it is carried by this one: {carrying}. {} The comparison nearest to significance is {near}. Both results stand: the levels differ somewhere, and it is not shown between which of those compared.",
+            why_no_comparison(laid, found)
         ),
         Disagreement::ComparisonsOnly => format!(
-            "Why a comparison is significant ({near}) and the overall test is not ({overall}): the overall test spreads its power over all {} independent directions in which {} means can differ, and a comparison looks in one. The overall test is carried by this contrast: {carrying}. The comparisons control their own error rate, so they need no significant overall test before them.",
-            number::df(test.df1),
-            laid.estimates.labels.len()
+            "Why a comparison is significant ({near}) and the overall test is not ({overall}): {} The overall test is carried by this contrast: {carrying}. {}",
+            why_a_comparison(laid, found),
+            standing(result.adjust)
         ),
     }
+}
+
+/// Why the comparisons miss what the overall test finds, for this family.
+fn why_no_comparison(laid: &Laid, found: &Explanation) -> String {
+    let result = &laid.comparisons;
+    let carried = &found.carrying.coefficients;
+    let alike = |row: &ComparisonRow| is_multiple(&row.coefficients, carried);
+    let mut reasons = Vec::new();
+    match result.rows.iter().find(|row| alike(row)) {
+        Some(row) if result.family_size > 1 => reasons.push(format!(
+            "It is the comparison {}, which is judged more strictly as one of {}.",
+            name(laid, row),
+            words::comparisons(result.family_size)
+        )),
+        Some(_) => {}
+        None if result.family_size > 1 => reasons.push(format!(
+            "It is not among the {} of this family, and each of them is judged more strictly than it would be alone.",
+            words::comparisons(result.family_size)
+        )),
+        None => reasons.push("It is not the comparison made here.".to_string()),
+    }
+    if result.sides != Sides::Both {
+        reasons.push(
+            "The comparisons look to one side only; the overall test looks to both, and a difference to the other side counts in it alone."
+                .to_string(),
+        );
+    }
+    reasons.join(" ")
+}
+
+/// Why the overall test misses what a comparison finds, for this study.
+fn why_a_comparison(laid: &Laid, found: &Explanation) -> String {
+    let k = laid.estimates.labels.len();
+    let mut reasons = Vec::new();
+    if k > 2 {
+        reasons.push(format!(
+            "the overall test spreads its power over all {} independent directions in which {k} means can differ, and a comparison looks in one.",
+            number::df(found.overall.df1)
+        ));
+    }
+    if laid.comparisons.sides != Sides::Both {
+        let also = if k > 2 { "Besides, the" } else { "the" };
+        reasons.push(format!(
+            "{also} comparisons look to the one side that was chosen, where their whole error rate is spent; the overall test looks to both."
+        ));
+    }
+    if reasons.is_empty() {
+        reasons.push("the two p-values lie on either side of the error rate by rounding alone.".to_string());
+    }
+    reasons.join(" ")
+}
+
+/// What a significant comparison is worth without a significant overall test.
+fn standing(adjust: Adjust) -> &'static str {
+    match adjust.error_rate() {
+        ErrorRate::FamilyWise => {
+            "The comparisons control their own error rate, so they need no significant overall test before them."
+        }
+        ErrorRate::FalseDiscovery => {
+            "The comparisons control the expected share of false findings, not the chance of any: such a finding is a lead, not a proof."
+        }
+        ErrorRate::PerComparison => {
+            "Nothing is adjusted here, so a single significant comparison among several may well be a false finding; an adjustment would keep the error rate of the family."
+        }
+    }
+}
+
+/// Whether two contrasts ask the same, up to scale and sign.
+fn is_multiple(one: &[f64], other: &[f64]) -> bool {
+    let size = |c: &[f64]| c.iter().map(|c| c * c).sum::<f64>();
+    let along: f64 = one.iter().zip(other).map(|(a, b)| a * b).sum();
+    (along * along / (size(one) * size(other)) - 1.0).abs() < 1e-9
 }
 
 fn writeup(laid: &Laid) -> String {
     let (result, study) = (&laid.comparisons, laid.study);
     let opening = format!(
-        "{} was compared over {} ({}; {}, {}; {} over {}, {}).",
-        capital(&outcome_with_unit(study)),
+        "Mean {} was compared over {} ({}; {}, {}; {} over {}, {}).",
+        outcome_with_unit(study),
         words::family(laid.asked, study),
         sizes(&laid.estimates.labels, laid.estimates.n.iter().copied()),
         words::error_term(study.variances, Some(laid.estimates), study.levels.count()),
@@ -309,7 +389,11 @@ fn writeup(laid: &Laid) -> String {
         sentences.extend(others(laid));
     }
     if result.rows.iter().any(|row| row.effect.is_some()) {
-        sentences.push(format!("d is the {} divided by {}.", estimate_word(laid), standardiser(laid)));
+        sentences.push(format!(
+            "d is the {} divided by {}, its interval at the level of the row's critical value; g is d without its small-sample bias.",
+            estimate_word(laid),
+            standardiser(laid)
+        ));
     }
     sentences.join(" ")
 }

@@ -1,7 +1,7 @@
 //! p-values from elsewhere, adjusted as one family.
 
 use super::asked::Asked;
-use super::decided::{capital, level_cell};
+use super::decided::level_cell;
 use super::{cautions, words};
 use crate::answer::{Answer, Cell, Row, Table, number};
 use crate::methods::multiplicity::{
@@ -44,6 +44,8 @@ fn headline(asked: &Asked, result: &GivenComparisons) -> String {
     let method =
         format!("{}, {}", words::procedure(asked.adjust), words::error_rate(asked.adjust, asked.alpha));
     match names.len() {
+        0 if size == 1 => format!("The given p-value is not significant ({method})"),
+        1 if size == 1 => format!("The given p-value is significant: {} ({method})", names[0]),
         0 => format!("None of the {size} given p-values is significant ({method})"),
         few @ 1..=3 => {
             format!(
@@ -110,8 +112,11 @@ fn writeup(asked: &Asked, result: &GivenComparisons) -> String {
         .iter()
         .map(|row| format!("{}: {p_name}{}", row.name, p_statement(row.p_adjusted, asked.alpha)));
     format!(
-        "{} p-values were judged as one family ({}, {}). {}.",
-        capital(&number::count(result.family_size)),
+        "{} as one family ({}, {}). {}.",
+        match result.family_size {
+            1 => "One p-value was judged".to_string(),
+            size => format!("{} p-values were judged", number::count(size)),
+        },
         words::procedure_in_full(asked.adjust, &[]),
         words::error_rate(asked.adjust, asked.alpha),
         each.collect::<Vec<_>>().join("; ")

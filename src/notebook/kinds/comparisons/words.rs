@@ -100,6 +100,9 @@ pub fn comparisons(count: usize) -> String {
 /// What the intervals are: "simultaneous 95 % interval".
 pub fn interval(result: &Comparisons) -> String {
     let level = number::percent(result.confidence);
+    if result.family_size == 1 {
+        return format!("{level} interval");
+    }
     match result.interval_kind {
         IntervalKind::Simultaneous => format!("simultaneous {level} interval"),
         IntervalKind::SimultaneousBy(method) => {

@@ -244,11 +244,13 @@ impl Means<'_> {
             let size = effects.welch.as_ref().map(|effect| effect.omega_squared);
             let size = size.or(effects.classical.as_ref().map(|effect| effect.omega_squared));
             let reach = size.and_then(|size| size.upper).map(|upper| {
-                format!(
-                    " The {} interval of omega squared reaches up to {}.",
-                    number::percent(effects.confidence),
-                    effect(upper)
-                )
+                let percent = number::percent(effects.confidence);
+                if upper == 0.0 {
+                    return format!(
+                        " F is so small that the {percent} interval of omega squared has shrunk to 0: that is a chance result of these data or a sign of values that are not independent, and no proof that nothing differs."
+                    );
+                }
+                format!(" The {percent} interval of omega squared reaches up to {}.", effect(upper))
             });
             cautions.push(format!("Not shown to differ does not mean equal.{}", reach.unwrap_or_default()));
         }

@@ -32,8 +32,13 @@ pub fn outcome(ask: &Ask, study: &Study) -> Outcome {
     };
     let alpha = study.alpha;
     let (outcome, factor, k) = (&study.outcome, &study.factor, study.levels.count());
-    let result =
-        format!("H({}) = {}, {}", number::df(test.df), number::statistic(test.h), p_statement(test.p, alpha));
+    let result = format!(
+        "H({}) = {}, {}{}",
+        number::df(test.df),
+        number::statistic(test.h),
+        if test.exact { "exact " } else { "" },
+        p_statement(test.p, alpha)
+    );
     let headline = if test.p <= alpha {
         format!(
             "The ranks of {outcome} differ over the {k} levels of {factor} (Kruskal-Wallis test, {result})"
@@ -48,7 +53,7 @@ pub fn outcome(ask: &Ask, study: &Study) -> Outcome {
         .with_table(mean_ranks_table(study, sample, &test))
         .with_writeup(ranks_writeup(study, sample, &test, &result));
     answer.cautions = ranks_cautions(study, sample, &test);
-    let mut results = json!({ "test": "ranks", "H": test.h, "df": test.df, "p": test.p, "alpha": alpha });
+    let mut results = json!({ "test": "ranks", "H": test.h, "df": test.df, "p": test.p, "exact": test.exact, "p_chi_squared": test.p_chi_squared, "alpha": alpha });
     results["epsilon_squared"] = json!({ "estimate": test.epsilon_squared });
     results["tie_correction"] = test.tie_correction.into();
     Outcome::settled(answer, results)
@@ -63,7 +68,7 @@ fn ranks_table(study: &Study, test: &KruskalWallis) -> Table {
     .text_column("Test")
     .number_column("H")
     .number_column("df")
-    .number_column("p")
+    .number_column(if test.exact { "p, exact" } else { "p, large samples" })
     .number_column("epsilon squared")
     .row(Row::new([
         Cell::text("Kruskal-Wallis, corrected for ties"),
@@ -72,8 +77,16 @@ fn ranks_table(study: &Study, test: &KruskalWallis) -> Table {
         p_cell(test.p, study.alpha),
         Cell::number(effect(test.epsilon_squared), test.epsilon_squared),
     ]));
+    let which = if test.exact {
+        format!(
+            "p is exact: every way of dealing the observed ranks out to groups of these sizes was counted. The large-sample value from chi-squared would be {}.",
+            number::p_value(test.p_chi_squared)
+        )
+    } else {
+        "p is the large-sample value from chi-squared: there are too many arrangements to count.".to_owned()
+    };
     table
-        .note("p is the large-sample value from chi-squared.")
+        .note(which)
         .note("Epsilon squared, H/(N - 1), is the share of the variation of the ranks that lies between the levels; an interval for it is not given.")
 }
 
@@ -100,9 +113,10 @@ fn mean_ranks_table(study: &Study, sample: &Sample, test: &KruskalWallis) -> Tab
 fn ranks_writeup(study: &Study, sample: &Sample, test: &KruskalWallis, result: &str) -> String {
     let verdict = if test.p <= study.alpha { "differed" } else { "were not shown to differ" };
     format!(
-        "The distributions of {} over {} were compared with the Kruskal-Wallis test (corrected for ties, large-sample p-value) at {}. The ranks {verdict}, {result}, {}.",
+        "The distributions of {} over {} were compared with the Kruskal-Wallis test (corrected for ties, {} p-value) at {}. The ranks {verdict}, {result}, {}.",
         outcome_with_unit(study),
         sizes(&study.levels.labels, sample.groups.iter().map(Vec::len)),
+        if test.exact { "exact" } else { "large-sample" },
         number::percent(study.alpha),
         effect_equals("epsilon squared", test.epsilon_squared),
     )
@@ -114,9 +128,11 @@ fn ranks_cautions(study: &Study, sample: &Sample, test: &KruskalWallis) -> Vec<S
         cautions.push("Not shown to differ does not mean equal.".to_owned());
     }
     cautions.push("The test is about the distributions as a whole; it compares medians only where the distributions have the same shape.".to_owned());
-    if let Some(least) = sample.groups.iter().map(Vec::len).min().filter(|least| *least < 5) {
+    let least = sample.groups.iter().map(Vec::len).min();
+    if let Some(least) = least.filter(|least| *least < 5 && !test.exact) {
+        let values = if least == 1 { "value" } else { "values" };
         cautions.push(format!(
-            "The smallest group has {least} values; below about 5 the large-sample p-value is rough."
+            "The smallest group has {least} {values}; below about 5 the large-sample p-value is rough."
         ));
     }
     if test.tie_correction < 0.9 {
