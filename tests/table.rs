@@ -720,3 +720,13 @@ proptest! {
         }
     }
 }
+
+#[test]
+fn empty_columns_without_a_name_after_the_last_one_are_no_columns() {
+    let table = read("group\tscore\t\t\nA\t12\t\t\nB\t13\t\t\n", &ReadOptions::default()).expect("a table");
+    assert_eq!(table.columns.len(), 2);
+    assert_eq!(table.columns[1].text(1), "13");
+    let error = read("group\tscore\t\nA\t12\t\nB\t13\tx\n", &ReadOptions::default())
+        .expect_err("a value without a name");
+    assert!(error.message.contains("column 3 has no name"), "{}", error.message);
+}

@@ -58,7 +58,8 @@ impl ReadError {
 
 /// The table in `text`: a header row, then one row a line, in columns of numbers or labels.
 ///
-/// Spaces around fields are removed, empty lines passed over. A column is a column of numbers where every value
+/// Spaces around fields are removed, empty lines passed over, and so are empty columns without a name after the last one.
+/// Lines that hold separators only are passed over with a remark. A column is a column of numbers where every value
 /// that is not missing is a number; thousands separators are not accepted. Separator and decimal mark are found where
 /// the options leave them open; where the text can be read in two ways the table carries a remark, or, where
 /// that would change values unnoticed, the text is refused.
@@ -81,7 +82,12 @@ pub fn read(text: &str, options: &ReadOptions) -> Result<Table, ReadError> {
         }
         found.separator
     });
-    let Split { header, header_line, cells, lines } = split(text, separator)?;
+    let Split { mut header, header_line, cells, lines } = split(text, separator)?;
+    // A spreadsheet copies the empty columns beside a table with it.
+    while header.len() > 1 && header.last().is_some_and(String::is_empty) && cells.is_blank(header.len() - 1)
+    {
+        header.pop();
+    }
     check_header(&header, header_line)?;
     if lines.is_empty() {
         return Err(ReadError::at_line(

@@ -70,6 +70,11 @@ impl Cells {
         Self { text, ends, columns: 1 }
     }
 
+    /// Whether no row has anything in the column.
+    pub fn is_blank(&self, column: usize) -> bool {
+        (0..self.rows()).all(|row| self.get(row, column).is_empty())
+    }
+
     pub fn rows(&self) -> usize {
         self.ends.len() / self.columns.max(1)
     }

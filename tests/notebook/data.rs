@@ -174,3 +174,26 @@ fn a_problem_in_a_condition_is_marked_at_its_word() {
     let data = cell(&engine, 0);
     assert_eq!(&data.text[data.diagnostics[0].span.clone()], "scroe");
 }
+
+#[test]
+fn usual_slips_with_a_pasted_table_are_named() {
+    let said = |table: &str| cautions(&settled(&with_table(table, "")));
+    assert_eq!(
+        said("dose;response\n0;12 %\n5;31,5%\n"),
+        [
+            "Column \"response\" was read as labels: \"12 %\" carries a percent sign, which is no part of a number. Remove the signs to use it as an outcome; the study's unit can say \"%\"."
+        ]
+    );
+    assert_eq!(
+        said("A,12\nA,13\nB,15\n"),
+        [
+            "The first row gives the columns their names, and one of them is \"12\". If the table has no such row, add one; else the first observation is missing from every answer."
+        ]
+    );
+    assert_eq!(
+        said("group   score\nA   12\nB   13\n"),
+        [
+            "The table has only one column; a study needs two, the groups and the outcome. Columns are separated by tabs, commas or semicolons, not by spaces."
+        ]
+    );
+}

@@ -96,6 +96,8 @@ export function createCell(id, state, actions) {
       });
       table.replaceChildren(grid.element, h('p', { class: 'table-hint' }, 'Type over a value to change it. A table pasted here replaces this one; undo brings it back.'));
     }
+    // A table that cannot be read has no rows, but is there.
+    place?.draw(/^\s*table\s*=\s*('''|""")\s*(?!\1)\S/m.test(cell.text));
     grid?.draw(rows, cell.revision, now.windows.get(id));
   }
 

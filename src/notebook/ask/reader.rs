@@ -73,7 +73,7 @@ impl<'a> Reader<'a> {
             self.problem(
                 name,
                 format!(
-                    "The field \"{name}\" is missing ({}). Add {name} = {value}.",
+                    "The field \"{name}\" is missing ({}). Fill in its blank, or add {name} = {value}.",
                     field.help.trim_end_matches('.')
                 ),
             );

@@ -253,6 +253,11 @@ fn answer(table: &Table) -> Answer {
     }
     answer.cautions.extend(table.remarks.iter().cloned());
     answer.cautions.extend(table.columns.iter().filter_map(|column| nearly_numbers(table, column)));
+    answer.cautions.extend(table.columns.iter().filter_map(per_cent));
+    answer.cautions.extend(no_header(table));
+    if table.columns.len() == 1 {
+        answer.cautions.push("The table has only one column; a study needs two, the groups and the outcome. Columns are separated by tabs, commas or semicolons, not by spaces.".to_owned());
+    }
     answer
 }
 
@@ -340,6 +345,33 @@ fn nearly_numbers(table: &Table, column: &Column) -> Option<String> {
     Some(format!(
         "Column \"{}\" was read as labels, because not all its values are numbers. {why}",
         column.name
+    ))
+}
+
+/// A word on a column whose values carry a percent sign.
+fn per_cent(column: &Column) -> Option<String> {
+    let signed = |text: &str| {
+        let number = text.strip_suffix('%').map(str::trim_end);
+        number.is_some_and(|number| number.replace(',', ".").parse::<f64>().is_ok())
+    };
+    let all = !column.forced && !column.not_numbers.is_empty();
+    (all && column.not_numbers.iter().all(|cell| signed(&cell.text))).then(|| {
+        format!(
+            "Column \"{}\" was read as labels: \"{}\" carries a percent sign, which is no part of a number. Remove the signs to use it as an outcome; the study's unit can say \"%\".",
+            column.name, column.not_numbers[0].text
+        )
+    })
+}
+
+/// A word on a first row that looks like values, not like names.
+fn no_header(table: &Table) -> Option<String> {
+    let number = |column: &&Column| {
+        column.kind == ColumnKind::Number && column.name.replace(',', ".").parse::<f64>().is_ok()
+    };
+    let found = table.columns.iter().find(number)?;
+    Some(format!(
+        "The first row gives the columns their names, and one of them is \"{}\". If the table has no such row, add one; else the first observation is missing from every answer.",
+        found.name
     ))
 }
 
