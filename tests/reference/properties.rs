@@ -6,6 +6,7 @@ use levelwise::numerics::distributions::{
     student_t, studentized_maximum, studentized_range,
 };
 use proptest::prelude::*;
+use proptest::test_runner::RngSeed;
 
 /// Any f64 at all, with the troublesome ones often.
 fn any_number() -> impl Strategy<Value = f64> {
@@ -35,7 +36,7 @@ fn is_number(result: Result<f64, OutOfDomain>) -> Result<(), TestCaseError> {
 }
 
 proptest! {
-    #![proptest_config(ProptestConfig { failure_persistence: None, ..ProptestConfig::with_cases(2000) })]
+    #![proptest_config(ProptestConfig { rng_seed: RngSeed::Fixed(1), failure_persistence: None, ..ProptestConfig::with_cases(2000) })]
 
     #[test]
     fn central_distributions_answer_or_refuse_every_number(x in any_number(), a in any_number(), b in any_number()) {
@@ -82,7 +83,7 @@ proptest! {
 }
 
 proptest! {
-    #![proptest_config(ProptestConfig { failure_persistence: None, ..ProptestConfig::with_cases(300) })]
+    #![proptest_config(ProptestConfig { rng_seed: RngSeed::Fixed(2), failure_persistence: None, ..ProptestConfig::with_cases(300) })]
 
     #[test]
     fn the_studentized_range_answers_or_refuses_every_number(q in any_number(), df in any_number(), groups in 0..40usize) {
@@ -158,6 +159,18 @@ proptest! {
         is_probability(studentized_maximum::sf(d, loadings.len(), df))?;
         is_number(studentized_maximum::quantile(d, loadings.len(), df))?;
         is_number(studentized_maximum::upper_quantile(d, loadings.len(), df))?;
+    }
+}
+
+/// Upper tails near 1 once had three digits fewer than their complements here.
+#[test]
+fn noncentral_t_tails_add_to_one_where_the_mixture_turns_far_from_its_middle() {
+    for (t, df, ncp) in [
+        (7.581_953_411_705_737, 11.216_824_485_436_774, 16.767_920_95),
+        (7.113_775_126, 10.266_221_539, 16.265_647_145),
+    ] {
+        let sum = noncentral_t::cdf(t, df, ncp).unwrap() + noncentral_t::sf(t, df, ncp).unwrap();
+        assert!((sum - 1.0).abs() < 1e-14, "{t}: {sum}");
     }
 }
 

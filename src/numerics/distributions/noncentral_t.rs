@@ -116,7 +116,7 @@ fn lower(t: f64, df: f64, ncp: f64) -> f64 {
     if sharpness > 20.0 && df.is_finite() {
         return lower_given_z(t, df, ncp);
     }
-    let count = 12 * (1 + sharpness as usize / 2);
+    let count = 12 * (2 + sharpness as usize / 2);
     let log_shape = |s: f64| normal::log_lower(t * s - ncp);
     scale_mixture::mix(df, count, TOLERANCE, log_shape, |s| normal::lower(t * s - ncp)).value.min(1.0)
 }
