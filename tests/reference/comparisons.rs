@@ -49,7 +49,7 @@ fn sided(layout: &Layout, set: Set, adjust: Adjust, sides: Sides, alpha: f64) ->
     by(layout, &contrasts, Family::Set(set), adjust, sides, alpha)
 }
 
-fn by(
+pub fn by(
     layout: &Layout,
     contrasts: &[Contrast],
     family: Family,
@@ -70,7 +70,7 @@ fn by(
     .unwrap()
 }
 
-fn close(computed: f64, expected: f64, tolerance: f64, what: &str) {
+pub fn close(computed: f64, expected: f64, tolerance: f64, what: &str) {
     let error = relative_error(computed, expected);
     assert!(error <= tolerance, "{what}: {computed} where {expected} is expected, relative error {error:e}");
 }
@@ -80,7 +80,7 @@ fn column(comparisons: &Comparisons) -> Vec<f64> {
 }
 
 /// Values printed to some significant digits: half a unit of the last one.
-fn printed(computed: &[f64], expected: &[&str], what: &str) {
+pub fn printed(computed: &[f64], expected: &[&str], what: &str) {
     assert_eq!(computed.len(), expected.len(), "{what}");
     for (computed, text) in computed.iter().zip(expected) {
         let (mantissa, exponent) = text.split_once('e').unwrap_or((text, "0"));
@@ -315,7 +315,7 @@ fn dunnetts_tables_are_met_to_their_last_digit() {
     }
 }
 
-fn nist() -> Value {
+pub fn nist() -> Value {
     let path = concat!(
         env!("CARGO_MANIFEST_DIR"),
         "/tests/reference/data/nist-handbook/multiple-comparisons-7.4.7.json"
@@ -328,7 +328,7 @@ fn handbook_value(file: &Value, section: usize, id: &str) -> String {
     values.iter().find(|value| value["id"] == id).unwrap()["text"].as_str().unwrap().to_string()
 }
 
-fn handbook_groups(file: &Value) -> Vec<Vec<f64>> {
+pub fn handbook_groups(file: &Value) -> Vec<Vec<f64>> {
     let groups = file["data"]["groups"].as_array().unwrap();
     groups.iter().map(|group| group["values"].as_array().unwrap().iter().map(number).collect()).collect()
 }

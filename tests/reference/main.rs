@@ -21,6 +21,7 @@ mod open_data;
 mod profile;
 mod properties;
 mod rank_counts;
+mod remembered;
 mod shapiro_wilk;
 mod studentized_range;
 mod trend;
