@@ -326,11 +326,53 @@ fn an_overall_test_that_says_otherwise_is_explained_on_the_study_s_own_numbers()
     let outcome = settled("adjust = \"Bonferroni\"", study);
     let text = shown(&outcome);
     assert!(text.contains("Why the overall test is significant"), "{text}");
-    assert!(text.contains("mean of c and d minus mean of a and b"), "{text}");
+    // F = t²/(k - 1) of the contrast that carries it (Scheffé 1959, section 3.5); its t is √2 times that of a pair, 2.34.
+    assert!(
+        text.contains("mean of c and d minus mean of a and b (+1.00, t = 3.31; t\u{b2}/3 is the overall F)"),
+        "{text}"
+    );
+    assert!(text.contains("It is not among the 6 comparisons of this family"), "{text}");
+    let found = &outcome.results["overall_and_comparisons_differ"];
+    let (t, f) = (found["carrying_t"].as_f64().unwrap(), found["overall"]["F"].as_f64().unwrap());
+    assert!((t * t / 3.0 - f).abs() < 1e-12, "{t} {f}");
     assert_eq!(
         outcome.results["overall_and_comparisons_differ"]["significant"],
         Value::from("overall test only")
     );
+}
+
+/// The text that explains why the overall test and the comparisons differ, for groups of the same spread with these means.
+fn why(rest: &str, means: &[f64]) -> String {
+    let values = means.iter().map(|mean| [-1.0, -0.6, -0.1, 0.1, 0.6, 1.0].map(|x| x + mean));
+    let groups: Vec<[f64; 6]> = values.collect();
+    let named = ["a", "b", "c", "d"].into_iter().zip(groups.iter().map(|values| values.as_slice()));
+    let outcome = settled(rest, study(&named.collect::<Vec<_>>(), Variances::Equal));
+    let texts = outcome.answer.blocks.iter().filter_map(|block| match block {
+        Block::Text(text) => Some(text.as_str()),
+        _ => None,
+    });
+    texts.collect::<Vec<_>>().join(" ")
+}
+
+#[test]
+fn a_comparison_without_a_significant_overall_test_is_explained_by_what_its_family_is_worth() {
+    // F(3, 20) = 2.74, p = 0.071; d - a by itself: t(20) = 2.34, p = 0.030.
+    let means = [0.0, 0.0, 0.0, 1.0];
+    let planned = why("family = \"contrasts\"\ncontrasts = { late = \"d - a\" }", &means);
+    assert!(planned.starts_with("Why a comparison is significant (late (adjusted p = 0.030))"), "{planned}");
+    assert!(planned.contains("all 3 independent directions in which 4 means can differ"), "{planned}");
+    assert!(planned.contains("The comparisons control their own error rate"), "{planned}");
+    let alone = why("adjust = \"none\"", &means);
+    assert!(alone.contains("Nothing is adjusted here"), "{alone}");
+    assert!(!alone.contains("control their own error rate"), "{alone}");
+    // Two levels: only the side makes the difference. F(1, 10) = 4.17, p = 0.061 (0.9 apart: p = 0.0615).
+    let two = why("sides = \"greater\"", &[0.0, 0.9]);
+    assert!(two.contains("the comparisons look to the one side that was chosen"), "{two}");
+    assert!(two.contains("t\u{b2} is the overall F") && !two.contains("directions"), "{two}");
+    // To the other side there is nothing to find, and the text says which side counts.
+    let other = why("sides = \"less\"", &[0.0, 1.0]);
+    assert!(other.contains("The comparisons look to one side only"), "{other}");
+    assert_eq!(why("", &means), "");
 }
 
 #[test]

@@ -277,8 +277,14 @@ fn explanation(laid: &Laid, found: &Explanation) -> String {
     let nearest = &result.rows[found.nearest];
     let near =
         format!("{} (adjusted {})", name(laid, nearest), p_statement(nearest.p_adjusted, result.alpha));
+    // With one error term the overall F is t²/(k - 1) of this contrast; Welch's F is scaled besides.
+    let makes_f = match (laid.study.variances, laid.estimates.labels.len()) {
+        (Variances::Unequal, _) => String::new(),
+        (Variances::Equal, 2) => "; t\u{b2} is the overall F".to_string(),
+        (Variances::Equal, k) => format!("; t\u{b2}/{} is the overall F", k - 1),
+    };
     let carrying = format!(
-        "{} ({}, t = {})",
+        "{} ({}, t = {}{makes_f})",
         found.carrying_words,
         number::signed(found.carrying_estimate.estimate, precision(laid)),
         number::statistic(found.carrying_estimate.estimate / found.carrying_estimate.se)
@@ -371,8 +377,9 @@ fn is_multiple(one: &[f64], other: &[f64]) -> bool {
 fn writeup(laid: &Laid) -> String {
     let (result, study) = (&laid.comparisons, laid.study);
     let opening = format!(
-        "Mean {} was compared over {} ({}; {}, {}; {} over {}, {}).",
+        "Mean {} was compared {} {} ({}; {}, {}; {} over {}, {}).",
         outcome_with_unit(study),
+        if laid.asked.family == Family::Contrasts { "by" } else { "over" },
         words::family(laid.asked, study),
         sizes(&laid.estimates.labels, laid.estimates.n.iter().copied()),
         words::error_term(study.variances, Some(laid.estimates), study.levels.count()),

@@ -97,7 +97,7 @@ fn table(laid: &Laid) -> Table {
         .number_column("SS");
     laid.trend.rows.iter().for_each(|row| table.push(table_row(laid, row)));
     let mut notes = vec![
-        "Coefficient: what the fitted curve has of this degree, per unit of score (linear), per squared unit (quadratic) and so on.".to_string(),
+        "Coefficient: of the orthogonal polynomial of this degree. The linear one is the slope of the straight line, the change per unit of score; the others say how the curve departs from the degrees before, per squared unit (quadratic) and so on.".to_string(),
         format!(
             "Each degree lets the curve bend once more: {}.",
             listed(laid.trend.rows.iter().map(|row| format!("{} is {}", row.name, words::meaning(row.degree))))
@@ -193,7 +193,14 @@ fn lack_of_fit(laid: &Laid) -> Table {
             Cell::text(reading(laid, left)),
         ]));
     }
-    table
+    table.note(match laid.study.variances {
+        Variances::Equal => {
+            "The curve is fitted to the means by their group sizes, whatever the weights of the trends above."
+        }
+        Variances::Unequal => {
+            "The curve is fitted to the means by their precision (group size over variance), whatever the weights of the trends above."
+        }
+    })
 }
 
 fn reading(laid: &Laid, left: &LackOfFit) -> &'static str {
