@@ -324,7 +324,7 @@ fn an_overall_test_that_says_otherwise_is_explained_on_the_study_s_own_numbers()
     let named = ["a", "b", "c", "d"].iter().zip(&groups).map(|(name, values)| (*name, values.as_slice()));
     let study = study(&named.collect::<Vec<_>>(), Variances::Equal);
     let outcome = settled("adjust = \"Bonferroni\"", study);
-    let text = shown(&outcome);
+    let text = shown(&outcome).replace('\n', " ");
     assert!(text.contains("Why the overall test is significant"), "{text}");
     // F = t²/(k - 1) of the contrast that carries it (Scheffé 1959, section 3.5); its t is √2 times that of a pair, 2.34.
     assert!(
