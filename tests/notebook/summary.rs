@@ -45,8 +45,7 @@ kind = "summary"
 groups = [
   { level = "a", n = 0, mean = 1, sd = 1 }, # ! Level "a": n is 0, but a whole number from 1 up is needed.
   { level = "b", n = 2.5, mean = 1, sd = 1 }, # ! Level "b": n is 2.5, but a whole number from 1 up is needed.
-  { level = "c", n = 5, mean = 1, sd = 0 }, # ! Level "c": sd is 0, but a number above 0 is needed for 5 observations.
-  { level = "d", n = 5, mean = 1, sd = -2 }, # ! Level "d": sd is -2, but a number above 0 is needed
+  { level = "d", n = 5, mean = 1, sd = -2 }, # ! Level "d": sd is -2, but a number from 0 up is needed.
   { level = "e", n = 5, mean = inf, sd = 1 }, # ! Level "e": the mean "inf" is not a number. Write a number with a decimal point.
   { level = "f", n = 5, mean = "12,5", sd = 1 }, # ! Level "f": the mean "12,5" is not a number.
   { level = "g", n = 5, mean = "1e400", sd = 1 }, # ! Level "g": the mean "1e400" is too large
@@ -60,4 +59,25 @@ groups = [
 ]
 "#,
     );
+}
+
+/// Cells on a summary or a table of the same three levels, of which "c" does not vary.
+fn with_a_constant_level(data: &str, variances: &str) -> String {
+    format!(
+        "levelwise = 1\n[[cell]]\n{data}\nname = \"given\"\n[[cell]]\nkind = \"study\"\nname = \"trial\"\ndata = \"given\"\noutcome = \"y\"\ngroups = \"g\"\nlevels = [\"a\", \"b\", \"c\"]\nvariances = \"{variances}\"\n[[cell]]\nkind = \"comparisons\"\nname = \"pairs\"\nstudy = \"trial\"\n"
+    )
+}
+
+#[test]
+fn a_level_that_does_not_vary_is_treated_as_in_a_table_of_its_values() {
+    let typed = "kind = \"summary\"\ngroups = [{ level = \"a\", n = 3, mean = 2, sd = 1 }, { level = \"b\", n = 3, mean = 4, sd = 2 }, { level = \"c\", n = 2, mean = 5, sd = 0 }]";
+    let table = "kind = \"data\"\ntable = \"g,y\\na,1\\na,2\\na,3\\nb,2\\nb,4\\nb,6\\nc,5\\nc,5\\n\"";
+    let answer = |data| results(&settled(&with_a_constant_level(data, "equal")), "pairs");
+    assert_eq!(answer(typed), answer(table));
+    let refused = |data| {
+        let engine = settled(&with_a_constant_level(data, "unequal"));
+        named(&engine, "pairs").diagnostics.first().map(|problem| problem.message.clone())
+    };
+    assert!(refused(typed).is_some_and(|message| message.contains("level \"c\" has no variation")));
+    assert_eq!(refused(typed), refused(table));
 }

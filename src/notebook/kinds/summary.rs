@@ -108,12 +108,11 @@ fn group(reader: &mut Reader, record: &At<Vec<String>>) -> Option<Group> {
             "{place} has 1 observation and so no standard deviation. Write sd = 0 for it."
         ));
     }
-    if size > 1.0 && spread <= 0.0 {
-        return complain(format!(
-            "{place}: sd is {sd}, but a number above 0 is needed for {n} observations."
-        ));
+    // 0 is what equal values have; the study says what that means for its methods.
+    if spread < 0.0 {
+        return complain(format!("{place}: sd is {sd}, but a number from 0 up is needed."));
     }
-    if size > 1.0 && !(spread * spread).is_normal() {
+    if spread > 0.0 && !(spread * spread).is_normal() {
         return complain(format!(
             "{place}: sd is {sd}, which cannot be squared. Change the unit of the outcome."
         ));
