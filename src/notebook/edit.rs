@@ -176,10 +176,15 @@ fn list(typed: &str, part: impl Fn(&str) -> Value) -> Value {
     Value::Array(parts.map(part).collect())
 }
 
+/// Lines `name: value` as a table. Two lines with one name stay the text they are, for the reader to complain about:
+/// a table would keep only one of them.
 fn named(typed: &str, cut: impl Fn(&str) -> (&str, &str), value: impl Fn(&str) -> Value) -> Value {
     let mut table = InlineTable::new();
     for line in typed.lines().map(str::trim).filter(|line| !line.is_empty()) {
         let (name, text) = cut(line);
+        if table.contains_key(name.trim()) {
+            return Value::from(typed);
+        }
         table.insert(name.trim(), value(text.trim()));
     }
     Value::InlineTable(table)

@@ -251,11 +251,7 @@ fn what_is_missing_or_mistyped_is_said_at_its_place() {
         (contrasts("{ C = 1, A = -1 }"), "{ C = 1, A = -1 }", "\"C\" is no level of this study."),
         (contrasts("[1, -1]"), "[1, -1]", "2 coefficients for 3 levels"),
         (contrasts("5"), "5", "write an expression in quotes"),
-        (
-            "family = \"contrasts\"".into(),
-            "\"contrasts\"",
-            "Add contrasts = { \"first\" = \"A - control\" }.",
-        ),
+        ("family = \"contrasts\"".into(), "\"contrasts\"", "or add contrasts = { first = \"A - control\" }."),
         ("contrasts = { a = \"A - B\" }".into(), "{ a = \"A - B\" }", "Add family = \"contrasts\"."),
         (
             "family = \"each against control\"".into(),
@@ -447,4 +443,19 @@ family = "neighbours"
     let p: Vec<f64> = rows.iter().map(|row| row["p_adjusted"].as_f64().unwrap()).collect();
     near(&p, &[0.676220, 0.00798514, 0.0659189], 5e-7);
     assert!(named(&engine, "pairs").headline.contains("Tukey"));
+}
+
+#[test]
+fn two_lines_with_one_name_are_both_kept_and_named() {
+    use levelwise::notebook::{edit, kinds::Kind};
+    let field = Kind::Comparisons.table().field("given").expect("a field");
+    let text = "kind = \"comparisons\"\nfamily = \"given p-values\"\n";
+    let text = edit::set_field(text, field, "a: 0.01\na: 0.02").expect("an edit");
+    let engine = super::expect::settled(&format!("levelwise = 1\n[[cell]]\n{text}"));
+    let cell = super::expect::cell(&engine, 0);
+    assert!(cell.text.contains("0.01") && cell.text.contains("0.02"), "{}", cell.text);
+    assert_eq!(
+        cell.diagnostics[0].message,
+        "given: two lines have the name \"a\". Give each line a name of its own."
+    );
 }

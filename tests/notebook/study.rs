@@ -132,7 +132,7 @@ fn levels_left_open_come_in_order_of_appearance_and_the_cell_says_so() {
     assert_eq!(
         cautions(&engine),
         [
-            "The levels stand in the order in which they first appear. To confirm or change it, set levels = [\"none\", \"15 min\", \"30 min\", \"pilot\"].",
+            "The levels stand in the order in which they first appear. To confirm or change it, fill in the levels, or set levels = [\"none\", \"15 min\", \"30 min\", \"pilot\"].",
             "Level \"pilot\" has 1 observation; unequal variances need at least 2. Exclude it with a reason, or add data.",
         ]
     );

@@ -16,7 +16,7 @@ export function createPrivacy(element) {
       h('li', {}, 'Look at the source of the page: the line “Content-Security-Policy” near its top says default-src ‘none’ and connect-src ‘none’. The browser enforces it, whatever the page’s code does; a changed script does not run at all.'),
     ),
     h('p', {}, 'A policy cannot stop a browser from following a link to another page, so this page has none. It keeps nothing in the browser either: what you do not save is gone when you close it. Files that you save are yours to look after.'),
-    h('p', { class: 'answers' }, h('button', { type: 'button', onclick: () => dialog.close() }, 'Close')),
+    h('p', { class: 'answers' }, h('button', { type: 'button', onclick: () => dialog.close() }, 'Close'), h('button', { type: 'button', class: 'quiet', onclick: () => showLicences() }, 'Licences of what is inside')),
   );
   const button = h('button', { type: 'button', class: 'quiet', onclick: () => dialog.showModal() }, 'How to check');
   const words = h('pre', { tabIndex: 0, role: 'region', 'aria-label': 'Texts of the licences' });
@@ -32,5 +32,5 @@ export function createPrivacy(element) {
     words.textContent = licences();
     notices.showModal();
   };
-  element.replaceChildren(h('p', {}, h('strong', {}, 'This page cannot send anything'), h('span', { class: 'reason' }, ': its security policy forbids every connection'), '. ', button, ' ', h('button', { type: 'button', class: 'quiet', onclick: showLicences }, 'Licences')), dialog, notices);
+  element.replaceChildren(h('p', {}, h('strong', {}, 'This page cannot send anything'), h('span', { class: 'reason' }, ': its security policy forbids every connection'), '. ', button, ' ', h('button', { type: 'button', class: 'quiet licences', onclick: showLicences }, 'Licences')), dialog, notices);
 }

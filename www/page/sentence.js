@@ -122,6 +122,8 @@ function makeField(blank, help, onChange) {
   });
   control.addEventListener('blur', () => {
     help.hidden = true;
+    // Words that nobody sees would still keep their lines free.
+    setText(help, '');
     // The line is shared by all blanks; away from the keyboard each has its own help in its title.
     control.removeAttribute('aria-describedby');
   });
@@ -228,6 +230,10 @@ function typedField(blank, onChange) {
   /** @type {ReturnType<typeof setTimeout>|undefined} */
   let pause;
   let sent = blank.value;
+  // A list that is known already need not be typed: while the keyboard is in the empty blank it is offered there, to be
+  // confirmed by Enter or changed; left as it is, the blank stays empty.
+  let known = '';
+  let offered = false;
 
   const fit = () => {
     element.dataset['shown'] = control.value || control.placeholder;
@@ -235,12 +241,14 @@ function typedField(blank, onChange) {
   const send = () => {
     clearTimeout(pause);
     pause = undefined;
+    if (offered) return;
     if (!long) control.value = control.value.replace(/\s*\n\s*/g, ' ');
     if (control.value === sent) return;
     sent = control.value;
     onChange(blank.field, control.value);
   };
   control.addEventListener('input', () => {
+    offered = false;
     fit();
     clearTimeout(pause);
     pause = setTimeout(send, PAUSE);
@@ -250,10 +258,15 @@ function typedField(blank, onChange) {
     control.addEventListener('keydown', (event) => {
       if (/** @type {KeyboardEvent} */ (event).key !== 'Enter') return;
       event.preventDefault();
+      offered = false;
       send();
     });
   }
-  control.addEventListener('blur', send);
+  control.addEventListener('blur', () => {
+    if (offered) control.value = '';
+    offered = false;
+    send();
+  });
   // How a line is written is shown where it will be written, as soon as the keyboard is there.
   let shown = '';
   let example = '';
@@ -262,7 +275,11 @@ function typedField(blank, onChange) {
     control.placeholder = control.value !== '' ? '' : (there && example) || shown;
     fit();
   };
-  control.addEventListener('focus', hint);
+  control.addEventListener('focus', () => {
+    offered = control.value === '' && known !== '';
+    if (offered) control.value = known;
+    hint();
+  });
   control.addEventListener('blur', hint);
   return {
     element,
@@ -275,11 +292,14 @@ function typedField(blank, onChange) {
     draw(now, _problem, stale) {
       // While the keyboard is in the blank the person's own spelling stays, and so does the place of the caret.
       const active = document.activeElement === control;
-      const typing = pause !== undefined || (active && (stale || now.value.trim() === control.value.trim()));
+      const typing = pause !== undefined || (active && (stale || now.value.trim() === (offered ? '' : control.value.trim())));
       if (!typing) {
+        offered = false;
         sent = now.value;
         if (control.value !== now.value) control.value = now.value;
       }
+      const words = now.control === 'text' ? now.choices.map((choice) => choice.value).filter((word) => word !== '') : [];
+      known = words.join(words.some((word) => /[,;]/.test(word)) ? '; ' : ', ');
       shown = now.value === '' ? now.shown || '…' : '';
       example = now.example;
       hint();

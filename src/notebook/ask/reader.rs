@@ -220,7 +220,14 @@ impl<'a> Reader<'a> {
         let item = self.item(name)?;
         let span = self.ask.span(name);
         let Some(table) = item.as_table_like() else {
-            self.wrong(name, span, &describe(item), "a table of names, such as { \"a\" = ... },");
+            match item.as_str().and_then(name_there_twice) {
+                Some(twice) => self.problem_at(
+                    name,
+                    span,
+                    format!("{name}: two lines have the name \"{twice}\". Give each line a name of its own."),
+                ),
+                None => self.wrong(name, span, &describe(item), "a table of names, such as { \"a\" = ... },"),
+            }
             return None;
         };
         let entries = table.iter().filter_map(|(key, item)| {
@@ -337,6 +344,16 @@ pub fn finite(value: &Value) -> Option<f64> {
         .as_float()
         .or_else(|| value.as_integer().map(|whole| whole as f64))
         .filter(|number| number.is_finite())
+}
+
+/// The first name that two of the lines `name: value` have.
+fn name_there_twice(lines: &str) -> Option<&str> {
+    let names: Vec<&str> = lines
+        .lines()
+        .filter(|line| !line.trim().is_empty())
+        .map(|line| line.split_once(':').map_or(line, |(name, _)| name).trim())
+        .collect();
+    names.iter().enumerate().find(|(at, name)| names[..*at].contains(name)).map(|(_, name)| *name)
 }
 
 fn describe(item: &Item) -> String {

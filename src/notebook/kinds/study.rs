@@ -27,7 +27,7 @@ pub const TABLE: KindTable = KindTable {
         Field::new("data", Holds::Cell(&[Kind::Data, Kind::Summary]), "data", "The cell with the table or the summaries; a study without data is a plan").or("no data yet"),
         Field::new("outcome", Holds::Column, "outcome", "The measured outcome: a column of numbers").required(),
         Field::new("groups", Holds::Column, "grouping variable", "The column that says which level a row belongs to").required(),
-        Field::new("levels", Holds::Texts, "levels in order", "The levels in their order").or("in order of first appearance"),
+        Field::new("levels", Holds::Texts, "levels in order", "The levels in their order. Enter keeps the order that stands here").or("in order of first appearance"),
         Field::new("scores", Holds::Numbers, "scores", "A number for each level, increasing: the dose, the minutes; needed for trends").or("no scores"),
         Field::new("control", Holds::Level, "control", "The level that others are compared with").or("no control"),
         Field::new("variances", Holds::Choice(VARIANCES), "variances", "Pooling with unequal spread and unequal group sizes can triple the error rate, so the default does not pool").or("possibly unequal, each level with its own"),
@@ -114,6 +114,7 @@ fn offers(ask: &Ask, read: &Read, study: Option<&Study>) -> Vec<(&'static str, V
         }
     };
     if !levels.is_empty() {
+        offers.push(("levels", levels.clone()));
         offers.push(("control", levels));
     }
     offers

@@ -164,8 +164,10 @@ fn given(reader: &mut Reader) -> Option<Vec<(String, f64)>> {
 fn contrasts(reader: &mut Reader, study: &Study) -> Option<Vec<Contrast>> {
     if !reader.ask().given("contrasts") {
         let example = example(&study.levels.labels);
-        let message =
-            format!("The family \"contrasts\" needs them. Add contrasts = {{ \"first\" = \"{example}\" }}.");
+        let message = format!(
+            "The family \"contrasts\" needs them. Write a line \"first: {example}\" in the blank, or add contrasts = {{ first = {} }}.",
+            Value::from(example.as_str())
+        );
         reader.problem("family", message);
         return None;
     }
@@ -185,8 +187,16 @@ fn contrasts(reader: &mut Reader, study: &Study) -> Option<Vec<Contrast>> {
 
 fn example(labels: &[String]) -> String {
     match labels {
-        [first, second, ..] => format!("{second} - {first}"),
+        [first, second, ..] => format!("{} - {}", in_expression(second), in_expression(first)),
         _ => "B - A".to_string(),
+    }
+}
+
+/// A level's name as an expression takes it: in single quotes where it could be misread.
+fn in_expression(level: &str) -> String {
+    match level.contains(['+', '-', '\u{2212}', '*', '/', '(', ')', '\'']) {
+        true => format!("'{}'", level.replace('\'', "''")),
+        false => level.to_string(),
     }
 }
 

@@ -204,7 +204,7 @@ fn remarks_on_levels(study: &Study) -> Vec<String> {
     let mut remarks = Vec::new();
     if levels.order_of_appearance {
         remarks.push(format!(
-            "The levels stand in the order in which they first appear. To confirm or change it, set levels = {}.",
+            "The levels stand in the order in which they first appear. To confirm or change it, fill in the levels, or set levels = {}.",
             super::design::toml_list(&levels.labels)
         ));
     }
