@@ -106,7 +106,7 @@ fn row_markup(row: &Row, columns: &[Column]) -> Markup {
             @for (place, column) in columns.iter().enumerate() {
                 @let cell = row.cells.get(place).unwrap_or(&empty);
                 @if place == 0 && !cell.absent { (row_heading(cell, column)) }
-                @else { td class=[together(cell).or(class_of(column.align)).or(short(cell))] { (content(cell)) } }
+                @else { td class=[together(cell, column).or(class_of(column.align)).or(short(cell))] { (content(cell)) } }
             }
         }
     }
@@ -117,8 +117,9 @@ fn row_heading(cell: &Cell, column: &Column) -> Markup {
 }
 
 /// An interval is read as one thing: it is never broken, not on paper either.
-fn together(cell: &Cell) -> Option<&'static str> {
-    (cell.text.starts_with(['[', '(']) && cell.text.ends_with([']', ')'])).then_some("a-n a-whole")
+fn together(cell: &Cell, column: &Column) -> Option<&'static str> {
+    let interval = cell.text.starts_with(['[', '(']) && cell.text.ends_with([']', ')']);
+    (interval && column.align == Align::Number).then_some("a-n a-whole")
 }
 
 /// Short words stay on one line; the numbers beside them may scroll.
