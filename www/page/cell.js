@@ -39,7 +39,7 @@ export function createCell(id, state, actions) {
   const table = h('div', { class: 'table-place' });
   const answer = createAnswer(actions.say);
   const content = h('div', { class: 'content' }, faces, problems, table, answer.element);
-  const element = h('section', { class: 'cell', id: `cell-${id}` }, head.element, content);
+  const element = h('section', { class: 'cell fresh', id: `cell-${id}` }, head.element, content);
   element.addEventListener('keydown', (event) => {
     const direction = { ArrowUp: -1, ArrowDown: 1 }[event.key];
     // In a list of choices and in the text face the same keys have a meaning already.
@@ -120,6 +120,8 @@ export function createCell(id, state, actions) {
       drawTable(cell, now);
       answer.draw(cell, now.fileName);
       drawn = cell;
+      // The first answers are shown before the cells further down are laid out.
+      if (now.settled) setTimeout(() => element.classList.remove('fresh'));
     },
     /** @param {import('./state.js').FocusWish} wish */
     focus(wish) {
