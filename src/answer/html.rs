@@ -7,6 +7,7 @@
 use super::clean::printable;
 use super::{Align, Answer, Block, Cell, Column, Emphasis, Figure, Row, Table, note};
 use maud::{Markup, PreEscaped, Render, html};
+use std::borrow::Cow;
 
 /// The whole answer: headline, blocks, write-up and cautions, inside one `div.a-answer`.
 pub fn answer(answer: &Answer) -> String {
@@ -150,6 +151,29 @@ pub(in crate::answer) struct Shown<'a>(pub &'a str);
 
 impl Render for Shown<'_> {
     fn render_to(&self, buffer: &mut String) {
-        printable(self.0).as_ref().render_to(buffer);
+        unbroken(&printable(self.0)).as_ref().render_to(buffer);
     }
+}
+
+/// The text with "n = 14" and "p < 0.001" held together: a line that begins with a relation sign is hard to read.
+fn unbroken(text: &str) -> Cow<'_, str> {
+    if !text.contains(" = ") && !text.contains(" < ") {
+        return Cow::Borrowed(text);
+    }
+    let mut held = String::with_capacity(text.len() + 16);
+    let mut rest = text;
+    while let Some(at) = rest.find(" = ").into_iter().chain(rest.find(" < ")).min() {
+        let (before, after) = (&rest[..at], &rest[at + 3..]);
+        let symbol = before.ends_with(|c: char| c.is_alphanumeric() || c == ')');
+        let value = after.starts_with(|c: char| c.is_ascii_digit() || matches!(c, '-' | '\u{2212}' | '<'));
+        held.push_str(before);
+        if symbol && value {
+            held.extend(['\u{a0}', char::from(rest.as_bytes()[at + 1]), '\u{a0}']);
+        } else {
+            held.push_str(&rest[at..at + 3]);
+        }
+        rest = after;
+    }
+    held.push_str(rest);
+    Cow::Owned(held)
 }

@@ -37,7 +37,7 @@ fn an_answer_becomes_accessible_html() {
         "<p class=\"a-below\">Holm's procedure has no simultaneous intervals.</p>",
         "<p class=\"a-text\">First.</p><p class=\"a-text\">Second.</p>",
         "<div class=\"a-note\"><p>A <em>note</em>.</p>",
-        "<section class=\"a-writeup\" aria-label=\"Write-up\"><p>The difference was 1.25, p = 0.012.</p></section>",
+        "<section class=\"a-writeup\" aria-label=\"Write-up\"><p>The difference was 1.25, p\u{a0}=\u{a0}0.012.</p></section>",
         "<li>Level &quot;a&quot; has 3 observations.</li>",
     ] {
         assert!(markup.contains(expected), "{expected}\nis not in\n{markup}");
@@ -295,4 +295,16 @@ proptest! {
             prop_assert!(line.chars().count() <= width, "{line}");
         }
     }
+}
+
+#[test]
+fn a_symbol_stays_with_its_value_and_an_interval_is_one_piece() {
+    let table = Table::new("Means")
+        .text_column("Level")
+        .number_column("Interval")
+        .row(Row::new([Cell::text("a (n = 14)"), Cell::text("[1.0, 2.0]")]));
+    let page = html::answer(&Answer::new("It rises (p < 0.001), a = b stays").with_table(table));
+    assert!(page.contains("(p\u{a0}&lt;\u{a0}0.001), a = b stays"), "{page}");
+    assert!(page.contains("a (n\u{a0}=\u{a0}14)"), "{page}");
+    assert!(page.contains("<td class=\"a-n a-whole\">[1.0, 2.0]</td>"), "{page}");
 }

@@ -102,7 +102,7 @@ fn groups_table(study: &Study, profile: &Profile) -> Table {
         .number_column("Mean")
         .number_column("SD")
         .number_column("SE")
-        .text_column(format!("{percent} CI of the mean"));
+        .number_column(format!("{percent} CI of the mean"));
     if has_order {
         for heading in ["Min", "Lower quartile", "Median", "Upper quartile", "Max"] {
             table = table.number_column(heading);
