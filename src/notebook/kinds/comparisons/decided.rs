@@ -37,10 +37,6 @@ fn estimate_word(laid: &Laid) -> &'static str {
     if laid.asked.family == Family::Contrasts { "estimate" } else { "difference" }
 }
 
-fn precision(laid: &Laid) -> Precision {
-    Precision::for_column(laid.comparisons.rows.iter().map(|row| row.se))
-}
-
 fn headline(laid: &Laid) -> String {
     let result = &laid.comparisons;
     let method =
@@ -62,7 +58,7 @@ fn headline(laid: &Laid) -> String {
     let which = if (1..=3).contains(&of) && all > 1 {
         let each = found
             .iter()
-            .map(|row| format!("{} {}", name(laid, row), number::signed(row.estimate, precision(laid))));
+            .map(|row| format!("{} {}", name(laid, row), number::signed(row.estimate, laid.precision)));
         format!(": {}", listed(each))
     } else {
         String::new()
@@ -79,7 +75,7 @@ fn not_shown(sides: Sides) -> &'static str {
 }
 
 fn direction(laid: &Laid, row: &ComparisonRow) -> String {
-    let size = number::signed(row.estimate, precision(laid));
+    let size = number::signed(row.estimate, laid.precision);
     format!("{size}, a difference is shown")
 }
 
@@ -119,7 +115,7 @@ fn table(laid: &Laid) -> Table {
 }
 
 fn table_row(laid: &Laid, row: &ComparisonRow) -> Row {
-    let (result, precision) = (&laid.comparisons, precision(laid));
+    let (result, precision) = (&laid.comparisons, laid.precision);
     let raw = match row.alpha {
         Some(alpha) => p_cell(row.p, alpha),
         None => Cell::p_value(row.p),
@@ -286,7 +282,7 @@ fn explanation(laid: &Laid, found: &Explanation) -> String {
     let carrying = format!(
         "{} ({}, t = {}{makes_f})",
         found.carrying_words,
-        number::signed(found.carrying_estimate.estimate, precision(laid)),
+        number::signed(found.carrying_estimate.estimate, laid.precision),
         number::statistic(found.carrying_estimate.estimate / found.carrying_estimate.se)
     );
     match found.disagreement {
@@ -407,7 +403,7 @@ fn writeup(laid: &Laid) -> String {
 
 /// "B − A: difference 2.59 (simultaneous 95 % interval 0.7 to 4.5), q(12) = 5.22, adjusted p = 0.008, d = 2.24 (0.47 to 3.97), g = 2.09; a difference is shown."
 fn row_sentence(laid: &Laid, row: &ComparisonRow) -> String {
-    let (result, precision) = (&laid.comparisons, precision(laid));
+    let (result, precision) = (&laid.comparisons, laid.precision);
     let two = Precision::decimals(2);
     let size = estimate_word(laid);
     let p_name = if result.adjust == Adjust::PValues(crate::methods::multiplicity::PValueMethod::None) {

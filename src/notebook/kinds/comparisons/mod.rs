@@ -15,6 +15,7 @@ mod words;
 
 use super::wording::{refused, remedy};
 use super::{Kind, Read};
+use crate::answer::Precision;
 use crate::methods::multiplicity::{Comparisons, Request, compare, explain};
 use crate::notebook::ask::Ask;
 use crate::notebook::fields::{Choice, Field, Holds, KindTable, Piece, choice};
@@ -154,6 +155,8 @@ struct Laid<'a> {
     summary: &'a Summary,
     estimates: &'a Estimates,
     comparisons: Comparisons,
+    /// One for all estimates, from their standard errors.
+    precision: Precision,
     /// Adjusted p-values of the same rows under other procedures.
     also: Vec<(crate::methods::multiplicity::Adjust, Vec<f64>)>,
     explanation: Option<crate::methods::multiplicity::Explanation>,
@@ -180,5 +183,6 @@ fn decide<'a>(
     let also = asked.also.iter().map(|adjust| beside(*adjust)).collect::<Result<Vec<_>, _>>();
     let also = also.map_err(|error| error.to_string())?;
     let explanation = explain(estimates, &comparisons).map_err(|error| error.to_string())?;
-    Ok(Laid { asked, study, summary, estimates, comparisons, also, explanation })
+    let precision = Precision::for_column(comparisons.rows.iter().map(|row| row.se));
+    Ok(Laid { asked, study, summary, estimates, comparisons, precision, also, explanation })
 }
