@@ -19,9 +19,13 @@ fn groups() -> impl Strategy<Value = Vec<Vec<f64>>> {
 }
 
 fn seeded(check: impl Fn(Vec<Vec<f64>>)) {
+    seeded_up_to(200, check);
+}
+
+fn seeded_up_to(cases: u32, check: impl Fn(Vec<Vec<f64>>)) {
     let rng = TestRng::from_seed(RngAlgorithm::ChaCha, &[7; 32]);
     let mut runner =
-        TestRunner::new_with_rng(Config { cases: 200, failure_persistence: None, ..Config::default() }, rng);
+        TestRunner::new_with_rng(Config { cases, failure_persistence: None, ..Config::default() }, rng);
     runner
         .run(&groups(), |groups| {
             check(groups);
@@ -52,7 +56,6 @@ fn scale_free(groups: &[Vec<f64>]) -> Vec<(&'static str, f64)> {
     found.extend(effects.eta_squared.lower.map(|bound| ("lower bound", bound)));
     found.extend(spread_test(&labels, &sample, Centre::Mean).map(|test| ("Levene", test.p)));
     found.extend(spread_test(&labels, &sample, Centre::Median).map(|test| ("Brown-Forsythe", test.p)));
-    found.extend(KruskalWallis::of(&labels, &sample).map(|test| ("Kruskal-Wallis", test.p)));
     found
 }
 
@@ -74,6 +77,26 @@ fn shifting_and_scaling_change_no_decision() {
             // Powers of two keep the values exact; the last pair rounds each value to about 1e-14 of their spread.
             same(&plain, &scale_free(&moved), if scale == 0.001 { 1e-8 } else { 1e-10 });
         }
+    });
+}
+
+/// Fewer studies than elsewhere, because exact p-values are counted anew for each.
+#[test]
+fn ranks_know_no_scale_and_no_order() {
+    let ranks = |groups: &[Vec<f64>]| {
+        let labels: Vec<String> = (0..groups.len()).map(|i| i.to_string()).collect();
+        let test =
+            KruskalWallis::of(&labels, &Sample { origin: 0.0, groups: groups.to_vec() }).expect("a test");
+        [("H", test.h), ("p", test.p), ("p of chi-squared", test.p_chi_squared)]
+    };
+    seeded_up_to(50, |mut groups| {
+        let plain = ranks(&groups);
+        let moved: Vec<Vec<f64>> =
+            groups.iter().map(|group| group.iter().map(|x| 4.0 * x + 1024.0).collect()).collect();
+        same(&plain, &ranks(&moved), 1e-14);
+        groups.reverse();
+        groups.iter_mut().for_each(|group| group.reverse());
+        same(&plain, &ranks(&groups), 1e-12);
     });
 }
 
