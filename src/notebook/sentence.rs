@@ -196,7 +196,10 @@ fn typed(item: &Item, field: &Field) -> String {
                         .iter()
                         .map(|part| table.get(part.name).map(typed_value).unwrap_or_default())
                         .collect::<Vec<_>>()
-                        .join("; "),
+                        .join("; ")
+                        // A last part that is missing has no separator before it: it is about to be written.
+                        .trim_end_matches("; ")
+                        .to_string(),
                     None => typed_value(value),
                 });
                 lines.collect::<Vec<_>>().join("\n")

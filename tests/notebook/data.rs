@@ -197,3 +197,12 @@ fn usual_slips_with_a_pasted_table_are_named() {
         ]
     );
 }
+
+#[test]
+fn an_empty_cell_is_missing_whatever_the_codes_are() {
+    let engine = settled(&with_table("group,score\nA,12\nA,\nB,-9\nB,13\n", "missing = [\"-9\"]"));
+    assert_eq!(
+        results(&engine, "trial")["columns"][1],
+        json!({ "name": "score", "type": "number", "missing": 2 })
+    );
+}

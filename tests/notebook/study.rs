@@ -475,3 +475,15 @@ proptest! {
         }
     }
 }
+
+#[test]
+fn an_error_rate_in_per_cent_is_told_how_to_be_written() {
+    let engine = settled(
+        "levelwise = 1\n[[cell]]\nkind = \"study\"\noutcome = \"y\"\ngroups = \"g\"\nlevels = [\"a\", \"b\"]\nalpha = 2.5\n",
+    );
+    let problems = &cell(&engine, 0).diagnostics;
+    assert_eq!(
+        problems[0].message,
+        "alpha: 2.5 was found, but a number between 0 and 1 is needed. For 2.5 % write 0.025."
+    );
+}

@@ -164,7 +164,18 @@ impl<'a> Reader<'a> {
             (_, number) => (number.is_some(), "a finite number".to_string()),
         };
         if !fits {
-            self.wrong(name, span, &describe(item), &needed);
+            let per_cent = match (self.field(name)?.holds, number) {
+                (Holds::Between(0.0, 1.0), Some(x)) if x > 1.0 && x < 100.0 => {
+                    format!(" For {x} % write {}.", (x * 1e8).round() / 1e10)
+                }
+                _ => String::new(),
+            };
+            let found = describe(item);
+            self.problem_at(
+                name,
+                span,
+                format!("{name}: {found} was found, but {needed} is needed.{per_cent}"),
+            );
             return None;
         }
         number
@@ -314,9 +325,10 @@ impl<'a> Reader<'a> {
                     name,
                     span.clone(),
                     format!(
-                        "{name}, entry {}: \"{}\" is missing. Add {} with its value.",
+                        "{name}, entry {}: \"{}\" is missing. In the blank a line is \"{}\"; in the text, add {} to the entry.",
                         index + 1,
                         part.name,
+                        known().collect::<Vec<_>>().join("; "),
                         part.name
                     ),
                 );
