@@ -222,7 +222,12 @@ pub fn axis_title(drawing: &mut Drawing, title: &str, left: f64, y: f64) -> f64 
 fn describe(spec: &Intervals) -> String {
     let estimates: Vec<f64> = spec.rows.iter().map(|r| r.estimate).collect();
     let precision = precision_of(&estimates, spec.rows.iter().map(|r| r.interval.and_then(Span::usable)));
-    let mut sentences = vec![format!("{} for {} rows", spec.axis, spec.rows.len())];
+    let mut sentences = vec![format!(
+        "{} for {} {}",
+        spec.axis,
+        spec.rows.len(),
+        if spec.rows.len() == 1 { "row" } else { "rows" }
+    )];
     if !spec.bars.is_empty() {
         sentences.push(spec.bars.clone());
     }
