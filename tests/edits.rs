@@ -159,7 +159,7 @@ fn edit(engine: &Engine, act: &Act) -> Option<Edit> {
         5 => Edit::Move { cell, to: act.number },
         6 => Edit::Rename { cell, name: text },
         7 => Edit::TableValue { cell, row: act.number, column: act.place % 4, value: text },
-        8 => Edit::Table { cell: (act.number % 2 == 0).then_some(cell), text },
+        8 => Edit::Table { cell: act.number.is_multiple_of(2).then_some(cell), text },
         _ => {
             let fields = engine.cell(cell)?.kind?.table().fields;
             Edit::Field { cell, field: fields[act.number % fields.len()].name.to_string(), value: text }
