@@ -52,18 +52,10 @@ impl Session {
 
     /// Computes a slice of what is left and tells the page; false when nothing is left to compute.
     pub fn advance(&mut self) -> bool {
-        let start = js_sys::Date::now();
-        let mut worked = false;
-        while self.engine.advance() {
-            worked = true;
-            if js_sys::Date::now() - start >= SLICE {
-                break;
-            }
-        }
-        if worked {
+        if self.work() {
             self.tell();
         }
-        worked && !self.engine.is_settled()
+        !self.engine.is_settled()
     }
 }
 
@@ -80,9 +72,26 @@ impl Session {
             Err(_) => Ok(()),
         };
         match result {
-            Ok(()) => self.tell(),
+            // What takes no longer than a frame is told together with the edit that it follows from.
+            Ok(()) => {
+                self.work();
+                self.tell();
+            }
             Err(message) => self.refuse(message),
         }
+    }
+
+    /// Computes for one slice; false when there was nothing to compute.
+    fn work(&mut self) -> bool {
+        let start = js_sys::Date::now();
+        let mut worked = false;
+        while self.engine.advance() {
+            worked = true;
+            if js_sys::Date::now() - start >= SLICE {
+                break;
+            }
+        }
+        worked
     }
 
     fn tell(&mut self) {

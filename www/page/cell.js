@@ -8,7 +8,7 @@ import { cellTitle, kindTitle } from './kinds.js';
 import { createPastePlace } from './paste-place.js';
 import { createSentence } from './sentence.js';
 import { isStale } from './state.js';
-import { createTextFace } from './text.js';
+import { readTextFace, textFaceMaker } from './text-later.js';
 
 /** @typedef {import('./state.js').State} State */
 /** @typedef {import('./messages.js').CellView} CellView */
@@ -49,7 +49,7 @@ export function createCell(id, state, actions) {
     actions.moveBy(id, direction);
   });
 
-  /** @type {ReturnType<typeof createTextFace>|null} */
+  /** @type {ReturnType<import('./text-later.js').CreateTextFace>|null} */
   let text = null;
   /** @type {ReturnType<typeof createGrid>|null} */
   let grid = null;
@@ -63,7 +63,10 @@ export function createCell(id, state, actions) {
    * @param {boolean} open
    */
   function drawText(cell, open) {
-    if (open && !text) {
+    const createTextFace = textFaceMaker();
+    if (open && !createTextFace) {
+      void readTextFace().then(textFaceIsHere);
+    } else if (open && !text && createTextFace) {
       text = createTextFace({ label: `Text of ${cellTitle(cell)}`, text: cell.text, known, onText: (typed) => actions.editText(id, typed) });
       faces.append(text.element);
     } else if (!open && text) {
@@ -72,6 +75,15 @@ export function createCell(id, state, actions) {
       text = null;
     }
     text?.draw(cell);
+  }
+
+  /** Opens what was asked for before it could be. */
+  function textFaceIsHere() {
+    const { cells, texts, focus } = state();
+    const cell = cells.get(id);
+    if (!cell) return;
+    drawText(cell, texts.has(id));
+    if (focus?.cell === id && focus.part === 'text') text?.focus(focus.at);
   }
 
   /**

@@ -12,6 +12,7 @@ import { workerFrom } from './policy.js';
 /**
  * @typedef {object} Engine
  * @property {(request: Request) => number} send the request's number
+ * @property {(source: string) => void} prepare starts the worker's own script, which takes its time, before the engine is compiled
  * @property {(program: Program) => void} start
  * @property {() => void} restart
  */
@@ -41,11 +42,9 @@ export function createEngine({ onMessage, onFailure }) {
     onFailure(words);
   }
 
-  function restart() {
-    if (!program) return;
-    worker?.terminate();
-    const fresh = workerFrom(program.source);
-    worker = fresh;
+  /** @param {string} source */
+  function newWorker(source) {
+    const fresh = workerFrom(source);
     fresh.onmessage = (/** @type {MessageEvent<Message>} */ event) => {
       if (fresh !== worker) return;
       if (event.data.type === 'failed') fail(fresh, event.data.message);
@@ -56,7 +55,14 @@ export function createEngine({ onMessage, onFailure }) {
       fail(fresh, event.message ?? 'The worker did not start.');
     };
     fresh.onmessageerror = () => fail(fresh, 'A message could not be read.');
-    fresh.postMessage({ type: 'start', module: program.module });
+    return fresh;
+  }
+
+  function restart() {
+    if (!program) return;
+    worker?.terminate();
+    worker = newWorker(program.source);
+    worker.postMessage({ type: 'start', module: program.module });
   }
 
   return {
@@ -67,9 +73,13 @@ export function createEngine({ onMessage, onFailure }) {
       else early.push(numbered);
       return seq;
     },
+    prepare(source) {
+      worker ??= newWorker(source);
+    },
     start(ready) {
       program = ready;
-      restart();
+      if (worker) worker.postMessage({ type: 'start', module: program.module });
+      else restart();
       for (const request of early) worker?.postMessage(request);
       early = [];
     },

@@ -15,7 +15,11 @@ import { createSession } from './session.js';
 import { EMPTY } from './state.js';
 import { createStore } from './store.js';
 import { looksLikeTable } from './tables.js';
+import { readTextFace } from './text-later.js';
 import { createToolbar } from './toolbar.js';
+
+/** When the text face is read: after the first answers, before anybody can have asked for it. In milliseconds. */
+const WITH_TIME = 800;
 
 /** @param {string} id */
 function place(id) {
@@ -88,6 +92,7 @@ async function begin() {
   await session.start(say, flush);
   const asked = exampleAsked(location.hash);
   if (asked !== null) openExample(asked);
+  setTimeout(() => void readTextFace(), WITH_TIME);
 }
 
 /**

@@ -177,7 +177,9 @@ export function createSession(store) {
     async start(say, flushControls) {
       tell = say;
       flush = flushControls;
-      engine.start({ source: workerSource(), module: await compiling });
+      const source = workerSource();
+      engine.prepare(source);
+      engine.start({ source, module: await compiling });
     },
     /**
      * Opens a notebook, after asking if changes would be lost.
