@@ -46,7 +46,10 @@ export function createGrid(label, actions) {
   /** @type {number[]} */
   let widths = [];
 
-  const extent = () => ({ total, rowHeight: ROW, viewHeight: Math.max(ROW, element.clientHeight - ROW) });
+  /** How far it is scrolled. Kept, since asking for it while drawing would make the browser lay out the whole page. */
+  let scrolled = 0;
+  const rowsInSight = () => (total > MOST_ROWS_IN_SIGHT ? MOST_ROWS_IN_SIGHT + 0.5 : Math.max(1, total));
+  const extent = () => ({ total, rowHeight: ROW, viewHeight: rowsInSight() * ROW });
   const columns = () => window?.columns ?? [];
   /** @param {number} at */
   const valuesAt = (at) => (window && at >= window.from ? window.rows[at - window.from] : undefined);
@@ -76,7 +79,7 @@ export function createGrid(label, actions) {
   }
 
   function drawRows() {
-    const seen = visibleRows(extent(), element.scrollTop);
+    const seen = visibleRows(extent(), scrolled);
     ask(seen.first, seen.count);
     const wanted = JSON.stringify([seen, row, column, revision, window?.from, window?.revision]);
     if (wanted === drawn || editor) return;
@@ -104,6 +107,7 @@ export function createGrid(label, actions) {
     row = Math.max(0, Math.min(toRow, total - 1));
     column = Math.max(0, Math.min(toColumn, columns().length - 1));
     element.scrollTop = scrollToRow(extent(), element.scrollTop, row);
+    scrolled = element.scrollTop;
     drawRows();
     const cell = activeCell();
     if (cell) bringSideways(element, cell, head);
@@ -179,6 +183,7 @@ export function createGrid(label, actions) {
   element.addEventListener('copy', onCopy);
   element.addEventListener('scroll', () => {
     editor?.finish();
+    scrolled = element.scrollTop;
     drawRows();
   });
 
@@ -198,7 +203,7 @@ export function createGrid(label, actions) {
         drawHead();
       }
       if (resized) {
-        element.style.height = total > MOST_ROWS_IN_SIGHT ? `${(MOST_ROWS_IN_SIGHT + 1.5) * ROW}px` : '';
+        element.style.height = total > MOST_ROWS_IN_SIGHT ? `${(rowsInSight() + 1) * ROW}px` : '';
         element.setAttribute('aria-rowcount', String(total + 1));
         row = Math.min(row, Math.max(0, total - 1));
       }
