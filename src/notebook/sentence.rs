@@ -77,7 +77,7 @@ pub fn in_words(parts: &[Part]) -> String {
             Part::Words(text) => text.as_str(),
             Part::Blank(blank) => blank.shown.as_str(),
         };
-        if !words.is_empty() && !next.starts_with([',', '.', ';', ':', '?']) {
+        if !words.is_empty() && !next.starts_with([',', '.', ';', ':', '?', ')']) {
             words.push(' ');
         }
         words.push_str(next);

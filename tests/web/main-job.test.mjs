@@ -53,6 +53,8 @@ async function buildNotebook(page) {
   await fill(page, 'comparisons', 'adjust', 'Tukey');
   await addCell(page, 'Trend');
   await addCell(page, 'Power');
+  await fill(page, 'power', 'groups', '3');
+  await fill(page, 'power', 'effect', '0.25');
 }
 
 /**

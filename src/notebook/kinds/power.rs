@@ -91,7 +91,7 @@ pub const TABLE: KindTable = KindTable {
         ),
         Piece::Words("."),
     ],
-    starts_with: "groups = 3\neffect = 0.25\n",
+    starts_with: "",
 };
 
 /// Which of the three is asked for.

@@ -30,7 +30,7 @@ pub const TABLE: KindTable = KindTable {
         Piece::Words("Groups known by size, mean and standard deviation (level; n; mean; sd):"),
         Piece::Blank("groups"),
     ],
-    starts_with: "groups = [\n  { level = \"A\", n = 10, mean = 0, sd = 1 },\n  { level = \"B\", n = 10, mean = 0, sd = 1 },\n]\n",
+    starts_with: "groups = []\n",
 };
 
 /// The groups as typed, checked, for a study to read.

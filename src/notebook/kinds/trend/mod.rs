@@ -35,7 +35,7 @@ pub const TABLE: KindTable = KindTable {
             "highest degree",
             "1 straight, 2 one bend, 3 two bends, 4 three bends; at most one less than the number of levels",
         )
-        .or("the highest possible"),
+        .or("as high as the levels allow"),
         Field::new("scores", Holds::Numbers, "scores", "Scores to use instead of the study's")
             .or("of the study"),
         Field::new(
@@ -55,9 +55,9 @@ pub const TABLE: KindTable = KindTable {
         Piece::Blank("scores"),
         Piece::Words("? Take it apart by"),
         Piece::Blank("method"),
-        Piece::Words("trends up to degree"),
+        Piece::Words("trends (highest degree:"),
         Piece::Blank("degree"),
-        Piece::Words(", weighting the levels"),
+        Piece::Words("), weighting the levels"),
         Piece::Blank("weights"),
         Piece::Words(", each at an error rate of"),
         Piece::Blank("alpha"),
