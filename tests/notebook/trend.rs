@@ -184,3 +184,22 @@ fn a_line_that_rises_but_does_not_fit_is_cautioned() {
         outcome.answer.cautions
     );
 }
+
+#[test]
+fn a_curve_that_must_pass_through_every_mean_says_so() {
+    let figure = |outcome: &Outcome| {
+        let found = outcome.answer.blocks.iter().find_map(|block| match block {
+            Block::Figure(figure) => Some(figure.svg().to_string()),
+            _ => None,
+        });
+        found.expect("a figure")
+    };
+    // Values with hardly any spread inside the groups: all three degrees are shown, the curve is a cubic through four means.
+    let close = |mean: f64| [mean - 0.01, mean, mean + 0.01];
+    let groups = [("a", close(1.0)), ("b", close(4.0)), ("c", close(2.0)), ("d", close(7.0))];
+    let mut exact = study(&groups.each_ref().map(|(level, values)| (*level, &values[..])), Variances::Equal);
+    exact.levels.scores = Some(vec![0.0, 1.0, 2.0, 4.0]);
+    let text = figure(&settled("", exact.clone())).replace('\n', " ");
+    assert!(text.contains("passes"), "{text}");
+    assert!(!figure(&settled("degree = 1\n", exact)).contains("passes"));
+}

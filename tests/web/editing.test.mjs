@@ -106,6 +106,20 @@ test('an unknown field is marked in the text and explained below the sentence, a
   });
 });
 
+test('the help line no longer says what is missing once it is filled in', async () => {
+  await withPage({}, async ({ page }) => {
+    await drop(page, PLAN.replace(/outcome = .*\n/, ''));
+    await comes(page, `document.querySelector('[data-kind="study"] .problems li')?.textContent.includes('"outcome" is missing')`);
+    await page.focus('[data-kind="study"] [data-field="outcome"]');
+    await comes(page, `document.querySelector('[data-kind="study"] .help')?.textContent.includes('is missing')`);
+    await page.keyboard.type('words');
+    await comes(page, `document.querySelector('[data-kind="study"] .problems li') === null`);
+    const help = await page.$eval('[data-kind="study"] .help', (line) => line.textContent ?? '');
+    assert.match(help, /measured outcome/);
+    assert.doesNotMatch(help, /missing/);
+  });
+});
+
 test('cells are moved, doubled, deleted, named and brought back without a mouse', async () => {
   await withPage({}, async ({ page }) => {
     await drop(page, PLAN);

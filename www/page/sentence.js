@@ -115,11 +115,12 @@ function makeField(blank, help, onChange) {
   const drawField = field.draw;
   const { control } = field;
   control.dataset['field'] = blank.field;
-  control.addEventListener('focus', () => {
+  const showHelp = () => {
     setText(help, control.title);
     help.hidden = control.title === '';
     control.setAttribute('aria-describedby', help.id);
-  });
+  };
+  control.addEventListener('focus', showHelp);
   control.addEventListener('blur', () => {
     help.hidden = true;
     // Words that nobody sees would still keep their lines free.
@@ -134,6 +135,8 @@ function makeField(blank, help, onChange) {
     draw(now, problem, stale) {
       drawField(now, problem, stale);
       drawCommon(control, now, problem);
+      // What was said while the blank was empty no longer holds once it is filled in.
+      if (document.activeElement === control) showHelp();
     },
     element: h('span', { class: 'keep' }, field.element, tail),
     tail,

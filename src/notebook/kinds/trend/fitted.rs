@@ -266,8 +266,13 @@ fn drawing(laid: &Laid) -> Figure {
         Variances::Equal => "SD pooled over all levels",
         Variances::Unequal => "own SD",
     };
-    let which =
-        if degree == laid.asked.degree { "the degree asked for" } else { "the highest that is shown" };
+    let which = match degree {
+        degree if degree + 1 == scores.len() => {
+            "with as many terms as levels, so it passes through every mean"
+        }
+        degree if degree == laid.asked.degree => "the highest degree examined",
+        _ => "the highest degree whose trend is shown",
+    };
     figure::trend(&Trend {
         title: format!("{} over the scores of {}", study.outcome, study.factor),
         x_axis: format!("Score of {}", study.factor),
