@@ -46,7 +46,8 @@ async function begin() {
 
   function save() {
     flush();
-    if (store.get().engine !== 'ready') saveNotebook(store.get().fileName, session.keptText());
+    // While a fresh engine is starting the save waits for it, behind what was typed meanwhile.
+    if (store.get().engine === 'stopped') saveNotebook(store.get().fileName, session.keptText());
     else session.send({ type: 'save' });
   }
   const openExample = (/** @type {string} */ name) => {
