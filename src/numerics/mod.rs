@@ -1,9 +1,10 @@
-//! Pure numbers: exact decimals, sums, distributions, quadrature, roots. Nothing here knows a level, a
+//! Pure numbers: exact decimals, sums, distributions, quadrature, roots, random streams. Nothing here knows a level, a
 //! study or a cell. Elementary functions come from `libm` by name, so that every target gives the same bits.
 
 pub mod decimal;
 pub mod distributions;
 pub mod quadrature;
+pub mod random;
 pub mod roots;
 pub mod special;
 pub mod sums;

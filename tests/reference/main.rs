@@ -20,6 +20,7 @@ mod one_way;
 mod open_data;
 mod profile;
 mod properties;
+mod random;
 mod rank_counts;
 mod remembered;
 mod shapiro_wilk;
