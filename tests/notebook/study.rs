@@ -243,10 +243,8 @@ levels = ["c", "zz"] # ! levels: no group is called "zz"; there are "a", "b" and
     );
 }
 
-#[test]
-fn asks_that_cannot_be_are_named_where_they_stand() {
-    check(
-        r#"levelwise = 1
+/// Every ask that a study refuses, with its diagnostic beside it.
+const REFUSED: &str = r#"levelwise = 1
 [[cell]]
 kind = "data"
 name = "trial"
@@ -336,8 +334,11 @@ groups = "training"
 levels = ["none", "15 min"]
 alpha = 5 # ! a number between 0 and 1 is needed
 variances = "equl" # ! Did you mean "equal"?
-"#,
-    );
+"#;
+
+#[test]
+fn asks_that_cannot_be_are_named_where_they_stand() {
+    check(REFUSED);
 }
 
 #[test]
