@@ -1,10 +1,11 @@
-//! Reads the tables in `data/values` and measures agreement.
+//! Reads the tables in `data` and measures agreement.
 
 use serde_json::Value;
 
-/// The cases of `data/values/NAME.json`.
+/// The cases of `data/values/NAME.json`, or of `data/FOLDER/NAME.json` if `name` is `FOLDER/NAME`.
 pub fn cases(name: &str) -> Vec<Value> {
-    let path = format!("{}/tests/reference/data/values/{name}.json", env!("CARGO_MANIFEST_DIR"));
+    let folder = if name.contains('/') { "" } else { "values/" };
+    let path = format!("{}/tests/reference/data/{folder}{name}.json", env!("CARGO_MANIFEST_DIR"));
     let text = std::fs::read_to_string(&path).unwrap_or_else(|error| panic!("{path}: {error}"));
     let file: Value = serde_json::from_str(&text).unwrap_or_else(|error| panic!("{path}: {error}"));
     file["cases"].as_array().cloned().unwrap_or_else(|| panic!("{path} has no list of cases"))

@@ -22,6 +22,7 @@ mod profile;
 mod properties;
 mod random;
 mod rank_counts;
+mod rank_properties;
 mod remembered;
 mod shapiro_wilk;
 mod studentized_range;

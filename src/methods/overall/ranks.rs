@@ -2,8 +2,7 @@
 
 use super::{NoOverallTest, check_levels};
 use crate::methods::effect_size::rank_epsilon_squared;
-use crate::numerics::distributions::{chi_squared, rank_counts};
-use crate::numerics::sums::sum;
+use crate::numerics::distributions::rank_counts::{self, large_samples, large_samples::ChiSquaredTail};
 use crate::study::Sample;
 use serde::Serialize;
 
@@ -47,22 +46,16 @@ impl KruskalWallis {
     /// Kruskal and Wallis (1952), J. Amer. Statist. Assoc. 47, 583–621, doi 10.1080/01621459.1952.10483441.
     pub fn of(labels: &[String], sample: &Sample) -> Result<Self, NoOverallTest> {
         check_levels(labels, sample.groups.iter().map(Vec::len))?;
-        let (ranks, tied) = midranks(&sample.groups);
-        let n = ranks.iter().map(Vec::len).sum::<usize>() as f64;
-        let tie_correction = 1.0 - tied / (n * n * n - n);
-        if tied == n * n * n - n {
+        let (ranks, ties) = midranks(&sample.groups);
+        if ties.len() == 1 {
             return Err(NoOverallTest::AllTied);
         }
         let mean_ranks: Vec<f64> =
             ranks.iter().map(|ranks| ranks.iter().sum::<f64>() / ranks.len() as f64).collect();
-        let spread = sum(mean_ranks.iter().zip(&ranks).map(|(mean, ranks)| {
-            let deviation = mean - (n + 1.0) / 2.0;
-            ranks.len() as f64 * deviation * deviation
-        }));
-        let h = 12.0 / (n * (n + 1.0)) * spread / tie_correction;
-        let df = labels.len() as f64 - 1.0;
-        let epsilon_squared = rank_epsilon_squared(h, n as usize);
-        let p_chi_squared = chi_squared::sf(h, df)?;
+        let sizes: Vec<usize> = ranks.iter().map(Vec::len).collect();
+        let ChiSquaredTail { h, tie_correction, df, upper: p_chi_squared } =
+            large_samples::kruskal_wallis(&mean_ranks, &sizes, &ties)?;
+        let epsilon_squared = rank_epsilon_squared(h, sizes.iter().sum());
         let counted = exact_p(&ranks);
         Ok(Self {
             h,
@@ -90,24 +83,23 @@ fn exact_p(ranks: &[Vec<f64>]) -> Option<f64> {
     rank_counts::kruskal_wallis(&doubled.concat(), &sizes, &sums).ok()
 }
 
-/// Ranks of all values together, in the shape of `groups`, tied values sharing their mean rank; and Σ(t³ - t)
-/// over the sets of t tied values.
-pub fn midranks(groups: &[Vec<f64>]) -> (Vec<Vec<f64>>, f64) {
+/// Ranks of all values together, in the shape of `groups`, tied values sharing their mean rank; and how many values share
+/// each distinct value, in ascending order.
+pub fn midranks(groups: &[Vec<f64>]) -> (Vec<Vec<f64>>, Vec<usize>) {
     let mut order: Vec<(f64, usize, usize)> = Vec::new();
     for (level, values) in groups.iter().enumerate() {
         order.extend(values.iter().enumerate().map(|(place, value)| (*value, level, place)));
     }
     order.sort_by(|one, other| one.0.total_cmp(&other.0));
     let mut ranks: Vec<Vec<f64>> = groups.iter().map(|values| vec![0.0; values.len()]).collect();
-    let (mut tied, mut before) = (0.0, 0);
+    let (mut ties, mut before) = (Vec::new(), 0);
     // The == of numbers decides a tie, so that 0 and -0 share their rank.
     for run in order.chunk_by(|one, other| one.0 == other.0) {
-        let size = run.len() as f64;
-        tied += size * size * size - size;
         for &(_, level, place) in run {
-            ranks[level][place] = before as f64 + (size + 1.0) / 2.0;
+            ranks[level][place] = before as f64 + (run.len() as f64 + 1.0) / 2.0;
         }
+        ties.push(run.len());
         before += run.len();
     }
-    (ranks, tied)
+    (ranks, ties)
 }
