@@ -1,7 +1,7 @@
 //! The largest of correlated t statistics against values by other methods.
 //!
 //! Source: `data/values/multivariate_t_general_*.json`, cutting the polytope or nested quadrature, digits stated per case.
-//! Up to rank 2 the answer is exact; beyond, it must lie within five of its own standard errors.
+//! Up to rank 3 the answer is exact; beyond, it must lie within five of its own standard errors.
 
 use crate::accuracy::permitted;
 use crate::cases::{cases, number, relative_error};
@@ -25,7 +25,7 @@ fn correlation(case: &Value) -> Vec<Vec<f64>> {
 
 #[test]
 fn tails_for_general_correlations_agree_with_the_reference_values() {
-    let effort = Effort { relative_error: 1e-3, most_directions: 1024, seed: 7 };
+    let effort = Effort { relative_error: 1e-3, most_points: 1024, seed: 7 };
     let (mut exact, mut within) = (0.0_f64, 0.0_f64);
     for case in cases("multivariate_t_general_sf") {
         let expected = number(&case["value"]);
@@ -34,7 +34,7 @@ fn tails_for_general_correlations_agree_with_the_reference_values() {
             multivariate_t::sf(number(&case["c"]), &correlation(&case), df, Sides::Both, effort).unwrap();
         let error = relative_error(got.value, expected);
         if got.error == 0.0 {
-            assert!(error < permitted("multivariate t, rank 2"), "{case}: {} {error:e}", got.value);
+            assert!(error < permitted("multivariate t, rank 2 and 3"), "{case}: {} {error:e}", got.value);
             exact = exact.max(error);
         } else {
             assert!((got.value - expected).abs() < 5.0 * got.error, "{case}: {got:?}");
@@ -43,13 +43,13 @@ fn tails_for_general_correlations_agree_with_the_reference_values() {
         }
     }
     println!(
-        "multivariate_t_general_sf: worst relative error {exact:.1e} (rank 2), {within:.1e} (lattice of 1024)"
+        "multivariate_t_general_sf: worst relative error {exact:.1e} (rank 2 and 3), {within:.1e} (lattice of 1024)"
     );
 }
 
 #[test]
 fn quantiles_for_general_correlations_agree_with_the_reference_values() {
-    let effort = Effort { relative_error: 1e-2, most_directions: 256, seed: 7 };
+    let effort = Effort { relative_error: 1e-2, most_points: 256, seed: 7 };
     for case in cases("multivariate_t_general_quantile") {
         let (p, df) = (number(&case["upper_p"]), number(&case["df"]));
         let got = multivariate_t::upper_quantile(p, &correlation(&case), df, Sides::Both, effort).unwrap();
