@@ -3,6 +3,7 @@
 
 mod accuracy;
 mod adjustments;
+mod amalgamated_means;
 mod anova_power;
 mod cases;
 mod central;
@@ -18,6 +19,7 @@ mod noncentral_f;
 mod noncentral_t;
 mod one_way;
 mod open_data;
+mod permutation;
 mod profile;
 mod properties;
 mod random;

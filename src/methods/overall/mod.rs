@@ -2,10 +2,12 @@
 //! gate for the comparisons, and nothing here chooses between them.
 
 mod anova;
+mod permutation;
 mod ranks;
 mod welch;
 
 pub use anova::AnovaTable;
+pub use permutation::{MOST_ASSIGNMENTS, PermutationF};
 pub use ranks::{KruskalWallis, midranks};
 pub use welch::WelchTest;
 

@@ -5,6 +5,7 @@
 //! Tails are computed as tails, never as 1 minus the other side. Every function answers for every f64 that its
 //! documentation allows, and names the argument otherwise.
 
+pub mod amalgamated_means;
 pub mod beta;
 pub mod chi_squared;
 pub mod continuous;
