@@ -11,6 +11,7 @@ mod comparisons;
 mod continuous;
 mod contrasts;
 mod effect_size;
+mod handbook;
 mod invariances;
 mod many_to_one;
 mod multivariate_t;
