@@ -16,7 +16,7 @@ fn sizes(case: &Value) -> Vec<f64> {
 }
 
 #[test]
-fn tails_and_quantiles_of_williamss_statistic_agree_with_the_reference_values() {
+pub fn tails_and_quantiles_of_williamss_statistic_agree_with_the_reference_values() {
     agree("williams_sf", "amalgamated means, tail", |case| {
         amalgamated_means::sf(number(&case["t"]), &sizes(case), 1.0, number(&case["df"])).unwrap()
     });

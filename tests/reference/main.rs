@@ -2,6 +2,7 @@
 //! source; `data/` holds the longer tables with theirs.
 
 mod accuracy;
+mod accuracy_page;
 mod adjustments;
 mod amalgamated_means;
 mod anova_power;

@@ -15,7 +15,7 @@ fn loadings(case: &Value) -> Vec<f64> {
 }
 
 #[test]
-fn tails_and_quantiles_for_comparisons_with_a_control_agree_with_the_reference_values() {
+pub fn tails_and_quantiles_for_comparisons_with_a_control_agree_with_the_reference_values() {
     for (name, sides) in [("one", Sides::Greater), ("two", Sides::Both)] {
         agree(&format!("dunnett_{name}_sided_sf"), "many to one, tail", |case| {
             many_to_one::sf(number(&case["d"]), &loadings(case), number(&case["df"]), sides).unwrap()
@@ -28,7 +28,7 @@ fn tails_and_quantiles_for_comparisons_with_a_control_agree_with_the_reference_v
 }
 
 #[test]
-fn the_studentized_maximum_modulus_agrees_with_the_reference_values() {
+pub fn the_studentized_maximum_modulus_agrees_with_the_reference_values() {
     let count = |case: &Value| case["k"].as_u64().unwrap() as usize;
     agree("max_modulus_sf", "studentized maximum, tail", |case| {
         studentized_maximum::sf(number(&case["m"]), count(case), number(&case["df"])).unwrap()

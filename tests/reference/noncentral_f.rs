@@ -15,7 +15,7 @@ fn parameters(case: &Value) -> (f64, f64, f64, f64) {
 }
 
 #[test]
-fn both_tails_of_the_noncentral_f_agree_with_the_reference_values() {
+pub fn both_tails_of_the_noncentral_f_agree_with_the_reference_values() {
     agree("noncentral_f_cdf", "noncentral F, tail", |case| {
         let (f, df1, df2, ncp) = parameters(case);
         noncentral_f::cdf(f, df1, df2, ncp).unwrap()
@@ -27,7 +27,7 @@ fn both_tails_of_the_noncentral_f_agree_with_the_reference_values() {
 }
 
 #[test]
-fn limits_of_the_noncentrality_of_f_agree_with_the_reference_values() {
+pub fn limits_of_the_noncentrality_of_f_agree_with_the_reference_values() {
     agree("ncp_limits_f", "noncentral F, noncentrality", |case| {
         let a = 0.5 * (1.0 - number(&case["level"]));
         let p = if case["side"] == "lower" { 1.0 - a } else { a };

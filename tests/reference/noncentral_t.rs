@@ -7,7 +7,7 @@ use crate::cases::{number, relative_error};
 use levelwise::numerics::distributions::{noncentral_t, student_t};
 
 #[test]
-fn both_tails_of_the_noncentral_t_agree_with_the_reference_values() {
+pub fn both_tails_of_the_noncentral_t_agree_with_the_reference_values() {
     agree("noncentral_t_cdf", "noncentral t, tail", |case| {
         noncentral_t::cdf(number(&case["t"]), number(&case["df"]), number(&case["delta"])).unwrap()
     });
@@ -17,7 +17,7 @@ fn both_tails_of_the_noncentral_t_agree_with_the_reference_values() {
 }
 
 #[test]
-fn limits_of_the_noncentrality_of_t_agree_with_the_reference_values() {
+pub fn limits_of_the_noncentrality_of_t_agree_with_the_reference_values() {
     agree("ncp_limits_t", "noncentral t, noncentrality", |case| {
         let a = 0.5 * (1.0 - number(&case["level"]));
         let p = if case["side"] == "lower" { 1.0 - a } else { a };

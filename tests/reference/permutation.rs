@@ -21,7 +21,7 @@ fn groups(case: &Value) -> Vec<Vec<f64>> {
 }
 
 #[test]
-fn shares_of_assignments_agree_with_full_enumeration() {
+pub fn shares_of_assignments_agree_with_full_enumeration() {
     agree("permutation_f_exact", "permutation F", |case| test(groups(case)).p);
     for case in cases("permutation_f_exact") {
         assert_eq!(test(groups(&case)).assignments, case["assignments"].as_u64().unwrap(), "{case}");

@@ -22,7 +22,7 @@ fn sizes(case: &Value) -> Vec<usize> {
 }
 
 #[test]
-fn both_tails_of_jonckheeres_statistic_agree_with_the_exact_counts() {
+pub fn both_tails_of_jonckheeres_statistic_agree_with_the_exact_counts() {
     agree("jonckheere_exact", "rank counts", |case| {
         rank_counts::jonckheere(number(&case["J"]), &sizes(case)).unwrap().upper
     });
@@ -39,7 +39,7 @@ fn both_tails_of_jonckheeres_statistic_agree_with_the_exact_counts() {
 }
 
 #[test]
-fn the_upper_tail_of_kruskal_and_walliss_statistic_agrees_with_the_exact_counts() {
+pub fn the_upper_tail_of_kruskal_and_walliss_statistic_agrees_with_the_exact_counts() {
     agree("kruskal_exact", "rank counts", |case| {
         let sizes = sizes(case);
         let total = sizes.iter().sum::<usize>() as u32;
@@ -128,7 +128,7 @@ fn tails_agree(file: &str, tails: impl Fn(&Value) -> InclusiveTails) {
 }
 
 #[test]
-fn tails_of_rank_sums_with_ties_agree_with_the_exact_counts() {
+pub fn tails_of_rank_sums_with_ties_agree_with_the_exact_counts() {
     let number_of = |case: &Value, field: &str| case[field].as_u64().unwrap() as usize;
     tails_agree("counts/rank_sum", |case| {
         let (first, second) = (number_of(case, "first"), number_of(case, "second"));
@@ -148,7 +148,7 @@ fn tails_of_rank_sums_with_ties_agree_with_the_exact_counts() {
 }
 
 #[test]
-fn tails_of_jonckheeres_statistic_with_ties_agree_with_every_assignment() {
+pub fn tails_of_jonckheeres_statistic_with_ties_agree_with_every_assignment() {
     tails_agree("counts/jonckheere_ties", |case| {
         rank_counts::jonckheere_with_ties(number(&case["J"]), &sizes(case), &counts(&case["ties"])).unwrap()
     });
@@ -167,7 +167,7 @@ fn approximations_agree(file: &str, rough: impl Fn(&Value, Continuity) -> large_
 }
 
 #[test]
-fn the_kruskal_wallis_test_of_tied_samples_agrees_with_every_assignment() {
+pub fn the_kruskal_wallis_test_of_tied_samples_agrees_with_every_assignment() {
     let test = |case: &Value| {
         let groups: Vec<Vec<f64>> = case["data"].as_array().unwrap().iter().map(numbers).collect();
         let labels: Vec<String> = (0..groups.len()).map(|level| format!("level {level}")).collect();

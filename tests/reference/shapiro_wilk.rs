@@ -3,19 +3,20 @@
 //! Sources: `data/values/shapiro_wilk.json`, another implementation of algorithm AS R94 (a second opinion, to be
 //! compared to about 1e-6); Shapiro and Wilk (1965), Biometrika 52, 591–611, whose example has W = 0.79.
 
-use crate::cases::{cases, number};
+use crate::accuracy::{agree, agree_on};
+use crate::cases::number;
 use crate::one_way::agrees;
 use levelwise::methods::profile::{NoCheck, shapiro_wilk};
+use serde_json::Value;
 
 #[test]
-fn w_and_p_follow_the_published_algorithm() {
-    for case in cases("shapiro_wilk") {
+pub fn w_and_p_follow_the_published_algorithm() {
+    let test = |case: &Value| {
         let data: Vec<f64> = case["data"].as_array().expect("data").iter().map(number).collect();
-        let test = shapiro_wilk(&data).expect("W");
-        let what = format!("{} of {}", case["kind"], data.len());
-        agrees(test.w, number(&case["W"]), 1e-6, &what);
-        agrees(test.p, number(&case["value"]), 1e-5, &what);
-    }
+        shapiro_wilk(&data).expect("W")
+    };
+    agree_on("shapiro_wilk", "W", "Shapiro-Wilk, W", |case| Some(test(case).w));
+    agree("shapiro_wilk", "Shapiro-Wilk, p", |case| test(case).p);
 }
 
 #[test]

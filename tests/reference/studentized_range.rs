@@ -12,7 +12,7 @@ fn groups(case: &Value) -> usize {
 }
 
 #[test]
-fn both_tails_of_the_studentized_range_agree_with_the_reference_values() {
+pub fn both_tails_of_the_studentized_range_agree_with_the_reference_values() {
     agree("studentized_range_sf", "studentized range, tail", |case| {
         studentized_range::sf(number(&case["q"]), groups(case), number(&case["df"])).unwrap()
     });
@@ -22,7 +22,7 @@ fn both_tails_of_the_studentized_range_agree_with_the_reference_values() {
 }
 
 #[test]
-fn quantiles_of_the_studentized_range_agree_with_the_reference_values() {
+pub fn quantiles_of_the_studentized_range_agree_with_the_reference_values() {
     agree("studentized_range_quantile", "studentized range, quantile", |case| {
         let p = number(&case["upper_p"]);
         studentized_range::upper_quantile(p, groups(case), number(&case["df"])).unwrap()
