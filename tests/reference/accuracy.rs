@@ -84,6 +84,7 @@ const PERMITTED: &[(&str, f64)] = &[
     ("central, p above 1e-20", 1e-13),
     ("central, p down to 1e-300", 1e-12),
     ("central, round trip of a quantile", 1e-12),
+    ("central, a shape near 0", 1e-12),
     ("studentized range, tail", 1e-13),
     ("studentized range, quantile", 1e-13),
     ("many to one, tail", 1e-13),

@@ -57,6 +57,25 @@ fn normal_tails_agree_with_fifty_digit_arithmetic() {
     }
 }
 
+/// Shapes near 0 put nearly all of a beta distribution beside one end. Source: mpmath 1.4.1 with 40 digits,
+/// `1 - betainc(b, a, 0, 1 - x, regularized=True)`, x and the shapes being the doubles written here.
+#[test]
+fn lower_tails_of_beta_and_f_with_a_shape_near_zero_agree_with_forty_digit_arithmetic() {
+    for (a, b, x, expected) in [
+        (3.2, 0.01, 0.996_093_75, 0.039_056_604_753_829_155),
+        (3.0, 0.02, 0.99, 0.060_813_955_423_585_413),
+        (50.0, 0.001, 0.9999, 0.004_725_635_129_707_298),
+        (0.1, 0.001, 0.99, 0.014_290_026_397_182_007),
+        (12.0, 0.001, 0.9999, 0.006_173_207_245_024_341),
+        (0.5, 0.001, 0.75, 0.002_628_952_444_221_206),
+    ] {
+        let error = relative_error(beta::cdf(x, a, b).unwrap(), expected);
+        assert!(error < permitted("central, a shape near 0"), "beta({a}, {b}) at {x}: {error:e}");
+    }
+    let f = fisher_f::cdf(1.0, 3.0, 0.01).unwrap();
+    assert!(relative_error(f, 0.025_162_155_252_394_484) < permitted("central, a shape near 0"), "{f}");
+}
+
 #[test]
 fn quantiles_go_back_to_their_probability_in_both_tails() {
     let tails = [1e-300, 1e-100, 1e-20, 1e-9, 1e-3, 0.05, 0.2, 0.3, 0.5, 0.8];

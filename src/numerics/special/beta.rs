@@ -34,12 +34,25 @@ pub fn incomplete_beta(a: f64, b: f64, x: f64, y: f64) -> Tails {
     }
     let slope = libm::exp(log_beta_density(a, b, x, y));
     if a * y >= b * x {
-        let lower = (slope * lower_beta_over_density(a, b, x, y)).min(1.0);
+        let lower = smaller_side(a, b, x, y, slope);
         Tails { lower, upper: 1.0 - lower, slope }
     } else {
-        let upper = (slope * lower_beta_over_density(b, a, y, x)).min(1.0);
+        let upper = smaller_side(b, a, y, x, slope);
         Tails { lower: 1.0 - upper, upper, slope }
     }
+}
+
+/// I(x; a, b) for x at most a/(a+b), given xᵃ yᵇ / B(a, b).
+fn smaller_side(a: f64, b: f64, x: f64, y: f64, density: f64) -> f64 {
+    // With b near 0 nearly all lies beside y = 0, and the integral would cross a long flat stretch before it falls.
+    // The other side is a short series, and what it leaves of 1 keeps 12 digits.
+    if b < 0.5 && y < 0.125 && a * y < 16.0 {
+        let left = 1.0 - density * lower_beta_over_density(b, a, y, x);
+        if left > 1e-3 {
+            return left;
+        }
+    }
+    (density * lower_beta_over_density(a, b, x, y)).min(1.0)
 }
 
 /// The logarithm of (x/y)/(a/b) at which the given tail has probability `p`, for 0 < p < 1.
@@ -99,13 +112,18 @@ pub fn lower_beta_over_density(a: f64, b: f64, x: f64, y: f64) -> f64 {
         }
     }
     let (n, slope) = (a + b, a * y - b * x);
-    // Towards x = 0 by h in logit: the logarithm of the density falls by this much. Two forms, so that neither
-    // x nor y near 1 makes its terms cancel.
+    // Towards x = 0 by h in logit: the logarithm of the density falls by this much, n times log(x + y eʰ) - y h and the
+    // slope. Several forms, so that neither x nor y near 1 makes its terms cancel and none overflows.
     let energy = |h: f64| {
+        let growth = y * libm::expm1(h);
         let rest = if x <= 0.5 {
             log_minus_linear(x * libm::expm1(-h)) + x * exp_minus_linear(-h)
+        } else if growth <= 1.0 {
+            log_minus_linear(growth) + y * exp_minus_linear(h)
+        } else if growth.is_finite() {
+            libm::log1p(growth) - y * h
         } else {
-            log_minus_linear(y * libm::expm1(h)) + y * exp_minus_linear(h)
+            x * h + libm::log(y + x * libm::exp(-h))
         };
         slope * h + n * rest
     };
