@@ -1,5 +1,7 @@
-//! Measures the built page in a browser: `cargo pack bench`. The measuring itself is `tests/benches/page.mjs`.
+//! Measures in a browser: `cargo pack bench`. The measuring itself is in `tests/benches`: `page.mjs` for the built page,
+//! `numbers.mjs` for the numerics beside SciPy.
 
+use crate::engine::{self, NUMBERS};
 use crate::page::{self, Finish};
 use crate::project::{Project, run};
 use crate::toolchain;
@@ -7,13 +9,28 @@ use anyhow::Result;
 use std::process::Command;
 
 /// Builds the page, prints its sizes and a table of times.
-pub fn run_all(project: &Project) -> Result<bool> {
+pub fn page(project: &Project) -> Result<bool> {
     page::build(project, Finish::Release)?.print_sizes();
     println!();
-    run(Command::new("node")
-        .current_dir(&project.root)
-        .arg("tests/benches/page.mjs")
-        .env("LEVELWISE_HTML", project.html())
-        .env("CHROMIUM", toolchain::browser()?))?;
+    run(script(project, "page.mjs")?.env("LEVELWISE_HTML", project.html()))?;
     Ok(true)
+}
+
+/// Builds the module of `tests/numbers` and prints its times beside SciPy's, which is installed for this alone.
+pub fn numbers(project: &Project) -> Result<bool> {
+    toolchain::page_libraries(project)?;
+    engine::build(project, &engine::metadata(project)?, NUMBERS, Finish::Release)?;
+    let mut command = script(project, "numbers.mjs")?;
+    if let Some(python) = toolchain::scipy(project) {
+        command.env("LEVELWISE_SCIPY", python);
+    }
+    run(command.envs(NUMBERS.variables(project)))?;
+    Ok(true)
+}
+
+fn script(project: &Project, name: &str) -> Result<Command> {
+    let mut command = Command::new("node");
+    command.current_dir(&project.root).arg(format!("tests/benches/{name}"));
+    command.env("CHROMIUM", toolchain::browser()?);
+    Ok(command)
 }

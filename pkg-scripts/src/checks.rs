@@ -3,6 +3,7 @@
 //! A stage that fails does not keep the later ones from running. The last line counts what passed and what failed;
 //! a stage without a count of its own (formatting, lints, types, the build) counts as one.
 
+use crate::engine::{self, NUMBERS};
 use crate::page::{self, Finish};
 use crate::project::{Project, files_under};
 use crate::toolchain::{self, cargo};
@@ -54,6 +55,10 @@ pub fn run_all(project: &Project) -> Result<bool> {
         page::build(project, Finish::Release)?.print_sizes();
         Ok(Count { passed: 1, failed: 0 })
     });
+    stage("the numbers' module", &|| {
+        engine::build(project, &engine::metadata(project)?, NUMBERS, Finish::Release)?;
+        Ok(Count { passed: 1, failed: 0 })
+    });
     stage("the page in a browser", &|| node_tests(project, "tests/web"));
     println!("\n{}", times.join("\n"));
     println!("{:>8.1} s  in all\n", start.elapsed().as_secs_f64());
@@ -100,6 +105,8 @@ fn node_tests(project: &Project, folder: &str) -> Result<Count> {
     command.env("LEVELWISE_PROGRAM", project.target.join("debug/levelwise"));
     if folder == "tests/web" {
         command.env("CHROMIUM", toolchain::browser()?);
+        command.envs(NUMBERS.variables(project));
+        command.env("LEVELWISE_NUMBERS_PROGRAM", project.target.join("debug/levelwise-numbers"));
     }
     counted(&mut command)
 }

@@ -1,4 +1,7 @@
-//! From the crate to the engine's module: compile for WebAssembly, bind to JavaScript, optimise.
+//! From a crate to its module: compile for WebAssembly, bind to JavaScript, optimise.
+//!
+//! The engine and the module of `tests/numbers`, which compares its numbers with the native ones, go the same way, so that
+//! what is compared is built like what is handed out.
 //!
 //! The binding step is a library call, so its version is the one in Cargo.lock and cannot drift apart from the
 //! crate's. Compiled code carries the names of source files in its panic messages; they are rewritten so that the
@@ -14,23 +17,57 @@ use std::path::PathBuf;
 use std::process::Command;
 use wasm_bindgen_cli_support::Bindgen;
 
-/// The engine as the page carries it.
-pub struct Engine {
+/// A crate of the workspace that becomes a module.
+#[derive(Clone, Copy)]
+pub struct Source {
+    package: &'static str,
+    /// What its files among those kept are called.
+    name: &'static str,
+}
+
+/// What the page carries.
+pub const ENGINE: Source = Source { package: "levelwise", name: "engine" };
+/// The table of points and the timed jobs of `tests/numbers`.
+pub const NUMBERS: Source = Source { package: "levelwise-numbers", name: "numbers" };
+
+/// A module and what stands between it and JavaScript.
+pub struct Module {
     pub wasm: Vec<u8>,
-    /// The JavaScript that stands between the worker and the module; defines the global `wasm_bindgen`.
+    /// Defines the global `wasm_bindgen`, through which the module is started and called.
     pub glue: String,
 }
 
-/// The engine, built as far as its sources have changed. `metadata` is Cargo's description of the project.
-pub fn build(project: &Project, metadata: &Value, finish: Finish) -> Result<Engine> {
-    let compiled = compile(project, metadata, finish)?;
+impl Source {
+    /// Where a script finds the optimised module and its JavaScript, as variables of its environment.
+    pub fn variables(self, project: &Project) -> [(String, PathBuf); 2] {
+        let name = self.name.to_uppercase();
+        [
+            (format!("LEVELWISE_{name}_WASM"), self.wasm(project)),
+            (format!("LEVELWISE_{name}_GLUE"), self.glue(project, Finish::Release)),
+        ]
+    }
+
+    /// Where the optimised module is kept.
+    fn wasm(self, project: &Project) -> PathBuf {
+        project.kept(&format!("{}.wasm", self.name))
+    }
+
+    /// Where the JavaScript beside it is kept.
+    pub fn glue(self, project: &Project, finish: Finish) -> PathBuf {
+        project.kept(&format!("{}-glue-{}.js", self.name, finish.name()))
+    }
+}
+
+/// The module, built as far as its sources have changed. `metadata` is Cargo's description of the project.
+pub fn build(project: &Project, metadata: &Value, source: Source, finish: Finish) -> Result<Module> {
+    let compiled = compile(project, metadata, source, finish)?;
     let raw = read(&compiled)?;
-    let kind = finish.name();
-    let bound = project.kept(&format!("bound-{kind}.wasm"));
-    let glue = project.kept(&format!("glue-{kind}.js"));
-    project.step(&format!("bind-{kind}"), &[&raw], &[bound.clone(), glue.clone()], || {
+    let kind = format!("{}-{}", source.name, finish.name());
+    let bound = project.kept(&format!("{kind}-bound.wasm"));
+    let glue = source.glue(project, finish);
+    project.step(&format!("{kind}-bind"), &[&raw], &[bound.clone(), glue.clone()], || {
         let mut output = Bindgen::new()
-            .input_bytes("levelwise", raw.clone())
+            .input_bytes(source.name, raw.clone())
             .no_modules(true)?
             .typescript(false)
             .omit_default_module_path(true)
@@ -41,12 +78,12 @@ pub fn build(project: &Project, metadata: &Value, finish: Finish) -> Result<Engi
     })?;
     let wasm = match finish {
         Finish::Fast => read(&bound)?,
-        Finish::Release => read(&optimise(project, &bound)?)?,
+        Finish::Release => read(&optimise(project, source, &bound)?)?,
     };
-    Ok(Engine { wasm, glue: read_text(&glue)? })
+    Ok(Module { wasm, glue: read_text(&glue)? })
 }
 
-fn compile(project: &Project, metadata: &Value, finish: Finish) -> Result<PathBuf> {
+fn compile(project: &Project, metadata: &Value, source: Source, finish: Finish) -> Result<PathBuf> {
     let toolchain = Wasm::find(project)?;
     let mut command = toolchain.cargo_build(project, &remapped_paths(project, metadata)?)?;
     if finish == Finish::Fast {
@@ -56,23 +93,29 @@ fn compile(project: &Project, metadata: &Value, finish: Finish) -> Result<PathBu
         command.env("CARGO_PROFILE_RELEASE_CODEGEN_UNITS", "16");
         command.env("CARGO_PROFILE_RELEASE_INCREMENTAL", "true");
     }
-    run(command.args(["--release", "--package", "levelwise", "--lib"]))?;
-    Ok(project.target.join("web/wasm32-unknown-unknown/release/levelwise.wasm"))
+    run(command.args(["--release", "--package", source.package, "--lib"]))?;
+    let file = format!("{}.wasm", source.package.replace('-', "_"));
+    Ok(project.target.join("web/wasm32-unknown-unknown/release").join(file))
 }
 
-fn optimise(project: &Project, bound: &PathBuf) -> Result<PathBuf> {
-    let optimised = project.kept("engine.wasm");
-    project.step("optimise", &[&read(bound)?], std::slice::from_ref(&optimised), || {
-        run(Command::new("node")
-            .current_dir(project.www())
-            .args(["node_modules/binaryen/bin/wasm-opt", "-O3", "--strip-debug", "--strip-producers"])
-            // What the compiler's baseline has had since 2024; every browser that runs the page has them all.
-            .args(["--enable-bulk-memory", "--enable-multivalue", "--enable-mutable-globals"])
-            .args(["--enable-nontrapping-float-to-int", "--enable-reference-types", "--enable-sign-ext"])
-            .arg("-o")
-            .arg(&optimised)
-            .arg(bound))
-    })?;
+fn optimise(project: &Project, source: Source, bound: &PathBuf) -> Result<PathBuf> {
+    let optimised = source.wasm(project);
+    project.step(
+        &format!("{}-optimise", source.name),
+        &[&read(bound)?],
+        std::slice::from_ref(&optimised),
+        || {
+            run(Command::new("node")
+                .current_dir(project.www())
+                .args(["node_modules/binaryen/bin/wasm-opt", "-O3", "--strip-debug", "--strip-producers"])
+                // What the compiler's baseline has had since 2024; every browser that runs the page has them all.
+                .args(["--enable-bulk-memory", "--enable-multivalue", "--enable-mutable-globals"])
+                .args(["--enable-nontrapping-float-to-int", "--enable-reference-types", "--enable-sign-ext"])
+                .arg("-o")
+                .arg(&optimised)
+                .arg(bound))
+        },
+    )?;
     Ok(optimised)
 }
 

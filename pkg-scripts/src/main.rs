@@ -22,7 +22,9 @@ const USAGE: &str = "cargo pack COMMAND
   build [--fast]     write dist/levelwise.html, the one self-contained file
                      (--fast: not optimised and not minified, for trying things out)
   test               run every check there is
-  bench              measure the built page: speed and sizes";
+  bench              measure in a browser: the built page's speed and sizes, and the numerics beside SciPy
+  bench page         the first of the two alone
+  bench numbers      the second of the two alone";
 
 fn main() -> ExitCode {
     let arguments: Vec<String> = std::env::args().skip(1).collect();
@@ -49,7 +51,9 @@ fn carry_out(arguments: &[String]) -> Result<bool> {
             Err(_) => bail!("\"{port}\" is not a port. Give a number from 1 to 65535."),
         },
         ["test"] => checks::run_all(&project),
-        ["bench"] => bench::run_all(&project),
+        ["bench"] => Ok(bench::page(&project)? && bench::numbers(&project)?),
+        ["bench", "page"] => bench::page(&project),
+        ["bench", "numbers"] => bench::numbers(&project),
         [] | ["help" | "--help" | "-h"] => {
             println!("{USAGE}");
             Ok(true)

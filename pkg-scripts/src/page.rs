@@ -4,7 +4,7 @@
 //! are data blocks, which a browser does not execute; only the main script and the style are code, and the
 //! policy names the hash of each, so that a file that was changed on its way does not run at all.
 
-use crate::engine::{self, Engine};
+use crate::engine::{self, ENGINE, Module};
 use crate::project::{Project, contents_of, files_under, read, read_text, run, write};
 use crate::{notices, toolchain};
 use anyhow::{Context, Result, bail, ensure};
@@ -72,7 +72,7 @@ pub fn build(project: &Project, finish: Finish) -> Result<Built> {
     toolchain::page_libraries(project)?;
     timed("the page's libraries are there");
     let metadata = engine::metadata(project)?;
-    let engine = engine::build(project, &metadata, finish)?;
+    let engine = engine::build(project, &metadata, ENGINE, finish)?;
     timed("the engine is built");
     let scripts = bundle(project, &engine, finish)?;
     timed("the scripts are bundled");
@@ -98,11 +98,11 @@ struct Scripts {
     libraries: BTreeSet<String>,
 }
 
-fn bundle(project: &Project, engine: &Engine, finish: Finish) -> Result<Scripts> {
+fn bundle(project: &Project, engine: &Module, finish: Finish) -> Result<Scripts> {
     let kind = finish.name();
     let www = project.www();
     let kept = |name: &str| project.kept(&format!("{name}-{kind}"));
-    let glue_source = project.kept(&format!("glue-{kind}.js"));
+    let glue_source = ENGINE.glue(project, finish);
     let outputs =
         [kept("glue.min.js"), kept("main.js"), kept("main.json"), kept("worker.js"), kept("worker.json")];
     let [glue, main, main_list, worker, worker_list] = &outputs;
@@ -171,7 +171,7 @@ fn title_of(text: &str) -> Option<&str> {
 
 fn assemble(
     project: &Project,
-    engine: &Engine,
+    engine: &Module,
     scripts: &Scripts,
     examples: &[Value],
     notices: &str,

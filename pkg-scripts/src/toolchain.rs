@@ -1,6 +1,7 @@
 //! What has to be on the machine besides Rust itself: a WebAssembly standard library, Node with the page's
 //! libraries, and for the tests a browser. Each is found where it is, else fetched in the gentlest way that the
-//! machine allows, else one sentence says what to install.
+//! machine allows, else one sentence says what to install. For the benchmarks alone there is SciPy; without it they
+//! measure ours.
 
 use crate::project::{Project, printed_by, read, run};
 use anyhow::{Context, Result, bail};
@@ -167,6 +168,37 @@ pub fn page_libraries(project: &Project) -> Result<()> {
     project.step("page-libraries", &[&lock, &manifest], &[www.join("node_modules")], || {
         run(Command::new("npm").current_dir(&www).args(["ci", "--no-audit", "--no-fund", "--loglevel=error"]))
     })
+}
+
+/// What the numerics are measured beside, as a Python installer takes it.
+const SCIPY: [&str; 2] = ["numpy==2.4.6", "scipy==1.17.1"];
+
+/// A Python with SciPy in an environment of its own under the target folder; `None`, and a sentence, where there is none to be had.
+pub fn scipy(project: &Project) -> Option<PathBuf> {
+    let folder = project.kept("scipy");
+    let python = folder.join("bin/python");
+    let wanted = SCIPY.join(" ");
+    let installed = project.step("scipy", &[wanted.as_bytes()], std::slice::from_ref(&python), || {
+        // What an interrupted or an older run left behind is not mixed with the new.
+        let _ = fs::remove_dir_all(&folder);
+        println!("Installing {wanted} for this benchmark alone");
+        run(Command::new("python3").args(["-m", "venv"]).arg(&folder))?;
+        run(Command::new(&python)
+            .args([
+                "-m",
+                "pip",
+                "install",
+                "--quiet",
+                "--disable-pip-version-check",
+                "--only-binary",
+                ":all:",
+            ])
+            .args(SCIPY))
+    });
+    if let Err(error) = &installed {
+        println!("SciPy cannot be installed here, so ours is measured alone: {error:#}");
+    }
+    installed.is_ok().then_some(python)
 }
 
 /// The browser that the tests drive: the one named by `CHROMIUM`, else the one on the machine.
