@@ -10,6 +10,7 @@ use levelwise::methods::effect_size::{
     Coverage, StandardisedBy, StandardisedEffect, Standardiser, WelchEffect, WholeFactor, hedges_correction,
 };
 use levelwise::methods::overall::{AnovaTable, WelchTest};
+use levelwise::numerics::distributions::noncentral_t;
 use levelwise::study::{ContrastEstimate, Estimates, Sample, Summary, Variances};
 
 fn effect(
@@ -36,10 +37,14 @@ fn pairs_of_the_twelve_data_sets_agree() {
             let found = effect(&two.summary(), Variances::Equal, &[1.0, -1.0], coverage);
             let (d, g) = (found.d_interval.expect("an interval"), found.g_interval.expect("an interval"));
             let expected = &pair["effect"];
+            let (t, df) = (number(&expected["t"]), number(&expected["df"]));
+            let noncentrality = |p: f64| noncentral_t::noncentrality(t, df, p).expect("a noncentrality");
             for (computed, key) in [
                 (found.d, "cohen_d"),
                 (found.g, "hedges_g"),
                 (hedges_correction(found.standardiser.df), "hedges_J"),
+                (noncentrality(0.975), "ncp_lower"),
+                (noncentrality(0.025), "ncp_upper"),
                 (d.lower, "d_ci_lower"),
                 (d.upper, "d_ci_upper"),
                 (g.lower, "g_ci_lower"),

@@ -89,6 +89,8 @@ fn twelve_data_sets_agree_in_every_statistic() {
         check(table.ss_within, &expected["ss_within"], "SS within");
         check(table.ms_within, &expected["ms_within"], "MS within");
         check(table.df_between, &expected["df_between"], "df between");
+        check(table.ss_total(), &expected["ss_total"], "SS in all");
+        check(table.n as f64 - 1.0, &expected["df_total"], "df in all");
         check(table.df_within, &expected["df_within"], "df within");
         check(table.f, &expected["F"], "F");
         check(table.p, &expected["p"], "p of F");
@@ -106,6 +108,11 @@ fn twelve_data_sets_agree_in_every_statistic() {
         check(ranks.h, &case["kruskal_wallis"]["H"], "H");
         check(ranks.p_chi_squared, &case["kruskal_wallis"]["p"], "p of H");
         check(ranks.tie_correction, &case["kruskal_wallis"]["tie_correction"], "tie correction");
+        check(ranks.h * ranks.tie_correction, &case["kruskal_wallis"]["H_uncorrected"], "H, ties ignored");
+        let rank_sums = case["kruskal_wallis"]["rank_sums"].as_array().expect("rank sums");
+        for ((mean, group), expected) in ranks.mean_ranks.iter().zip(&sample.groups).zip(rank_sums) {
+            check(mean * group.len() as f64, expected, "rank sum");
+        }
         let effects = WholeFactor::of(&table, 0.9);
         let expected = &case["effect_sizes"];
         check(effects.eta_squared.estimate, &expected["eta2"], "eta squared");

@@ -6,6 +6,7 @@
 
 use crate::accuracy::{agree, agree_on};
 use crate::cases::{cases, number, relative_error};
+use crate::one_way::sample_of;
 use levelwise::methods::overall::{KruskalWallis, midranks};
 use levelwise::numerics::distributions::chi_squared;
 use levelwise::numerics::distributions::rank_counts::large_samples::{self, Continuity};
@@ -181,6 +182,44 @@ pub fn the_kruskal_wallis_test_of_tied_samples_agrees_with_every_assignment() {
 
 fn numbers(list: &Value) -> Vec<f64> {
     list.as_array().unwrap().iter().map(number).collect()
+}
+
+/// Source: `data/values/datasets.json`, statistic and variance in exact rationals, tails in ball arithmetic; 15 digits.
+#[test]
+fn jonckheeres_test_of_the_twelve_data_sets_comes_out() {
+    for case in cases("datasets") {
+        let sample = sample_of(&case);
+        let (_, ties) = midranks(&sample.groups);
+        let sizes: Vec<usize> = sample.groups.iter().map(Vec::len).collect();
+        let j = doubled_j(&sample.groups) as f64 / 2.0;
+        let expected = &case["jonckheere"];
+        assert_eq!(j, number(&expected["JT"]), "{}", case["name"]);
+        let tails = large_samples::jonckheere(j, &sizes, &ties, Continuity::Uncorrected).unwrap();
+        for (computed, field) in [
+            (tails.mean, "mean"),
+            (tails.variance, "variance"),
+            (tails.z, "z"),
+            (tails.two_sided(), "p_two_sided"),
+            (tails.upper, "p_increasing"),
+        ] {
+            assert!(
+                relative_error(computed, number(&expected[field])) < 1e-13,
+                "{} {field}: {computed}",
+                case["name"]
+            );
+        }
+    }
+}
+
+/// Twice the number of pairs from an earlier and a later group in which the later is larger, ties counting ½.
+fn doubled_j(groups: &[Vec<f64>]) -> usize {
+    let mut doubled = 0;
+    for (place, earlier) in groups.iter().enumerate() {
+        for (x, y) in earlier.iter().flat_map(|x| groups[place + 1..].iter().flatten().map(move |y| (x, y))) {
+            doubled += if x < y { 2 } else { usize::from(x == y) };
+        }
+    }
+    doubled
 }
 
 /// Source: Hollander and Wolfe's example of three groups of six (data FROM MEMORY): J = 79, variance 150.286765 with

@@ -56,6 +56,12 @@ fn contrasts_agree_with_exact_rationals_to_thirteen_digits() {
             let monic = rational(value);
             assert!((c / n - monic).abs() <= 1e-13 * size, "{case}: {} {monic}", c / n);
         }
+        // The smallest whole numbers in the same proportions, all of them exact doubles.
+        let whole = numbers(&case["contrast_integers"]);
+        let length = whole.iter().zip(&n).map(|(c, n)| c * c / n).sum::<f64>().sqrt();
+        for (c, whole) in c.iter().zip(&whole) {
+            assert!((c / size - whole / length).abs() < 2e-14, "{case}: {c} {whole}");
+        }
     }
     assert!(all.len() > 50);
 }
