@@ -35,6 +35,9 @@ const TOLERANCE: f64 = 1e-15;
 const MOST_DOSES: usize = 20;
 /// Beyond this w no double holds the tail: Φ(-45) is below 1e-400.
 const FARTHEST: f64 = 45.0;
+/// From here on a tail is its leading power, t^-df, to all digits (the next is smaller by about df²/t²), and squares of t
+/// come near the end of the range of doubles.
+const FAR: f64 = 1e100;
 /// The integral over the control's mean takes steps as short as 1/√(1 + n₁k/n₀); beyond this the walk is cheaper.
 const MOST_DOSED: f64 = 100.0;
 
@@ -170,6 +173,9 @@ impl Doses {
 
     /// P(T > t).
     fn upper(&self, t: f64, df: f64) -> f64 {
+        if t > FAR {
+            return self.upper(FAR, df) * libm::pow(FAR / t, df);
+        }
         // Between the highest dose alone and Bonferroni's bound.
         let log_shape = |s: f64| (libm::log(self.count) + normal::log_lower(-t * s)).min(0.0);
         scale_mixture::mix(df, 12, TOLERANCE, log_shape, |s| self.exceeds(t * s)).value.min(1.0)
@@ -177,6 +183,9 @@ impl Doses {
 
     /// P(T <= t).
     fn lower(&self, t: f64, df: f64) -> f64 {
+        if t < -FAR {
+            return self.lower(-FAR, df) * libm::pow(-FAR / t, df);
+        }
         // Below 0 the mean of all doses decides (all must be low), above 0 the highest dose.
         let scale = if t < 0.0 { t * self.all_against_last } else { t };
         let log_shape = |s: f64| normal::log_lower(scale * s);

@@ -106,6 +106,10 @@ impl Walk {
 
     /// P(T <= w) when σ is known.
     pub(super) fn stays_below(&self, w: f64) -> f64 {
+        if w > 0.0 {
+            // No tail any more, and the walk ends lower than has been prepared.
+            return 1.0 - self.exceeds(w);
+        }
         let Last { total, sd, below } = &self.last;
         below.chance(-total * w * self.unit, *sd)
     }
