@@ -16,6 +16,7 @@ mod handbook;
 mod invariances;
 mod many_to_one;
 mod multivariate_t;
+mod multivariate_t_properties;
 mod nist_strd;
 mod noncentral_f;
 mod noncentral_t;

@@ -140,8 +140,19 @@ fn narrowest(
     best.map(|(_, i, mean)| (i, mean))
 }
 
+/// Below this length an interval's probability is φ at its middle times the length: the next term is below length²/24
+/// (m² + 1), and a difference of two values of Φ would lose digits.
+const SHORT: f64 = 1e-4;
+
 /// The probability of an interval and, unless it is the last, the deviate within it at `share` of its probability.
 fn interval(from: f64, to: f64, share: Option<f64>) -> (f64, f64) {
+    if to - from < SHORT {
+        let middle = 0.5 * (from + to);
+        // The density falls by middle · length across the interval: to first order the share of the length is this.
+        let along = |share: f64| share * (1.0 + 0.5 * middle * (to - from) * (share - 1.0));
+        let within = share.map_or(0.0, |share| from + (to - from) * along(share));
+        return (normal::density(middle) * (to - from), within);
+    }
     // On the side where it loses least.
     let (low, high, sign) = if from > 0.0 { (-to, -from, -1.0) } else { (from, to, 1.0) };
     let start = normal::lower_in_integrals(low);

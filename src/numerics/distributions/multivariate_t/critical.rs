@@ -53,7 +53,9 @@ pub(super) fn solve(family: &Family, lower: f64, upper: f64, effort: Effort) -> 
         0.1,
     ));
     let Some(Answer { value: p, error, points, method }) = last else { return Ok(known(value)) };
-    Ok(Answer { value, error: error / (p * slope), points, method })
+    let error = error / (p * slope);
+    // Where the probability underflows nothing is known of the slope.
+    Ok(Answer { value, error: if error.is_finite() { error } else { value.abs() }, points, method })
 }
 
 /// A limit inside the range of doubles.

@@ -4,8 +4,8 @@ use super::conditioning::Order;
 use super::leader::{Leader, Prepared, Side};
 use super::separation::Separation;
 
-/// Degrees of freedom that the standard error should have: its own relative standard deviation is then 1/7.
-const FREEDOM: f64 = 24.0;
+/// Degrees of freedom that the standard error should have: its own relative standard deviation is then 1/9.
+const FREEDOM: f64 = 40.0;
 /// Most random shifts of one part.
 const MOST_SHIFTS: f64 = 12.0;
 
@@ -98,5 +98,6 @@ pub(super) fn shifts(parts: &[Part]) -> usize {
     let sum: f64 = parts.iter().map(|part| part.importance).sum();
     let squares: f64 = parts.iter().map(|part| part.importance * part.importance).sum();
     let alike = if squares > 0.0 { sum * sum / squares } else { 1.0 };
-    (1.0 + libm::ceil(FREEDOM / alike)).clamp(2.0, MOST_SHIFTS) as usize
+    // Less a little, so that parts that are alike up to rounding always get the same number.
+    (1.0 + libm::ceil(FREEDOM / alike - 1e-6)).clamp(2.0, MOST_SHIFTS) as usize
 }

@@ -1,4 +1,4 @@
-//! Points that fill the unit cube evenly: a lattice in every number 2⁵ to 2¹⁴ of them, shifted at random and folded.
+//! Points that fill the unit cube evenly: a lattice in every number 2⁶ to 2¹⁴ of them, shifted at random and folded.
 //!
 //! Point k is the fractional part of φ(k) z + shift, φ(k) the binary digits of k mirrored at the point (van der Corput), so
 //! that the first 2ᵐ points are a lattice for every m and more points refine the same lattice. The fold x → |2x - 1|
@@ -12,7 +12,7 @@
 //! 4. Hickernell (2002), in Monte Carlo and Quasi-Monte Carlo Methods 2000, 274-289 (the fold).
 
 /// Fewest points of one lattice that are used.
-pub(super) const FEWEST: usize = 1 << 5;
+pub(super) const FEWEST: usize = 1 << 6;
 /// Most points, the largest lattice for which the vector was made.
 pub(super) const MOST: usize = 1 << 14;
 

@@ -45,7 +45,7 @@ use crate::numerics::OutOfDomain;
 pub struct Effort {
     /// Standard error, relative to the answer, at which to stop.
     pub relative_error: f64,
-    /// Most points of one lattice; there are at least two for each statistic. From 32 to 16384, in powers of 2; what is
+    /// Most points of one lattice; there are at least two for each statistic. From 64 to 16384, in powers of 2; what is
     /// outside is moved in.
     pub most_points: usize,
     /// Seed of the shifts.

@@ -101,7 +101,10 @@ pub(super) fn density(t: f64, df: f64, log_peak: f64) -> f64 {
     if df == f64::INFINITY {
         return libm::exp(log_peak - 0.5 * t * t);
     }
-    libm::exp(log_peak - 0.5 * (df + 1.0) * libm::log1p(t / df * t))
+    let q = t.abs() / df.sqrt();
+    // As in the plane.
+    let log_growth = if q < 1e8 { libm::log1p(q * q) } else { 2.0 * libm::log(q) };
+    libm::exp(log_peak - 0.5 * (df + 1.0) * log_growth)
 }
 
 /// log of Γ((df+1)/2) / (√(df π) Γ(df/2)), the density of Student's t at 0, by Stirling's formula with its error.
