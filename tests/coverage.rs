@@ -84,7 +84,10 @@ fn every_check_against_a_list_of_values_is_on_the_page_of_accuracies() {
                 test.split_once("fn ").and_then(|(_, rest)| rest.split_once('(')).expect("a function");
             // Up to the end of the function: helpers that stand below it are not its own.
             let body = body.split("\n}").next().expect("a body");
-            if ["agree(", "agree_on(", "agree_each("].iter().any(|call| body.contains(call)) {
+            if ["agree(", "agree_on(", "agree_each(", "agree_by_rank(", "tails_agree("]
+                .iter()
+                .any(|call| body.contains(call))
+            {
                 let listed = format!("{module}::{name},");
                 assert!(page.contains(&listed), "tests/reference/accuracy_page.rs does not list {listed}");
                 checks += 1;

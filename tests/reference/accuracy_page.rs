@@ -12,6 +12,7 @@ use std::fmt::Write;
 
 /// Every check that calls `agree`, `agree_on` or `agree_each` (`tests/coverage.rs` sees to it that none is left out).
 const CHECKS: &[fn()] = &[
+    amalgamated_means::doses_of_unequal_sizes_agree_with_the_walk_followed_density_by_density,
     amalgamated_means::tails_and_quantiles_of_williamss_statistic_agree_with_the_reference_values,
     anova_power::power_agrees_with_the_tables,
     central::central_tails_agree_with_the_reference_values,

@@ -1,8 +1,9 @@
 //! Williams's statistic against values in ball arithmetic.
 //!
-//! Sources: `data/values/williams_sf.json` and `williams_quantile.json`, 20 digits, each telling how.
+//! Sources: `data/values/williams_sf.json` and `williams_quantile.json`, 20 digits, each telling how; doses of unequal sizes in
+//! `data/williams/unequal.json` for a known standard deviation, 11 to 15 digits, the script beside it.
 
-use crate::accuracy::agree;
+use crate::accuracy::{agree, agree_on};
 use crate::cases::{number, relative_error};
 use levelwise::numerics::OutOfDomain;
 use levelwise::numerics::distributions::{amalgamated_means, student_t};
@@ -24,6 +25,18 @@ pub fn tails_and_quantiles_of_williamss_statistic_agree_with_the_reference_value
         let p = number(&case["upper_p"]);
         amalgamated_means::upper_quantile(p, &sizes(case), 1.0, number(&case["df"])).unwrap()
     });
+}
+
+#[test]
+pub fn doses_of_unequal_sizes_agree_with_the_walk_followed_density_by_density() {
+    type Tail = fn(f64, &[f64], f64, f64) -> Result<f64, OutOfDomain>;
+    for (field, tail) in [("value", amalgamated_means::sf as Tail), ("lower", amalgamated_means::cdf)] {
+        agree_on("williams/unequal", field, "amalgamated means of unequal sizes", |case| {
+            let sizes: Vec<f64> = case["sizes"].as_array().unwrap().iter().map(number).collect();
+            let (t, control, df) = (number(&case["t"]), number(&case["control"]), number(&case["df"]));
+            Some(tail(t, &sizes, control, df).unwrap())
+        });
+    }
 }
 
 /// Source: 5 % points, four decimals, computed independently by quadrature; they round to the two decimals of Williams's
