@@ -4,8 +4,8 @@
 
 use crate::accuracy::{Agreement, take_found};
 use crate::{
-    amalgamated_means, anova_power, central, many_to_one, noncentral_f, noncentral_t, permutation,
-    rank_counts, shapiro_wilk, studentized_range,
+    amalgamated_means, anova_power, central, many_to_one, multivariate_t, noncentral_f, noncentral_t,
+    permutation, rank_counts, shapiro_wilk, studentized_range,
 };
 use serde_json::Value;
 use std::fmt::Write;
@@ -18,6 +18,9 @@ const CHECKS: &[fn()] = &[
     central::central_tails_agree_with_the_reference_values,
     many_to_one::tails_and_quantiles_for_comparisons_with_a_control_agree_with_the_reference_values,
     many_to_one::the_studentized_maximum_modulus_agrees_with_the_reference_values,
+    multivariate_t::quantiles_for_general_correlations_agree_with_the_reference_values,
+    multivariate_t::regions_of_rank_3_agree_with_values_in_high_precision,
+    multivariate_t::tails_for_general_correlations_agree_with_the_reference_values,
     noncentral_f::both_tails_of_the_noncentral_f_agree_with_the_reference_values,
     noncentral_f::limits_of_the_noncentrality_of_f_agree_with_the_reference_values,
     noncentral_t::both_tails_of_the_noncentral_t_agree_with_the_reference_values,
