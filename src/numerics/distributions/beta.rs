@@ -5,15 +5,14 @@
 
 use super::{probability, shape};
 use crate::numerics::OutOfDomain;
-use crate::numerics::special::{Tail, incomplete_beta, log_beta_quantile};
+use crate::numerics::special::{Share, Tail, Tails, incomplete_beta, log_beta_quantile};
 
 /// Lower-tail probability P(X <= `x`) with shapes `a` and `b`.
 ///
 /// # Errors
 /// [`OutOfDomain`] if `x` is not from 0 to 1, or a shape is not from 0.001 to 1e30.
 pub fn cdf(x: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
-    let x = probability("x", x)?;
-    Ok(incomplete_beta(shape("a", a)?, shape("b", b)?, x, 1.0 - x).lower)
+    tails(x, a, b).map(|tails| tails.lower)
 }
 
 /// Upper-tail probability P(X > `x`) with shapes `a` and `b`.
@@ -31,8 +30,7 @@ pub fn cdf(x: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
 /// # Ok::<(), levelwise::numerics::OutOfDomain>(())
 /// ```
 pub fn sf(x: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
-    let x = probability("x", x)?;
-    Ok(incomplete_beta(shape("a", a)?, shape("b", b)?, x, 1.0 - x).upper)
+    tails(x, a, b).map(|tails| tails.upper)
 }
 
 /// The x with P(X <= x) = `p`; 0 at 0, 1 at 1.
@@ -51,6 +49,12 @@ pub fn quantile(p: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
 pub fn upper_quantile(upper_p: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
     let p = probability("upper_p", upper_p)?;
     if p > 0.5 { quantile(1.0 - p, a, b) } else { at_tail(p, a, b, Tail::Upper) }
+}
+
+/// Both tails at x.
+fn tails(x: f64, a: f64, b: f64) -> Result<Tails, OutOfDomain> {
+    let (x, a, b) = (probability("x", x)?, shape("a", a)?, shape("b", b)?);
+    Ok(incomplete_beta(a, b, Share::at(x, a, b)))
 }
 
 /// The x whose given tail is p, at most 1/2.

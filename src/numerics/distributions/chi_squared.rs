@@ -7,14 +7,14 @@
 
 use super::{not_negative, probability, shape};
 use crate::numerics::OutOfDomain;
-use crate::numerics::special::{Tail, incomplete_gamma, log_gamma_quantile};
+use crate::numerics::special::{Tail, Tails, incomplete_gamma, log_gamma_quantile};
 
 /// Lower-tail probability P(X <= `x`) with `df` degrees of freedom.
 ///
 /// # Errors
 /// [`OutOfDomain`] if `x` is negative or not finite, or `df` is not from 0.001 to 1e30.
 pub fn cdf(x: f64, df: f64) -> Result<f64, OutOfDomain> {
-    Ok(incomplete_gamma(0.5 * shape("df", df)?, 0.5 * not_negative("x", x)?).lower)
+    tails(x, df).map(|tails| tails.lower)
 }
 
 /// Upper-tail probability P(X > `x`) with `df` degrees of freedom.
@@ -33,7 +33,7 @@ pub fn cdf(x: f64, df: f64) -> Result<f64, OutOfDomain> {
 /// # Ok::<(), levelwise::numerics::OutOfDomain>(())
 /// ```
 pub fn sf(x: f64, df: f64) -> Result<f64, OutOfDomain> {
-    Ok(incomplete_gamma(0.5 * shape("df", df)?, 0.5 * not_negative("x", x)?).upper)
+    tails(x, df).map(|tails| tails.upper)
 }
 
 /// The x with P(X <= x) = `p`; 0 at 0, infinite at 1.
@@ -52,6 +52,12 @@ pub fn quantile(p: f64, df: f64) -> Result<f64, OutOfDomain> {
 pub fn upper_quantile(upper_p: f64, df: f64) -> Result<f64, OutOfDomain> {
     let p = probability("upper_p", upper_p)?;
     if p > 0.5 { quantile(1.0 - p, df) } else { at_tail(p, df, Tail::Upper) }
+}
+
+/// Both tails at x.
+fn tails(x: f64, df: f64) -> Result<Tails, OutOfDomain> {
+    let (x, df) = (not_negative("x", x)?, shape("df", df)?);
+    Ok(incomplete_gamma(0.5 * df, 0.5 * x, 0.5 * (x - df)))
 }
 
 /// The x whose given tail is p, at most 1/2.

@@ -9,7 +9,7 @@
 
 use super::{chi_squared, degrees_of_freedom, not_negative, probability};
 use crate::numerics::OutOfDomain;
-use crate::numerics::special::{Tail, Tails, incomplete_beta, incomplete_gamma, log_beta_quantile};
+use crate::numerics::special::{Share, Tail, Tails, incomplete_beta, incomplete_gamma, log_beta_quantile};
 
 /// Lower-tail probability P(F <= `f`) with `df1` and `df2` degrees of freedom.
 ///
@@ -63,24 +63,18 @@ fn tails(f: f64, df1: f64, df2: f64) -> Result<Tails, OutOfDomain> {
     let df2 = degrees_of_freedom("df2", df2)?;
     Ok(match (df1.is_infinite(), df2.is_infinite()) {
         (false, false) => {
-            let (x, y) = shares(f, df1, df2);
-            incomplete_beta(0.5 * df1, 0.5 * df2, x, y)
+            let (a, b) = (0.5 * df1, 0.5 * df2);
+            incomplete_beta(a, b, Share::at_ratio(f, f - 1.0, a, b))
         }
-        (false, true) => incomplete_gamma(0.5 * df1, 0.5 * df1 * f),
+        (false, true) => incomplete_gamma(0.5 * df1, 0.5 * df1 * f, 0.5 * df1 * (f - 1.0)),
         (true, false) => {
-            let Tails { lower, upper, slope } = incomplete_gamma(0.5 * df2, 0.5 * df2 / f);
+            let a = 0.5 * df2;
+            let Tails { lower, upper, slope } = incomplete_gamma(a, a / f, a * ((1.0 - f) / f));
             Tails { lower: upper, upper: lower, slope }
         }
         (true, true) if f < 1.0 => Tails { lower: 0.0, upper: 1.0, slope: 0.0 },
         (true, true) => Tails { lower: 1.0, upper: 0.0, slope: 0.0 },
     })
-}
-
-/// df1 f / (df1 f + df2) and its complement, each without subtraction.
-pub(super) fn shares(f: f64, df1: f64, df2: f64) -> (f64, f64) {
-    let ratio = df1 / df2 * f;
-    let y = 1.0 / (1.0 + ratio);
-    (if ratio.is_infinite() { 1.0 } else { ratio * y }, y)
 }
 
 /// The f whose given tail is p, at most 1/2.

@@ -51,6 +51,7 @@ pub fn upper_quantile(upper_p: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomai
 }
 
 fn tail(x: f64, df: f64, ncp: f64, side: Tail) -> Result<f64, OutOfDomain> {
-    let kernel = Kernel::Gamma { a: 0.5 * shape("df", df)?, x: 0.5 * not_negative("x", x)? };
+    let (x, df) = (not_negative("x", x)?, shape("df", df)?);
+    let kernel = Kernel::Gamma { a: 0.5 * df, x: 0.5 * x, excess: 0.5 * (x - df) };
     Ok(poisson_mixture::tail(kernel, 0.5 * noncentral("ncp", ncp)?, side))
 }

@@ -11,7 +11,7 @@ use super::poisson_mixture::{self, Kernel};
 use super::{
     degrees_of_freedom, fisher_f, inner_probability, noncentral, normal, not_negative, probability, shape,
 };
-use crate::numerics::special::Tail;
+use crate::numerics::special::{Share, Tail};
 use crate::numerics::{OutOfDomain, roots};
 
 /// Lower-tail probability P(F' <= `f`) with `df1`, `df2` degrees of freedom and noncentrality `ncp`.
@@ -125,10 +125,11 @@ fn kernel(f: f64, df1: f64, df2: f64) -> Result<Kernel, OutOfDomain> {
     let df1 = shape("df1", df1)?;
     let df2 = degrees_of_freedom("df2", df2)?;
     if df2 == f64::INFINITY {
-        return Ok(Kernel::Gamma { a: 0.5 * df1, x: 0.5 * df1 * f });
+        let a = 0.5 * df1;
+        return Ok(Kernel::Gamma { a, x: a * f, excess: a * (f - 1.0) });
     }
-    let (x, y) = fisher_f::shares(f, df1, df2);
-    Ok(Kernel::Beta { a: 0.5 * df1, b: 0.5 * df2, x, y })
+    let (a, b) = (0.5 * df1, 0.5 * df2);
+    Ok(Kernel::Beta { a, b, point: Share::at_ratio(f, f - 1.0, a, b) })
 }
 
 /// The f whose given tail is p, at most 1/2.

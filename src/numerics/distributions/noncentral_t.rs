@@ -125,8 +125,8 @@ fn lower(t: f64, df: f64, ncp: f64) -> f64 {
 /// dz.
 fn lower_given_z(t: f64, df: f64, ncp: f64) -> f64 {
     let log_integrand = |z: f64| {
-        let s = (z + ncp) / t;
-        let tails = incomplete_gamma(0.5 * df, 0.5 * df * s.max(0.0) * s.max(0.0));
+        let s = ((z + ncp) / t).max(0.0);
+        let tails = incomplete_gamma(0.5 * df, 0.5 * df * s * s, 0.5 * df * (s - 1.0) * (s + 1.0));
         -0.5 * z * z + libm::log(if t > 0.0 { tails.upper } else { tails.lower })
     };
     let integral = quadrature::bell(log_integrand, 0.0, 1.0, TOLERANCE).value;

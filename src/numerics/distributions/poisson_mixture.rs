@@ -11,7 +11,7 @@
 //! 2. Abramowitz and Stegun (1964), 6.5.21 and 26.5.16 (the recurrences).
 
 use crate::numerics::special::{
-    Tail, log_beta_density, log_gamma_density, log_ratio_minus_linear, lower_beta_over_density,
+    Share, Tail, log_beta_density, log_gamma_density, log_ratio_minus_linear, lower_beta_over_density,
     lower_gamma_over_density, stirling_error, upper_gamma_over_density,
 };
 use std::f64::consts::{LN_10, PI};
@@ -22,10 +22,10 @@ pub(super) const LARGEST_MEAN: f64 = 5e6;
 /// The central distribution at the point of interest: I(x; a, b), or P(a, x).
 #[derive(Debug, Clone, Copy)]
 pub(super) enum Kernel {
-    /// Regularised incomplete beta function with y = 1 - x.
-    Beta { a: f64, b: f64, x: f64, y: f64 },
-    /// Regularised incomplete gamma function.
-    Gamma { a: f64, x: f64 },
+    /// Regularised incomplete beta function.
+    Beta { a: f64, b: f64, point: Share },
+    /// Regularised incomplete gamma function, with `excess` = x - a.
+    Gamma { a: f64, x: f64, excess: f64 },
 }
 
 /// A tail at one index, and the term by which the next differs; both times exp(scale).
@@ -38,10 +38,12 @@ struct Step {
 /// The given tail of the mixture with Poisson mean `mean`.
 pub(super) fn tail(kernel: Kernel, mean: f64, tail: Tail) -> f64 {
     match kernel {
-        Kernel::Beta { x, .. } | Kernel::Gamma { x, .. } if x == 0.0 => {
+        Kernel::Beta { point: Share { x, .. }, .. } | Kernel::Gamma { x, .. } if x == 0.0 => {
             return if tail == Tail::Lower { 0.0 } else { 1.0 };
         }
-        Kernel::Beta { y: 0.0, .. } => return if tail == Tail::Lower { 1.0 } else { 0.0 },
+        Kernel::Beta { point: Share { y: 0.0, .. }, .. } => {
+            return if tail == Tail::Lower { 1.0 } else { 0.0 };
+        }
         _ => {}
     }
     // Bennett's and Chernoff's bounds: beyond these the weight has fallen by e⁻⁴⁰.
@@ -119,8 +121,8 @@ impl Kernel {
     /// mean/j times that: below 1 from its root on, and falling at least like 1/j.
     fn turn(&self, mean: f64) -> f64 {
         let growth = |j: f64| match *self {
-            Kernel::Beta { a, b, x, .. } => x * ((a + b + j - 1.0) / (a + j)).max(1.0),
-            Kernel::Gamma { a, x } => x / (a + j),
+            Kernel::Beta { a, b, point } => point.x * ((a + b + j - 1.0) / (a + j)).max(1.0),
+            Kernel::Gamma { a, x, .. } => x / (a + j),
         };
         let (mut low, mut high) = (0.0, mean);
         for _ in 0..60 {
@@ -133,22 +135,37 @@ impl Kernel {
     /// T(j+1) / T(j).
     fn ratio(&self, j: f64) -> f64 {
         match *self {
-            Kernel::Beta { a, b, x, .. } => x * (a + b + j) / (a + j + 1.0),
-            Kernel::Gamma { a, x } => x / (a + j + 1.0),
+            Kernel::Beta { a, b, point } => point.x * (a + b + j) / (a + j + 1.0),
+            Kernel::Gamma { a, x, .. } => x / (a + j + 1.0),
         }
     }
 
     /// The tail and T at index j.
     fn start(&self, j: f64, tail: Tail) -> Step {
-        let (shape, log_density, below_peak) = match *self {
-            Kernel::Beta { a, b, x, y } => (a + j, log_beta_density(a + j, b, x, y), (a + j) * y >= b * x),
-            Kernel::Gamma { a, x } => (a + j, log_gamma_density(a + j, x), x <= a + j),
-        };
-        let over_density = match *self {
-            Kernel::Beta { b, x, y, .. } if below_peak => lower_beta_over_density(shape, b, x, y),
-            Kernel::Beta { b, x, y, .. } => lower_beta_over_density(b, shape, y, x),
-            Kernel::Gamma { x, .. } if below_peak => lower_gamma_over_density(shape, x),
-            Kernel::Gamma { x, .. } => upper_gamma_over_density(shape, x),
+        let (shape, log_density, over_density, below_peak) = match *self {
+            Kernel::Beta { a, b, point: Share { x, y, excess } } => {
+                let (shape, excess) = (a + j, excess - j * y);
+                let point = Share { x, y, excess };
+                let log_density = log_beta_density(shape, b, point);
+                let below_peak = excess <= 0.0;
+                let over_density = if below_peak {
+                    lower_beta_over_density(shape, b, point)
+                } else {
+                    lower_beta_over_density(b, shape, point.mirrored())
+                };
+                (shape, log_density, over_density, below_peak)
+            }
+            Kernel::Gamma { a, x, excess } => {
+                let (shape, excess) = (a + j, excess - j);
+                let log_density = log_gamma_density(shape, x, excess);
+                let below_peak = excess <= 0.0;
+                let over_density = if below_peak {
+                    lower_gamma_over_density(shape, x, excess)
+                } else {
+                    upper_gamma_over_density(x, excess)
+                };
+                (shape, log_density, over_density, below_peak)
+            }
         };
         // The smaller tail comes from its ratio to the density, the larger one as its complement.
         if below_peak == (tail == Tail::Lower) {

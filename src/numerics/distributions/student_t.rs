@@ -9,7 +9,7 @@
 
 use super::{degrees_of_freedom, finite, normal, probability};
 use crate::numerics::OutOfDomain;
-use crate::numerics::special::{Tail, incomplete_beta, log_beta_quantile, stirling_error};
+use crate::numerics::special::{Share, Tail, incomplete_beta, log_beta_quantile, stirling_error};
 use std::f64::consts::PI;
 
 /// Lower-tail probability P(T <= `t`) with `df` degrees of freedom.
@@ -43,7 +43,7 @@ pub fn sf(t: f64, df: f64) -> Result<f64, OutOfDomain> {
     }
     let r = t.abs() / df.sqrt();
     // Beyond 1e100 the square would lose exponent range, and the tail is its leading power.
-    let upper = if r > 1e100 { far_tail(r, df) } else { incomplete(r, df).upper };
+    let upper = if r > 1e100 { far_tail(r, df) } else { incomplete(t.abs(), r, df).upper };
     Ok(if t >= 0.0 { 0.5 * upper } else { 1.0 - 0.5 * upper })
 }
 
@@ -78,9 +78,10 @@ pub fn upper_quantile(upper_p: f64, df: f64) -> Result<f64, OutOfDomain> {
 }
 
 /// The incomplete beta function of t²/(df+t²), with r = |t|/√df.
-fn incomplete(r: f64, df: f64) -> crate::numerics::special::Tails {
-    let square = r * r;
-    incomplete_beta(0.5, 0.5 * df, square / (1.0 + square), 1.0 / (1.0 + square))
+fn incomplete(t: f64, r: f64, df: f64) -> crate::numerics::special::Tails {
+    let y = 1.0 / (1.0 + r * r);
+    let excess = 0.5 * y * (t - 1.0) * (t + 1.0);
+    incomplete_beta(0.5, 0.5 * df, Share { x: r * r * y, y, excess })
 }
 
 /// P(|T| > t) for r = |t|/√df so large that only the leading power counts: r^-df / (df/2 B(df/2, 1/2)).

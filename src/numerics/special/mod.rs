@@ -4,8 +4,10 @@ mod beta;
 mod elementary;
 mod gamma;
 
-pub use beta::{incomplete_beta, log_beta_density, log_beta_quantile, lower_beta_over_density};
-pub use elementary::{exp_minus_linear, log_minus_linear, log_ratio_minus_linear, stirling_error};
+pub use beta::{Share, incomplete_beta, log_beta_density, log_beta_quantile, lower_beta_over_density};
+pub use elementary::{
+    exp_minus_linear, log_minus_linear, log_ratio_minus_linear, product_minus, stirling_error,
+};
 pub use gamma::{
     incomplete_gamma, log_gamma_density, log_gamma_quantile, lower_gamma_over_density,
     upper_gamma_over_density,
