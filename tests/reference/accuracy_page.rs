@@ -5,7 +5,7 @@
 use crate::accuracy::{Agreement, take_found};
 use crate::{
     amalgamated_means, anova_power, central, many_to_one, multivariate_t, noncentral_f, noncentral_t,
-    permutation, rank_counts, shapiro_wilk, studentized_range,
+    permutation, rank_counts, shapiro_wilk, studentized_range, wide,
 };
 use serde_json::Value;
 use std::fmt::Write;
@@ -34,6 +34,9 @@ const CHECKS: &[fn()] = &[
     shapiro_wilk::w_and_p_follow_the_published_algorithm,
     studentized_range::both_tails_of_the_studentized_range_agree_with_the_reference_values,
     studentized_range::quantiles_of_the_studentized_range_agree_with_the_reference_values,
+    wide::central_distributions_agree_with_ball_arithmetic_over_wide_ranges,
+    wide::noncentral_distributions_agree_with_ball_arithmetic_over_wide_ranges,
+    wide::solved_noncentralities_agree_with_ball_arithmetic_over_wide_ranges,
 ];
 
 const HEAD: &str = "\

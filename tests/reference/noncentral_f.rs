@@ -79,3 +79,32 @@ fn special_cases_of_the_noncentral_f_coincide() {
         assert!(relative_error(upper, both) < 1e-12, "{x} {delta}");
     }
 }
+
+/// Near f = 0 each further term of the mixture is smaller by many powers of ten; the common scale once overflowed, and the tail
+/// came out as 1 or with four digits. Source: the Poisson sum in ball arithmetic of `data/wide/compute.py`. The
+/// upper tail far out underflows.
+#[test]
+fn tails_at_the_ends_of_the_range_are_tails() {
+    for (f, df1, df2, ncp, expected) in [
+        (
+            5.319_228_130_435_352e-69,
+            2.206_406_260_817_798_3,
+            776_067.885_138_511_3,
+            2.0,
+            1.871_095_062_767_419e-76,
+        ),
+        (
+            1.188_442_845_498_538e-27,
+            5.599_531_860_321_049,
+            2_732.155_874_435_665_7,
+            62.261_531_204_593_13,
+            4.759_059_073_744_938_6e-89,
+        ),
+    ] {
+        let error = relative_error(noncentral_f::cdf(f, df1, df2, ncp).unwrap(), expected);
+        assert!(error < permitted("noncentral over wide ranges, tail"), "{f}: {error:e}");
+    }
+    assert_eq!(noncentral_chi_squared::sf(1e300, 3.0, 5.0).unwrap(), 0.0);
+    assert_eq!(noncentral_chi_squared::cdf(1e300, 3.0, 5.0).unwrap(), 1.0);
+    assert_eq!(noncentral_f::sf(1e300, 3.0, f64::INFINITY, 1e7).unwrap(), 0.0);
+}

@@ -11,6 +11,10 @@ use crate::numerics::special::{Share, Tail, Tails, incomplete_beta, log_beta_qua
 ///
 /// # Errors
 /// [`OutOfDomain`] if `x` is not from 0 to 1, or a shape is not from 0.001 to 1e30.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for shapes from 0.5 to 1e7
+/// (`tests/reference/data/wide/beta.json`).
 pub fn cdf(x: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
     tails(x, a, b).map(|tails| tails.lower)
 }
@@ -21,7 +25,8 @@ pub fn cdf(x: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
 /// [`OutOfDomain`] if `x` is not from 0 to 1, or a shape is not from 0.001 to 1e30.
 ///
 /// # Accuracy
-/// As listed in `tests/reference/accuracy.rs`.
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for shapes from 0.5 to 1e7
+/// (`tests/reference/data/wide/beta.json`).
 ///
 /// # Example
 /// ```
@@ -37,6 +42,9 @@ pub fn sf(x: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `p` is not from 0 to 1, or a shape is not from 0.001 to 1e30.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for `p` from 1e-300, over the same ranges as [`cdf`].
 pub fn quantile(p: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
     let p = probability("p", p)?;
     if p > 0.5 { upper_quantile(1.0 - p, a, b) } else { at_tail(p, a, b, Tail::Lower) }
@@ -46,6 +54,9 @@ pub fn quantile(p: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `upper_p` is not from 0 to 1, or a shape is not from 0.001 to 1e30.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for `upper_p` from 1e-300, over the same ranges as [`sf`].
 pub fn upper_quantile(upper_p: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
     let p = probability("upper_p", upper_p)?;
     if p > 0.5 { quantile(1.0 - p, a, b) } else { at_tail(p, a, b, Tail::Upper) }

@@ -13,6 +13,10 @@ use crate::numerics::special::{Tail, Tails, incomplete_gamma, log_gamma_quantile
 ///
 /// # Errors
 /// [`OutOfDomain`] if `x` is negative or not finite, or `df` is not from 0.001 to 1e30.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for degrees of freedom from 0.5 to 1e7
+/// (`tests/reference/data/wide/chi_squared.json`).
 pub fn cdf(x: f64, df: f64) -> Result<f64, OutOfDomain> {
     tails(x, df).map(|tails| tails.lower)
 }
@@ -23,7 +27,8 @@ pub fn cdf(x: f64, df: f64) -> Result<f64, OutOfDomain> {
 /// [`OutOfDomain`] if `x` is negative or not finite, or `df` is not from 0.001 to 1e30.
 ///
 /// # Accuracy
-/// As listed in `tests/reference/accuracy.rs`.
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for degrees of freedom from 0.5 to 1e7
+/// (`tests/reference/data/wide/chi_squared.json`).
 ///
 /// # Example
 /// ```
@@ -40,6 +45,9 @@ pub fn sf(x: f64, df: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `p` is not from 0 to 1, or `df` is not from 0.001 to 1e30.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for `p` from 1e-300, over the same ranges as [`cdf`].
 pub fn quantile(p: f64, df: f64) -> Result<f64, OutOfDomain> {
     let p = probability("p", p)?;
     if p > 0.5 { upper_quantile(1.0 - p, df) } else { at_tail(p, df, Tail::Lower) }
@@ -49,6 +57,9 @@ pub fn quantile(p: f64, df: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `upper_p` is not from 0 to 1, or `df` is not from 0.001 to 1e30.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for `upper_p` from 1e-300, over the same ranges as [`sf`].
 pub fn upper_quantile(upper_p: f64, df: f64) -> Result<f64, OutOfDomain> {
     let p = probability("upper_p", upper_p)?;
     if p > 0.5 { quantile(1.0 - p, df) } else { at_tail(p, df, Tail::Upper) }

@@ -15,6 +15,10 @@ use crate::numerics::special::{Share, Tail, Tails, incomplete_beta, incomplete_g
 ///
 /// # Errors
 /// [`OutOfDomain`] if `f` is negative or not finite, or a df is not positive.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for degrees of freedom from 0.5 to 1e7, or infinite
+/// (`tests/reference/data/wide/fisher_f.json`).
 pub fn cdf(f: f64, df1: f64, df2: f64) -> Result<f64, OutOfDomain> {
     tails(f, df1, df2).map(|tails| tails.lower)
 }
@@ -25,7 +29,8 @@ pub fn cdf(f: f64, df1: f64, df2: f64) -> Result<f64, OutOfDomain> {
 /// [`OutOfDomain`] if `f` is negative or not finite, or a df is not positive.
 ///
 /// # Accuracy
-/// As listed in `tests/reference/accuracy.rs`.
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for degrees of freedom from 0.5 to 1e7, or infinite
+/// (`tests/reference/data/wide/fisher_f.json`).
 ///
 /// # Example
 /// ```
@@ -42,6 +47,9 @@ pub fn sf(f: f64, df1: f64, df2: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `p` is not from 0 to 1, or a df is not positive.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for `p` from 1e-300, over the same ranges as [`cdf`].
 pub fn quantile(p: f64, df1: f64, df2: f64) -> Result<f64, OutOfDomain> {
     let p = probability("p", p)?;
     if p > 0.5 { upper_quantile(1.0 - p, df1, df2) } else { at_tail(p, df1, df2, Tail::Lower) }
@@ -51,6 +59,9 @@ pub fn quantile(p: f64, df1: f64, df2: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `upper_p` is not from 0 to 1, or a df is not positive.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for `upper_p` from 1e-300, over the same ranges as [`sf`].
 pub fn upper_quantile(upper_p: f64, df1: f64, df2: f64) -> Result<f64, OutOfDomain> {
     let p = probability("upper_p", upper_p)?;
     if p > 0.5 { quantile(1.0 - p, df1, df2) } else { at_tail(p, df1, df2, Tail::Upper) }

@@ -21,7 +21,8 @@ use crate::numerics::{OutOfDomain, roots};
 /// to 1e7.
 ///
 /// # Accuracy
-/// As listed in `tests/reference/accuracy.rs`.
+/// Relative error below 1e-12 for probabilities from 1e-100, over degrees of freedom from 0.5 to 1e6, or infinite, and `ncp` to 1e4
+/// (`tests/reference/data/wide/noncentral_f.json`).
 pub fn cdf(f: f64, df1: f64, df2: f64, ncp: f64) -> Result<f64, OutOfDomain> {
     tail(f, df1, df2, ncp, Tail::Lower)
 }
@@ -34,7 +35,8 @@ pub fn cdf(f: f64, df1: f64, df2: f64, ncp: f64) -> Result<f64, OutOfDomain> {
 /// to 1e7.
 ///
 /// # Accuracy
-/// As listed in `tests/reference/accuracy.rs`.
+/// Relative error below 1e-12 for probabilities from 1e-100, over degrees of freedom from 0.5 to 1e6, or infinite, and `ncp` to 1e4
+/// (`tests/reference/data/wide/noncentral_f.json`).
 ///
 /// # Example
 /// ```
@@ -51,6 +53,9 @@ pub fn sf(f: f64, df1: f64, df2: f64, ncp: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `p` is not from 0 to 1, or as for [`cdf`].
+///
+/// # Accuracy
+/// Relative error below 1e-12, over the same ranges as [`cdf`].
 pub fn quantile(p: f64, df1: f64, df2: f64, ncp: f64) -> Result<f64, OutOfDomain> {
     let p = probability("p", p)?;
     if p > 0.5 {
@@ -64,6 +69,9 @@ pub fn quantile(p: f64, df1: f64, df2: f64, ncp: f64) -> Result<f64, OutOfDomain
 ///
 /// # Errors
 /// [`OutOfDomain`] if `upper_p` is not from 0 to 1, or as for [`sf`].
+///
+/// # Accuracy
+/// Relative error below 1e-12, over the same ranges as [`sf`].
 pub fn upper_quantile(upper_p: f64, df1: f64, df2: f64, ncp: f64) -> Result<f64, OutOfDomain> {
     let p = probability("upper_p", upper_p)?;
     if p > 0.5 {
@@ -80,11 +88,25 @@ pub fn upper_quantile(upper_p: f64, df1: f64, df2: f64, ncp: f64) -> Result<f64,
 /// [`OutOfDomain`] if `f` is negative, not finite or so large that the noncentrality would exceed 1e7, a df is not
 /// positive, or `lower_p` is not between 0 and 1.
 ///
+/// # Accuracy
+/// Relative error below 1e-10 for noncentralities from 0.05 to 1e4 to which the probability answers: a relative change of 1e-14 in
+/// that one is all that the result may come from, and it tells a small noncentrality apart from 0 less and less.
+///
 /// # Source
 /// Steiger and Fouladi (1997), in What if there were no significance tests, chapter 9.
 pub fn noncentrality(f: f64, df1: f64, df2: f64, lower_p: f64) -> Result<f64, OutOfDomain> {
     let lower_p = inner_probability("lower_p", lower_p)?;
-    let kernel = kernel(f, df1, df2)?;
+    let found = solve_noncentrality(kernel(f, df1, df2)?, f, df1, df2, lower_p);
+    found.ok_or(OutOfDomain {
+        argument: "f",
+        value: f,
+        allowed: "so small that the noncentrality stays below 1e7",
+    })
+}
+
+/// The noncentrality at which the lower tail is `lower_p`, with the central distribution of f at its point; none if it would
+/// exceed 1e7.
+pub(super) fn solve_noncentrality(kernel: Kernel, f: f64, df1: f64, df2: f64, lower_p: f64) -> Option<f64> {
     let (side, p) = if lower_p > 0.5 { (Tail::Upper, 1.0 - lower_p) } else { (Tail::Lower, lower_p) };
     let deviate = normal::upper_quantile_unchecked(p);
     // The normal deviate of the tail is nearly linear in √(ncp + df1); the shift makes it smooth at 0.
@@ -99,20 +121,12 @@ pub fn noncentrality(f: f64, df1: f64, df2: f64, lower_p: f64) -> Result<f64, Ou
         if side == Tail::Lower { reached - deviate } else { deviate - reached }
     };
     if excess(0.0) >= 0.0 {
-        return Ok(0.0);
+        return Some(0.0);
     }
     let z = if side == Tail::Lower { deviate } else { -deviate };
     let start = (df1 * f).sqrt() + z * (1.0 + 0.5 * df1 * f / df2).sqrt() - root;
     let ncp = ncp_at(roots::increasing_secant(excess, start.clamp(0.1, 3e3), 1.0));
-    if ncp < 1.999 * poisson_mixture::LARGEST_MEAN {
-        Ok(ncp)
-    } else {
-        Err(OutOfDomain {
-            argument: "f",
-            value: f,
-            allowed: "so small that the noncentrality stays below 1e7",
-        })
-    }
+    (ncp < 1.999 * poisson_mixture::LARGEST_MEAN).then_some(ncp)
 }
 
 fn tail(f: f64, df1: f64, df2: f64, ncp: f64, side: Tail) -> Result<f64, OutOfDomain> {

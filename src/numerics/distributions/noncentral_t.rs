@@ -1,38 +1,42 @@
 //! The noncentral t distribution: T = (Z + ncp) / S, where df·S² is chi-squared with df degrees of freedom.
 //!
 //! P(T <= t) = ∫ h(s) Φ(t s - ncp) ds, each tail an integral of a positive function of its own, so that neither is a
-//! difference. Domain: any finite t and ncp up to 1e8 in size, any positive df or infinity (a normal variable
+//! difference; a tail of nearly 1 comes from the other. Domain: any finite t, ncp up to 1e8 in size, any positive df or infinity (a normal variable
 //! with mean ncp).
 //!
 //! # References
 //! 1. Johnson, Kotz and Balakrishnan (1995), Continuous Univariate Distributions 2, chapter 31.
 
-use super::{degrees_of_freedom, inner_probability, normal, probability, scale_mixture};
+use super::{degrees_of_freedom, finite, inner_probability, normal, probability, scale_mixture};
 use crate::numerics::special::incomplete_gamma;
 use crate::numerics::{OutOfDomain, quadrature, roots};
 use std::f64::consts::PI;
 
 const TOLERANCE: f64 = 1e-16;
+/// Beyond this |t| the tail is its leading power: the next term is about (1 + ncp²) df / t² of it.
+const FAR: f64 = 1e25;
 
 /// Lower-tail probability P(T <= `t`) with `df` degrees of freedom and noncentrality `ncp`.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `t` or `ncp` is beyond ±1e8 or not a number, or `df` is not positive.
+/// [`OutOfDomain`] if `t` is not finite, `ncp` is beyond ±1e8 or not a number, or `df` is not positive.
 ///
 /// # Accuracy
-/// As listed in `tests/reference/accuracy.rs`.
+/// Relative error below 1e-12 for probabilities from 1e-100, over degrees of freedom from 0.5 to 1e6, or infinite, and `ncp` from -1e4 to 1e4
+/// (`tests/reference/data/wide/noncentral_t.json`).
 pub fn cdf(t: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomain> {
-    let (t, df, ncp) = (moderate("t", t)?, degrees_of_freedom("df", df)?, moderate("ncp", ncp)?);
+    let (t, df, ncp) = (finite("t", t)?, degrees_of_freedom("df", df)?, moderate("ncp", ncp)?);
     Ok(lower(t, df, ncp))
 }
 
 /// Upper-tail probability P(T > `t`) with `df` degrees of freedom and noncentrality `ncp`.
 ///
 /// # Errors
-/// [`OutOfDomain`] if `t` or `ncp` is beyond ±1e8 or not a number, or `df` is not positive.
+/// [`OutOfDomain`] if `t` is not finite, `ncp` is beyond ±1e8 or not a number, or `df` is not positive.
 ///
 /// # Accuracy
-/// As listed in `tests/reference/accuracy.rs`.
+/// Relative error below 1e-12 for probabilities from 1e-100, over degrees of freedom from 0.5 to 1e6, or infinite, and `ncp` from -1e4 to 1e4
+/// (`tests/reference/data/wide/noncentral_t.json`).
 ///
 /// # Example
 /// ```
@@ -43,7 +47,7 @@ pub fn cdf(t: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomain> {
 /// # Ok::<(), levelwise::numerics::OutOfDomain>(())
 /// ```
 pub fn sf(t: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomain> {
-    let (t, df, ncp) = (moderate("t", t)?, degrees_of_freedom("df", df)?, moderate("ncp", ncp)?);
+    let (t, df, ncp) = (finite("t", t)?, degrees_of_freedom("df", df)?, moderate("ncp", ncp)?);
     Ok(lower(-t, df, -ncp))
 }
 
@@ -51,6 +55,9 @@ pub fn sf(t: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `p` is not from 0 to 1, `ncp` is beyond ±1e8 or not a number, or `df` is not positive.
+///
+/// # Accuracy
+/// Relative error below 1e-12, over the same ranges as [`cdf`].
 pub fn quantile(p: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomain> {
     let (p, df, ncp) = (probability("p", p)?, degrees_of_freedom("df", df)?, moderate("ncp", ncp)?);
     if p == 0.0 || p == 1.0 {
@@ -66,6 +73,9 @@ pub fn quantile(p: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `upper_p` is not from 0 to 1, `ncp` is beyond ±1e8 or not a number, or `df` is not positive.
+///
+/// # Accuracy
+/// Relative error below 1e-12, over the same ranges as [`sf`].
 pub fn upper_quantile(upper_p: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomain> {
     probability("upper_p", upper_p)?;
     quantile(upper_p, df, -moderate("ncp", ncp)?).map(|t| -t)
@@ -75,6 +85,10 @@ pub fn upper_quantile(upper_p: f64, df: f64, ncp: f64) -> Result<f64, OutOfDomai
 ///
 /// # Errors
 /// [`OutOfDomain`] if `t` is beyond ±1e8 or not a number, `df` is not positive, or `lower_p` is not between 0 and 1.
+///
+/// # Accuracy
+/// Relative error below 1e-10 for noncentralities from 0.05 to 1e4 to which the probability answers: a relative change of 1e-14 in
+/// that one is all that the result may come from, and it tells a small noncentrality apart from 0 less and less.
 ///
 /// # Source
 /// Steiger and Fouladi (1997), in What if there were no significance tests, chapter 9.
@@ -111,6 +125,22 @@ fn lower_quantile(p: f64, df: f64, ncp: f64) -> f64 {
 
 /// P(T <= t).
 fn lower(t: f64, df: f64, ncp: f64) -> f64 {
+    if t.abs() > FAR {
+        // S is then so small that its density is its leading power: P(|T| > t) is proportional to t^-df.
+        let share = libm::exp(-df * libm::log(t.abs() / FAR));
+        return if t < 0.0 {
+            share * integral(-FAR, df, ncp)
+        } else {
+            1.0 - share * integral(-FAR, df, -ncp)
+        };
+    }
+    let tail = integral(t, df, ncp);
+    // So near 1 the complement has more digits.
+    if tail > 0.9 { 1.0 - integral(-t, df, -ncp).min(1.0) } else { tail }
+}
+
+/// P(T <= t), as an integral of its own.
+fn integral(t: f64, df: f64, ncp: f64) -> f64 {
     // log S has a standard deviation of about 1/√(2 df), and Φ(t s - ncp) rises over a change of log s by 1/ncp.
     let sharpness = if t * ncp > 0.0 { ncp.abs() / (2.0 * df).sqrt().max(1.0) } else { 0.0 };
     if sharpness > 20.0 && df.is_finite() {

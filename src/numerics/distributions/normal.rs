@@ -17,7 +17,8 @@ use std::sync::OnceLock;
 /// [`OutOfDomain`] if `x` is not finite.
 ///
 /// # Accuracy
-/// As listed in `tests/reference/accuracy.rs`.
+/// Relative error below 1e-14 for probabilities above 1e-20 and below 3e-13 down to 1e-300
+/// (`tests/reference/data/wide/normal.json`).
 ///
 /// # Example
 /// ```
@@ -33,6 +34,10 @@ pub fn cdf(x: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `x` is not finite.
+///
+/// # Accuracy
+/// Relative error below 1e-14 for probabilities above 1e-20 and below 3e-13 down to 1e-300
+/// (`tests/reference/data/wide/normal.json`).
 pub fn sf(x: f64) -> Result<f64, OutOfDomain> {
     Ok(lower(-finite("x", x)?))
 }
@@ -41,6 +46,9 @@ pub fn sf(x: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `p` is not from 0 to 1.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for `p` from 1e-300, over the same ranges as [`cdf`].
 pub fn quantile(p: f64) -> Result<f64, OutOfDomain> {
     Ok(-upper_quantile_unchecked(probability("p", p)?))
 }
@@ -49,6 +57,9 @@ pub fn quantile(p: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `upper_p` is not from 0 to 1.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for `upper_p` from 1e-300, over the same ranges as [`sf`].
 pub fn upper_quantile(upper_p: f64) -> Result<f64, OutOfDomain> {
     Ok(upper_quantile_unchecked(probability("upper_p", upper_p)?))
 }

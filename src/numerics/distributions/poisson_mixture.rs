@@ -44,13 +44,18 @@ pub(super) fn tail(kernel: Kernel, mean: f64, tail: Tail) -> f64 {
         Kernel::Beta { point: Share { y: 0.0, .. }, .. } => {
             return if tail == Tail::Lower { 1.0 } else { 0.0 };
         }
+        // Chernoff's bound with exp(X/2): the tail is below exp(-x/2 + mean + a log 2), here at most exp(-0.4 x).
+        Kernel::Gamma { a, x, .. } if tail == Tail::Upper && x > 2000.0 && x > 10.0 * (a + mean) => {
+            return 0.0;
+        }
         _ => {}
     }
     // Bennett's and Chernoff's bounds: beyond these the weight has fallen by e⁻⁴⁰.
     let mut first = match tail {
         Tail::Lower => {
             let turn = kernel.turn(mean);
-            libm::ceil(turn + 0.5 * (80.0 / 3.0 + (80.0 * 80.0 / 9.0 + 320.0 * turn).sqrt()))
+            let first = libm::ceil(turn + 0.5 * (80.0 / 3.0 + (80.0 * 80.0 / 9.0 + 320.0 * turn).sqrt()));
+            kernel.last_that_counts(mean, first)
         }
         Tail::Upper => libm::floor((mean - (80.0 * mean).sqrt()).max(0.0)),
     };
@@ -120,16 +125,36 @@ impl Kernel {
     /// I(j)/I(j-1) is at most 1 and at most the largest ratio of terms from there on, so that the products' ratio is at most
     /// mean/j times that: below 1 from its root on, and falling at least like 1/j.
     fn turn(&self, mean: f64) -> f64 {
-        let growth = |j: f64| match *self {
-            Kernel::Beta { a, b, point } => point.x * ((a + b + j - 1.0) / (a + j)).max(1.0),
-            Kernel::Gamma { a, x, .. } => x / (a + j),
-        };
         let (mut low, mut high) = (0.0, mean);
         for _ in 0..60 {
             let middle = 0.5 * (low + high);
-            if mean * growth(middle).min(1.0) > middle { low = middle } else { high = middle }
+            if mean * self.growth(middle) > middle { low = middle } else { high = middle }
         }
         high
+    }
+
+    /// An index of at most `first` beyond which the products pⱼ I(a + j) of the lower tail are below e⁻⁶⁰ of that at 0. Near
+    /// x = 0 they fall by hundreds of powers of ten at each step, which no common scale could follow.
+    fn last_that_counts(&self, mean: f64, first: f64) -> f64 {
+        let (mut j, mut bound) = (0.0, 0.0);
+        // Far beyond this the products fall no faster than Poisson weights do.
+        while j < first.min(200.0) {
+            bound += libm::log(mean * self.growth(j + 1.0) / (j + 1.0));
+            if bound < -60.0 {
+                return j;
+            }
+            j += 1.0;
+        }
+        first
+    }
+
+    /// A bound of I(j)/I(j-1).
+    fn growth(&self, j: f64) -> f64 {
+        let growth = match *self {
+            Kernel::Beta { a, b, point } => point.x * ((a + b + j - 1.0) / (a + j)).max(1.0),
+            Kernel::Gamma { a, x, .. } => x / (a + j),
+        };
+        growth.min(1.0)
     }
 
     /// T(j+1) / T(j).

@@ -16,6 +16,10 @@ use std::f64::consts::PI;
 ///
 /// # Errors
 /// [`OutOfDomain`] if `t` is not finite or `df` is not positive.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for degrees of freedom from 0.5 to 1e7, or infinite
+/// (`tests/reference/data/wide/student_t.json`).
 pub fn cdf(t: f64, df: f64) -> Result<f64, OutOfDomain> {
     sf(-t, df).map_err(|error| if error.argument == "t" { OutOfDomain { value: t, ..error } } else { error })
 }
@@ -26,7 +30,8 @@ pub fn cdf(t: f64, df: f64) -> Result<f64, OutOfDomain> {
 /// [`OutOfDomain`] if `t` is not finite or `df` is not positive.
 ///
 /// # Accuracy
-/// As listed in `tests/reference/accuracy.rs`.
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for degrees of freedom from 0.5 to 1e7, or infinite
+/// (`tests/reference/data/wide/student_t.json`).
 ///
 /// # Example
 /// ```
@@ -51,6 +56,9 @@ pub fn sf(t: f64, df: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `p` is not from 0 to 1 or `df` is not positive.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for `p` from 1e-300, over the same ranges as [`cdf`].
 pub fn quantile(p: f64, df: f64) -> Result<f64, OutOfDomain> {
     let p = probability("p", p)?;
     upper_quantile(p, df).map(|t| -t)
@@ -60,6 +68,9 @@ pub fn quantile(p: f64, df: f64) -> Result<f64, OutOfDomain> {
 ///
 /// # Errors
 /// [`OutOfDomain`] if `upper_p` is not from 0 to 1 or `df` is not positive.
+///
+/// # Accuracy
+/// Relative error below 1e-13 for `upper_p` from 1e-300, over the same ranges as [`sf`].
 pub fn upper_quantile(upper_p: f64, df: f64) -> Result<f64, OutOfDomain> {
     let p = probability("upper_p", upper_p)?;
     let df = degrees_of_freedom("df", df)?;

@@ -84,10 +84,11 @@ pub fn incomplete_beta(a: f64, b: f64, point: Share) -> Tails {
 /// I(x; a, b) for x at most a/(a+b), given xᵃ yᵇ / B(a, b).
 fn smaller_side(a: f64, b: f64, point: Share, density: f64) -> f64 {
     // With b near 0 nearly all lies beside y = 0, and the integral would cross a long flat stretch before it falls.
-    // The other side is a short series, and what it leaves of 1 keeps 12 digits.
+    // The other side is a short series, and what it leaves of 1 keeps 12 digits; where the stretch is short enough for the
+    // integral, at least a tenth must be left, which keeps 14.
     if b < 0.5 && point.y < 0.125 && a * point.y < 16.0 {
         let left = 1.0 - density * lower_beta_over_density(b, a, point.mirrored());
-        if left > 1e-3 {
+        if left > if b < 0.1 { 1e-3 } else { 0.1 } {
             return left;
         }
     }
