@@ -5,7 +5,7 @@ use levelwise::numerics::decimal::{self, Decimal, DecimalMark};
 use levelwise::numerics::quadrature::{self, Rule};
 use levelwise::numerics::random::Streams;
 use levelwise::numerics::roots::{self, Value};
-use levelwise::numerics::special::{self, Tail};
+use levelwise::numerics::special::{self, Share, Tail};
 use levelwise::numerics::sums;
 
 pub fn add(table: &mut Table) {
@@ -34,12 +34,12 @@ fn add_elementary(table: &mut Table) {
 fn add_gamma(table: &mut Table) {
     for a in [1e-3, 0.5, 1.0, 4.2, 30.0, 999.0, 1e8] {
         for x in [1e-100, 1e-3, 0.4, 1.1, 5.0, 33.0, 210.0, 1010.0, 1.000_2e8] {
-            point!(table, special::incomplete_gamma(a, x));
-            point!(table, special::log_gamma_density(a, x));
+            point!(table, special::incomplete_gamma(a, x, x - a));
+            point!(table, special::log_gamma_density(a, x, x - a));
             if x >= a {
-                point!(table, special::upper_gamma_over_density(a, x));
+                point!(table, special::upper_gamma_over_density(x, x - a));
             } else {
-                point!(table, special::lower_gamma_over_density(a, x));
+                point!(table, special::lower_gamma_over_density(a, x, x - a));
             }
         }
         for p in [1e-200, 1e-5, 0.3, 0.99] {
@@ -51,14 +51,14 @@ fn add_gamma(table: &mut Table) {
 }
 
 fn add_beta(table: &mut Table) {
-    // Pairs with x + y = 1 exactly.
-    let pairs = [(0.125, 0.875), (0.5, 0.5), (0.75, 0.25), (0.996_093_75, 0.003_906_25)];
     for (a, b) in [(0.5, 0.5), (1.0, 8.0), (3.2, 0.01), (55.0, 45.0), (1e4, 3e4), (2e9, 2e9)] {
-        for (x, y) in pairs {
-            point!(table, special::incomplete_beta(a, b, x, y));
-            point!(table, special::log_beta_density(a, b, x, y));
-            if x <= a / (a + b) {
-                point!(table, special::lower_beta_over_density(a, b, x, y));
+        for x in [0.125, 0.5, 0.75, 0.996_093_75] {
+            let share = Share::at(x, a, b);
+            point!(table, special::product_minus(x, a + b, a));
+            point!(table, special::incomplete_beta(a, b, share));
+            point!(table, special::log_beta_density(a, b, share));
+            if share.excess <= 0.0 {
+                point!(table, special::lower_beta_over_density(a, b, share));
             }
         }
         for p in [1e-200, 1e-5, 0.3, 0.99] {

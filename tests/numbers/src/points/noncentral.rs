@@ -58,6 +58,11 @@ fn add_noncentral_f(table: &mut Table) {
 
 fn add_noncentral_chi_squared(table: &mut Table) {
     for df in [0.5, 1.0, 4.0, 33.0, 1e4] {
+        for x in [0.7, 28.0, 1.1e4] {
+            for p in [1e-6, 0.025, 0.5, 0.975] {
+                point!(table, noncentral_chi_squared::noncentrality(x, df, p));
+            }
+        }
         for ncp in [0.0, 1e-3, 2.0, 30.0, 1e4] {
             for x in [0.0, 1e-6, 0.7, 5.0, 28.0, 160.0, 1.1e4] {
                 point!(table, noncentral_chi_squared::cdf(x, df, ncp));
