@@ -13,8 +13,8 @@ use crate::numerics::special::{Share, Tail, Tails, incomplete_beta, log_beta_qua
 /// [`OutOfDomain`] if `x` is not from 0 to 1, or a shape is not from 0.001 to 1e30.
 ///
 /// # Accuracy
-/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for shapes from 0.5 to 1e7
-/// (`tests/reference/data/wide/beta.json`).
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for
+/// shapes from 0.5 to 1e7 (`tests/reference/data/wide/beta.json`).
 pub fn cdf(x: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
     tails(x, a, b).map(|tails| tails.lower)
 }
@@ -25,8 +25,8 @@ pub fn cdf(x: f64, a: f64, b: f64) -> Result<f64, OutOfDomain> {
 /// [`OutOfDomain`] if `x` is not from 0 to 1, or a shape is not from 0.001 to 1e30.
 ///
 /// # Accuracy
-/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for shapes from 0.5 to 1e7
-/// (`tests/reference/data/wide/beta.json`).
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for
+/// shapes from 0.5 to 1e7 (`tests/reference/data/wide/beta.json`).
 ///
 /// # Example
 /// ```

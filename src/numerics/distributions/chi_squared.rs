@@ -15,8 +15,8 @@ use crate::numerics::special::{Tail, Tails, incomplete_gamma, log_gamma_quantile
 /// [`OutOfDomain`] if `x` is negative or not finite, or `df` is not from 0.001 to 1e30.
 ///
 /// # Accuracy
-/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for degrees of freedom from 0.5 to 1e7
-/// (`tests/reference/data/wide/chi_squared.json`).
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for
+/// degrees of freedom from 0.5 to 1e7 (`tests/reference/data/wide/chi_squared.json`).
 pub fn cdf(x: f64, df: f64) -> Result<f64, OutOfDomain> {
     tails(x, df).map(|tails| tails.lower)
 }
@@ -27,8 +27,8 @@ pub fn cdf(x: f64, df: f64) -> Result<f64, OutOfDomain> {
 /// [`OutOfDomain`] if `x` is negative or not finite, or `df` is not from 0.001 to 1e30.
 ///
 /// # Accuracy
-/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for degrees of freedom from 0.5 to 1e7
-/// (`tests/reference/data/wide/chi_squared.json`).
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for
+/// degrees of freedom from 0.5 to 1e7 (`tests/reference/data/wide/chi_squared.json`).
 ///
 /// # Example
 /// ```

@@ -17,8 +17,8 @@ use crate::numerics::special::{Share, Tail, Tails, incomplete_beta, incomplete_g
 /// [`OutOfDomain`] if `f` is negative or not finite, or a df is not positive.
 ///
 /// # Accuracy
-/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for degrees of freedom from 0.5 to 1e7, or infinite
-/// (`tests/reference/data/wide/fisher_f.json`).
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for
+/// degrees of freedom from 0.5 to 1e7, or infinite (`tests/reference/data/wide/fisher_f.json`).
 pub fn cdf(f: f64, df1: f64, df2: f64) -> Result<f64, OutOfDomain> {
     tails(f, df1, df2).map(|tails| tails.lower)
 }
@@ -29,8 +29,8 @@ pub fn cdf(f: f64, df1: f64, df2: f64) -> Result<f64, OutOfDomain> {
 /// [`OutOfDomain`] if `f` is negative or not finite, or a df is not positive.
 ///
 /// # Accuracy
-/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for degrees of freedom from 0.5 to 1e7, or infinite
-/// (`tests/reference/data/wide/fisher_f.json`).
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for
+/// degrees of freedom from 0.5 to 1e7, or infinite (`tests/reference/data/wide/fisher_f.json`).
 ///
 /// # Example
 /// ```

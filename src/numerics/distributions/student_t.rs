@@ -18,8 +18,8 @@ use std::f64::consts::PI;
 /// [`OutOfDomain`] if `t` is not finite or `df` is not positive.
 ///
 /// # Accuracy
-/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for degrees of freedom from 0.5 to 1e7, or infinite
-/// (`tests/reference/data/wide/student_t.json`).
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for
+/// degrees of freedom from 0.5 to 1e7, or infinite (`tests/reference/data/wide/student_t.json`).
 pub fn cdf(t: f64, df: f64) -> Result<f64, OutOfDomain> {
     sf(-t, df).map_err(|error| if error.argument == "t" { OutOfDomain { value: t, ..error } } else { error })
 }
@@ -30,8 +30,8 @@ pub fn cdf(t: f64, df: f64) -> Result<f64, OutOfDomain> {
 /// [`OutOfDomain`] if `t` is not finite or `df` is not positive.
 ///
 /// # Accuracy
-/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for degrees of freedom from 0.5 to 1e7, or infinite
-/// (`tests/reference/data/wide/student_t.json`).
+/// Relative error below 1e-13 for probabilities above 1e-20 and below 1e-12 down to 1e-300, for
+/// degrees of freedom from 0.5 to 1e7, or infinite (`tests/reference/data/wide/student_t.json`).
 ///
 /// # Example
 /// ```
