@@ -9,8 +9,9 @@ const MAX_EVALUATIONS: usize = 200;
 /// A step below this fraction of the caller's scale ends the iteration; the step itself is still taken, so that
 /// the root is better than that: the error after a Newton step is of the order of its square.
 const STEP: f64 = 1e-8;
-/// A chord longer than this fraction of the scale says too little about the slope at its end to stop on it.
-const CHORD: f64 = 1e-3;
+/// After a step along a chord the error is of the order of the product of their lengths: the iteration may end when
+/// that is below this fraction of the square of the scale.
+const PRODUCT: f64 = 1e-14;
 
 /// What a function is at a point.
 #[derive(Debug, Clone, Copy)]
@@ -42,7 +43,12 @@ pub fn increasing(mut f: impl FnMut(f64) -> Value, start: f64, scale: f64) -> f6
         let step = -value / slope;
         let newton = x + step;
         let usable = slope > 0.0 && slope.is_finite() && newton > low && newton < high;
-        if usable && chord <= CHORD * scale && step.abs() <= (STEP * scale).max(f64::EPSILON * x.abs()) {
+        // A step that rounding swallows may seem to lead out of the bracket: x is then one of its ends.
+        if slope > 0.0 && slope.is_finite() && step.abs() <= f64::EPSILON * x.abs() {
+            return x;
+        }
+        let small = step.abs() <= STEP * scale && step.abs() * chord <= PRODUCT * scale * scale;
+        if usable && small {
             return newton;
         }
         let next = if usable {
@@ -77,6 +83,28 @@ pub fn increasing_secant(mut f: impl FnMut(f64) -> f64, start: f64, scale: f64) 
         },
         start,
         scale,
+    )
+}
+
+/// The root of log(tail(x)) = log(`target`) for a tail that rises with x or, `falling`, falls; `tail` gives its value and the
+/// derivative of its logarithm, or NaN where that is not known.
+pub fn log_tail(mut tail: impl FnMut(f64) -> (f64, f64), target: f64, falling: bool, start: f64) -> f64 {
+    let sign = if falling { -1.0 } else { 1.0 };
+    let mut at = |x: f64| {
+        let (value, slope) = tail(x);
+        (sign * libm::log(value / target), sign * slope)
+    };
+    let mut first = Some(at(start));
+    if first.is_some_and(|(_, slope)| slope.is_nan()) {
+        return increasing_secant(|x| first.take().unwrap_or_else(|| at(x)).0, start, 1.0);
+    }
+    increasing(
+        |x| {
+            let (value, slope) = first.take().unwrap_or_else(|| at(x));
+            Value { value, slope, chord: 0.0 }
+        },
+        start,
+        1.0,
     )
 }
 
