@@ -5,7 +5,7 @@
 use crate::accuracy::{Agreement, take_found};
 use crate::{
     amalgamated_means, anova_power, central, many_to_one, multivariate_t, noncentral_f, noncentral_t,
-    permutation, rank_counts, shapiro_wilk, studentized_range, wide,
+    permutation, rank_counts, shapiro_wilk, studentized_families, studentized_range, wide,
 };
 use serde_json::Value;
 use std::fmt::Write;
@@ -32,6 +32,9 @@ const CHECKS: &[fn()] = &[
     rank_counts::tails_of_jonckheeres_statistic_with_ties_agree_with_every_assignment,
     rank_counts::the_kruskal_wallis_test_of_tied_samples_agrees_with_every_assignment,
     shapiro_wilk::w_and_p_follow_the_published_algorithm,
+    studentized_families::the_studentized_range_agrees_with_values_at_random_points,
+    studentized_families::the_studentized_maximum_agrees_with_values_at_random_points,
+    studentized_families::comparisons_with_a_control_agree_with_values_at_random_points,
     studentized_range::both_tails_of_the_studentized_range_agree_with_the_reference_values,
     studentized_range::quantiles_of_the_studentized_range_agree_with_the_reference_values,
     wide::central_distributions_agree_with_ball_arithmetic_over_wide_ranges,

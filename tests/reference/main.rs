@@ -31,6 +31,7 @@ mod rank_counts;
 mod rank_properties;
 mod remembered;
 mod shapiro_wilk;
+mod studentized_families;
 mod studentized_range;
 mod trend;
 mod wide;

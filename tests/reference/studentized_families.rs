@@ -1,7 +1,7 @@
 //! Studentized range, studentized maximum modulus and comparisons with a control, widely and at random: tails and quantiles
 //! against quadruple precision, properties, and the messages for arguments outside the domain.
 //!
-//! Sources: `data/wide/*.json`, 18 digits, each file telling how; `data/wide/tails.cpp` computes them.
+//! Sources: `data/wide/*.json`, 18 digits, each file telling how; `data/wide/studentized.cpp` computes them.
 
 use crate::accuracy::{agree_on, permitted};
 use crate::cases::{number, relative_error};
@@ -238,7 +238,10 @@ fn infinite_degrees_of_freedom_are_the_limit_of_many() {
 #[test]
 fn hard_places_keep_their_digits() {
     let q = studentized_range::upper_quantile(1e-6, 200, 20.0).unwrap();
-    assert!(relative_error(studentized_range::sf(q, 200, 20.0).unwrap(), 1e-6) < permitted("studentized range, wide, tail"));
+    assert!(
+        relative_error(studentized_range::sf(q, 200, 20.0).unwrap(), 1e-6)
+            < permitted("studentized range, wide, tail")
+    );
     for d in [1e-9, 1e-3, 0.3] {
         let both = many_to_one::cdf(d, &[0.95], 14.5, Sides::Both).unwrap();
         let t = 2.0 * (student_t::cdf(d, 14.5).unwrap() - 0.5);
@@ -280,10 +283,7 @@ fn an_argument_outside_its_range_is_named_with_the_range() {
             "d is -inf, but must be a finite number",
         ),
         (many_to_one::cdf(1.0, &[], 5.0, Sides::Both), "number of loadings is 0, but must be from 1 to 1000"),
-        (
-            many_to_one::sf(1.0, &[0.5, 1.0], 5.0, Sides::Both),
-            "loadings is 1, but must be between -1 and 1",
-        ),
+        (many_to_one::sf(1.0, &[0.5, 1.0], 5.0, Sides::Both), "loadings is 1, but must be between -1 and 1"),
         (
             many_to_one::cdf(1.0, &two, f64::NAN, Sides::Both),
             "df is NaN, but must be greater than 0 (at least 0.001; infinity is allowed)",

@@ -1,6 +1,6 @@
 """Computes both tails anew for every case of the files named below (Python 3 and a C++ compiler; no packages).
 
-The quadruple precision program tails.cpp, built with `g++ -O2 tails.cpp -lquadmath` (GCC 12.2, libquadmath 12.2), does the
+The quadruple precision program studentized.cpp, built with `g++ -O2 studentized.cpp -lquadmath` (GCC 12.2, libquadmath 12.2), does the
 integrals; this script hands it the parameters of each case, exactly the doubles of the file, and writes `value`, the upper tail,
 and `lower`, the lower one, with 18 digits. `python3 studentized.py` writes the files; `python3 studentized.py --check` only compares.
 """
@@ -28,8 +28,8 @@ def line(kind, case):
 
 
 def main():
-    program = HERE / "tails"
-    subprocess.run(["g++", "-O2", str(HERE / "tails.cpp"), "-o", str(program), "-lquadmath"], check=True)
+    program = HERE / "studentized"
+    subprocess.run(["g++", "-O2", str(HERE / "studentized.cpp"), "-o", str(program), "-lquadmath"], check=True)
     for name, kind in KINDS.items():
         path = HERE / f"{name}.json"
         table = json.loads(path.read_text())
