@@ -188,7 +188,7 @@ impl Comparisons {
     fn upper(&self, d: f64, df: f64) -> Tail {
         let pairs = libm::log(self.count as f64 * if self.sides == Sides::Both { 2.0 } else { 1.0 });
         let log_shape = |s: f64| (pairs + normal::log_lower(-d * s)).min(0.0);
-        scale_mixture::tail(df, log_shape, |s| self.exceeds(d * s))
+        scale_mixture::tail(df, 1e-16, log_shape, |s| self.exceeds(d * s))
     }
 
     /// P(max <= d), and the derivative of its logarithm by log d.
@@ -198,7 +198,7 @@ impl Comparisons {
             let (_, top, curvature) = self.peak_below(d * s);
             top - 0.5 * libm::log(curvature)
         };
-        scale_mixture::tail(df, log_shape, |s| self.stays_below(d * s))
+        scale_mixture::tail(df, 1e-16, log_shape, |s| self.stays_below(d * s))
     }
 
     /// P(max > w) when σ is known.

@@ -48,15 +48,21 @@ impl Tail {
 
 /// A tail of a studentized quantity as the mixture of its tails for known σ.
 ///
-/// The integral ends when the square of its relative change by halving the step is below 1e-14. That square is the error
+/// The integral ends when the square of its relative change by halving the step is below `tolerance`. That square is the error
 /// unless a sharp part of the integrand carries a small share c of the whole; the error is then up to 1/c times as large. A tail
 /// that is nearly the whole has such a part, where it begins to fall, and is taken to a change of 1e-13 itself.
-pub(super) fn tail(df: f64, log_shape: impl Fn(f64) -> f64, mut inner: impl FnMut(f64) -> f64) -> Tail {
-    // For a bell curve the first halving changes the integral by 4e-10.
-    const STEPS: usize = 18;
-    let (mut estimate, mut slope) = mix_with_slope(df, STEPS, 1e-14, &log_shape, &mut inner);
+pub(super) fn tail(
+    df: f64,
+    tolerance: f64,
+    log_shape: impl Fn(f64) -> f64,
+    mut inner: impl FnMut(f64) -> f64,
+) -> Tail {
+    // For a bell curve the first halving of 18 steps changes the integral by 4e-10; with fewer degrees of freedom the
+    // integrand is wider than the steepest part of it, and takes more.
+    let steps = if df < 60.0 { 24 } else { 18 };
+    let (mut estimate, mut slope) = mix_with_slope(df, steps, tolerance, &log_shape, &mut inner);
     if estimate.value > 0.9 && df.is_finite() {
-        (estimate, slope) = mix_with_slope(df, 2 * STEPS, 1e-26, &log_shape, &mut inner);
+        (estimate, slope) = mix_with_slope(df, 36, 1e-26, &log_shape, &mut inner);
     }
     Tail { value: estimate.value.min(1.0), slope }
 }

@@ -97,14 +97,14 @@ fn solve(p: f64, upper_p: f64, count: f64, df: f64) -> Result<f64, OutOfDomain> 
 fn upper(m: f64, count: f64, df: f64) -> Tail {
     let log_shape = |s: f64| (libm::log(2.0 * count) + normal::log_lower(-m * s)).min(0.0);
     let inner = |s: f64| -libm::expm1(count * libm::log1p(-2.0 * normal::lower(-m * s)));
-    scale_mixture::tail(df, log_shape, inner)
+    scale_mixture::tail(df, 1e-13, log_shape, inner)
 }
 
 /// P(M <= m), and the derivative of its logarithm by log m.
 fn lower(m: f64, count: f64, df: f64) -> Tail {
     let log_inner = |s: f64| count * libm::log(libm::erf(m * s * FRAC_1_SQRT_2));
     let inner = |s: f64| libm::exp(log_inner(s));
-    scale_mixture::tail(df, log_inner, inner)
+    scale_mixture::tail(df, 1e-13, log_inner, inner)
 }
 
 fn variables(count: usize) -> Result<f64, OutOfDomain> {

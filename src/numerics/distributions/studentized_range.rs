@@ -165,7 +165,7 @@ impl Range {
     fn upper(&mut self, q: f64, df: f64) -> Tail {
         let pairs = libm::log((self.others * (self.others + 1)) as f64);
         let log_shape = |s: f64| (pairs + normal::log_lower(-q * s * FRAC_1_SQRT_2)).min(0.0);
-        scale_mixture::tail(df, log_shape, |s| self.range_tail(q * s))
+        scale_mixture::tail(df, 1e-13, log_shape, |s| self.range_tail(q * s))
     }
 
     /// P(Q <= q), and the derivative of its logarithm by log q.
@@ -174,7 +174,7 @@ impl Range {
         // k (2Φ(w/2) - 1)ⁿ bounds the probability; it is concave in w.
         let log_shape =
             |s: f64| (libm::log(n + 1.0) + n * libm::log(libm::erf(0.5 * FRAC_1_SQRT_2 * q * s))).min(0.0);
-        scale_mixture::tail(df, log_shape, |s| self.range_cdf(q * s))
+        scale_mixture::tail(df, 1e-13, log_shape, |s| self.range_cdf(q * s))
     }
 
     /// R(w), the probability of a range above w when σ is known.
