@@ -86,6 +86,9 @@ pub fn sf(t: f64, sizes: &[f64], control: f64, df: f64) -> Result<f64, OutOfDoma
 ///
 /// # Errors
 /// [`OutOfDomain`] if `p` is not from 0 to 1, or the sizes or `df` are not as for [`sf`].
+///
+/// # Accuracy
+/// Relative error below 1e-10; 1e-13 or better at the usual levels (`tests/reference/ACCURACY.md`).
 pub fn quantile(p: f64, sizes: &[f64], control: f64, df: f64) -> Result<f64, OutOfDomain> {
     let p = probability("p", p)?;
     solve(p, 1.0 - p, sizes, control, degrees_of_freedom("df", df)?)
@@ -95,6 +98,9 @@ pub fn quantile(p: f64, sizes: &[f64], control: f64, df: f64) -> Result<f64, Out
 ///
 /// # Errors
 /// [`OutOfDomain`] if `upper_p` is not from 0 to 1, or the sizes or `df` are not as for [`sf`].
+///
+/// # Accuracy
+/// Relative error below 1e-10; 1e-13 or better at the usual levels (`tests/reference/ACCURACY.md`).
 pub fn upper_quantile(upper_p: f64, sizes: &[f64], control: f64, df: f64) -> Result<f64, OutOfDomain> {
     let p = probability("upper_p", upper_p)?;
     solve(1.0 - p, p, sizes, control, degrees_of_freedom("df", df)?)

@@ -46,6 +46,9 @@ impl Refinement {
     }
 
     /// The probability as far as it is known: nothing before the first points are complete.
+    ///
+    /// # Accuracy
+    /// The standard error that is part of the answer; it falls about in proportion to the number of points.
     pub fn estimate(&self) -> Option<Answer> {
         match &self.state {
             State::Known(answer) => Some(*answer),

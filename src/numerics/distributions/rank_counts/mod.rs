@@ -50,16 +50,25 @@ pub struct InclusiveTails {
 
 impl InclusiveTails {
     /// Twice the smaller tail, at most 1: the two-sided p-value.
+    ///
+    /// # Accuracy
+    /// Relative, that of the tails.
     pub fn two_sided(&self) -> f64 {
         (2.0 * self.lower.min(self.upper)).min(1.0)
     }
 
     /// The lower tail with half the point (Lancaster 1961); with [`InclusiveTails::mid_upper`] it makes 1.
+    ///
+    /// # Accuracy
+    /// Relative, that of the tails: at least half the tail is left.
     pub fn mid_lower(&self) -> f64 {
         self.lower - 0.5 * self.point
     }
 
     /// The upper tail with half the point.
+    ///
+    /// # Accuracy
+    /// As for [`InclusiveTails::mid_lower`].
     pub fn mid_upper(&self) -> f64 {
         self.upper - 0.5 * self.point
     }
