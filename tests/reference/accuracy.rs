@@ -92,6 +92,7 @@ const PERMITTED: &[(&str, f64)] = &[
     ("noncentral over wide ranges, quantile", 1e-13),
     ("noncentral over wide ranges, noncentrality", 1e-11),
     ("studentized range, tail", 1e-13),
+    ("studentized range, tabulated tail", 1e-13),
     ("studentized range, quantile", 1e-13),
     ("many to one, tail", 1e-13),
     ("many to one, quantile", 1e-12),

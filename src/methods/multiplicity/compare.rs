@@ -5,7 +5,7 @@ use super::{Adjust, Family, Sides, control, range, scheffe, suitable};
 use crate::methods::contrasts::{Contrast, Set, in_words};
 use crate::methods::effect_size::{Coverage, StandardisedEffect, Standardiser};
 use crate::numerics::OutOfDomain;
-use crate::numerics::distributions::student_t;
+use crate::numerics::distributions::{student_t, studentized_range};
 use crate::study::{ContrastEstimate, DegreesOfFreedom, Estimates, Summary, Variances};
 use serde::Serialize;
 
@@ -157,14 +157,15 @@ pub fn compare(request: &Request) -> Result<Comparisons, CannotCompare> {
         Family::Set(Set::AgainstControl(control)) => control::loadings(request.estimates, control),
         _ => Vec::new(),
     };
-    let adjusted = adjusted(request, &tests, &raw, &loadings)?;
+    let mut range = None;
+    let adjusted = adjusted(request, &tests, &raw, &loadings, &mut range)?;
     let outside = outside(request);
-    let critical = critical_at(outside, request, &tests, &loadings)?;
+    let critical = critical_at(outside, request, &tests, &loadings, &mut range)?;
     let deciding = match request.adjust {
         // The raw p-value of a comparison that just reaches the critical value of the decision is its alpha.
         Adjust::PValues(_) => Vec::new(),
         _ if outside == request.alpha => critical.clone(),
-        _ => critical_at(request.alpha, request, &tests, &loadings)?,
+        _ => critical_at(request.alpha, request, &tests, &loadings, &mut range)?,
     };
     let alphas = alphas(request, &tests, &raw, &deciding)?;
     let decided = Decided { adjusted, critical, alphas };
@@ -259,21 +260,23 @@ fn adjusted(
     tests: &[Test],
     raw: &[f64],
     loadings: &[f64],
+    range: &mut Option<studentized_range::Family>,
 ) -> Result<Vec<f64>, OutOfDomain> {
     let levels = request.estimates.means.len();
-    let each = |of: &dyn Fn(&Test) -> Result<f64, OutOfDomain>| -> Result<Vec<f64>, OutOfDomain> {
+    let each = |of: &mut dyn FnMut(&Test) -> Result<f64, OutOfDomain>| -> Result<Vec<f64>, OutOfDomain> {
         // Integration leaves errors of a few units in the last place; an adjusted p-value is never below its raw one.
         tests.iter().map(|test| Ok(of(test)?.clamp(test.p, 1.0))).collect()
     };
     match request.adjust {
         Adjust::PValues(method) => Ok(p_values::adjusted(raw, method)),
         Adjust::Tukey | Adjust::GamesHowell => {
-            each(&|test| range::adjusted_p(test.t, levels, test.contrast.df))
+            let range = range::of(levels, range)?;
+            each(&mut |test| range::adjusted_p(test.t, range, test.contrast.df))
         }
         Adjust::Dunnett => {
-            each(&|test| control::adjusted_p(test.t, loadings, test.contrast.df, request.sides))
+            each(&mut |test| control::adjusted_p(test.t, loadings, test.contrast.df, request.sides))
         }
-        Adjust::Scheffe => each(&|test| scheffe::adjusted_p(test.t, levels, test.contrast.df)),
+        Adjust::Scheffe => each(&mut |test| scheffe::adjusted_p(test.t, levels, test.contrast.df)),
     }
 }
 
@@ -289,6 +292,7 @@ fn critical_at(
     request: &Request,
     tests: &[Test],
     loadings: &[f64],
+    range: &mut Option<studentized_range::Family>,
 ) -> Result<Vec<f64>, OutOfDomain> {
     let (levels, m) = (request.estimates.means.len(), tests.len() as f64);
     let mut last: Option<(f64, f64)> = None;
@@ -314,7 +318,7 @@ fn critical_at(
                 student_t::upper_quantile(upper, df)?
             }
             Adjust::Tukey | Adjust::GamesHowell => {
-                range::critical_q(outside, levels, df)? / std::f64::consts::SQRT_2
+                range::critical_q(outside, range::of(levels, range)?, df)? / std::f64::consts::SQRT_2
             }
             Adjust::Dunnett => control::critical(outside, loadings, df, request.sides)?,
             Adjust::Scheffe => scheffe::critical(outside, levels, df)?,

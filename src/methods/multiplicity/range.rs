@@ -6,7 +6,7 @@
 //! approximate, and liberal for very small groups.
 
 use crate::numerics::OutOfDomain;
-use crate::numerics::distributions::studentized_range;
+use crate::numerics::distributions::studentized_range::Family;
 
 /// Relative error that the distribution's tail stays below (`tests/reference/accuracy.rs` lists what it reaches).
 pub const RELATIVE_ERROR: f64 = 1e-12;
@@ -16,18 +16,29 @@ pub fn q(t: f64) -> f64 {
     t.abs() * std::f64::consts::SQRT_2
 }
 
-/// Adjusted p-value of a pair of `levels` levels with this t on `df` degrees of freedom.
+/// The range of `levels` means. One serves the whole family of comparisons: it is made the first time and then `known`.
 ///
 /// # Errors
 /// [`OutOfDomain`] from the distribution.
-pub fn adjusted_p(t: f64, levels: usize, df: f64) -> Result<f64, OutOfDomain> {
-    studentized_range::sf(q(t), levels, df)
+pub fn of(levels: usize, known: &mut Option<Family>) -> Result<&mut Family, OutOfDomain> {
+    match known {
+        Some(range) => Ok(range),
+        none => Ok(none.insert(Family::new(levels)?)),
+    }
+}
+
+/// Adjusted p-value of a pair with this t on `df` degrees of freedom; `range` is that of all levels.
+///
+/// # Errors
+/// [`OutOfDomain`] from the distribution.
+pub fn adjusted_p(t: f64, range: &mut Family, df: f64) -> Result<f64, OutOfDomain> {
+    range.sf(q(t), df)
 }
 
 /// The value of q that is exceeded with probability `alpha`; a difference is t = q / √2 standard errors.
 ///
 /// # Errors
 /// [`OutOfDomain`] from the distribution.
-pub fn critical_q(alpha: f64, levels: usize, df: f64) -> Result<f64, OutOfDomain> {
-    studentized_range::upper_quantile(alpha, levels, df)
+pub fn critical_q(alpha: f64, range: &mut Family, df: f64) -> Result<f64, OutOfDomain> {
+    range.upper_quantile(alpha, df)
 }

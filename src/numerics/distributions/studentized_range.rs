@@ -6,11 +6,15 @@
 //! another one lies more than w below it. The difference of powers is formed without cancellation, so the upper tail
 //! keeps its relative accuracy. Both integrals are trapezoidal sums of analytic, bell-shaped integrands.
 //!
+//! [`Family`] keeps R tabulated for many values with one number of groups ([`panels`]); the functions here are for one value.
+//!
 //! Domain: 2 to 1000 groups, any positive df or infinity, q >= 0.
 //!
 //! # References
 //! 1. Copenhaver and Holland (1988), J. Statist. Comput. Simul. 30, 1-15 (the distribution; its tables are reproduced).
 //! 2. Trefethen and Weideman (2014), SIAM Review 56, 385-458 (the quadrature).
+
+mod panels;
 
 use super::{
     degrees_of_freedom, normal, not_negative, probability,
@@ -18,6 +22,7 @@ use super::{
     student_t,
 };
 use crate::numerics::{OutOfDomain, quadrature, roots};
+use panels::Panels;
 use std::f64::consts::{FRAC_1_SQRT_2, SQRT_2};
 
 /// Lower-tail probability P(Q <= `q`) for `groups` means with `df` degrees of freedom.
@@ -33,7 +38,7 @@ pub fn cdf(q: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
     Ok(if upper <= 0.9 {
         1.0 - upper
     } else {
-        Range::new(groups).lower(q, degrees_of_freedom("df", df)?).value
+        Range::new(groups)?.lower(q, degrees_of_freedom("df", df)?).value
     })
 }
 
@@ -59,10 +64,8 @@ pub fn cdf(q: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
 /// # Ok::<(), levelwise::numerics::OutOfDomain>(())
 /// ```
 pub fn sf(q: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
-    let q = not_negative("q", q)?;
-    let groups = number_of_groups(groups)?;
-    let df = degrees_of_freedom("df", df)?;
-    Ok(if q == 0.0 { 1.0 } else { Range::new(groups).upper(q, df).value })
+    not_negative("q", q)?;
+    Range::new(groups)?.sf(q, df)
 }
 
 /// The q with P(Q <= q) = `p`; 0 at 0, infinite at 1.
@@ -74,7 +77,7 @@ pub fn sf(q: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
 /// Relative error at most 1e-12 for 2 to 200 groups, df from 0.5 and probabilities down to 1e-14.
 pub fn quantile(p: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
     let p = probability("p", p)?;
-    solve(p, 1.0 - p, groups, df)
+    Range::new(groups)?.solve(p, 1.0 - p, df)
 }
 
 /// The q with P(Q > q) = `upper_p`; infinite at 0, 0 at 1.
@@ -86,33 +89,50 @@ pub fn quantile(p: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
 /// Relative error at most 1e-12 for 2 to 200 groups, df from 0.5 and probabilities down to 1e-14.
 pub fn upper_quantile(upper_p: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
     let p = probability("upper_p", upper_p)?;
-    solve(1.0 - p, p, groups, df)
+    Range::new(groups)?.solve(1.0 - p, p, df)
 }
 
-/// The q with the given tails, found on the smaller of the two.
-fn solve(lower: f64, upper: f64, groups: usize, df: f64) -> Result<f64, OutOfDomain> {
-    let groups = number_of_groups(groups)?;
-    let df = degrees_of_freedom("df", df)?;
-    if lower == 0.0 || upper == 0.0 {
-        return Ok(if lower == 0.0 { 0.0 } else { f64::INFINITY });
+/// The studentized range of one number of groups, for many values: the adjusted p-values of a family of comparisons, whether
+/// they share their df or not.
+///
+/// The first value takes about as long as [`sf`] does, those after it a tenth of that.
+pub struct Family {
+    range: Range,
+}
+
+impl Family {
+    /// The family for `groups` means.
+    ///
+    /// # Errors
+    /// [`OutOfDomain`] if `groups` is not from 2 to 1000.
+    pub fn new(groups: usize) -> Result<Family, OutOfDomain> {
+        let mut range = Range::new(groups)?;
+        range.panels = Some(Panels::new());
+        Ok(Family { range })
     }
-    let mut range = Range::new(groups);
-    // Bonferroni's bound for k(k-1)/2 pairs, sharp in the tail.
-    let share = upper / (groups * (groups - 1)) as f64;
-    let start = libm::log(SQRT_2 * student_t::upper_quantile(share, df)?);
-    let log_q = if upper <= 0.5 {
-        roots::log_tail(|log_q| range.upper(libm::exp(log_q), df).pair(), upper, true, start)
-    } else {
-        roots::log_tail(|log_q| range.lower(libm::exp(log_q), df).pair(), lower, false, start)
-    };
-    Ok(libm::exp(log_q))
-}
 
-fn number_of_groups(groups: usize) -> Result<usize, OutOfDomain> {
-    if (2..=1000).contains(&groups) {
-        Ok(groups)
-    } else {
-        Err(OutOfDomain { argument: "groups", value: groups as f64, allowed: "from 2 to 1000" })
+    /// Upper-tail probability P(Q > `q`), as by [`sf`].
+    ///
+    /// # Errors
+    /// [`OutOfDomain`] if `q` is negative or not finite, or `df` is not positive.
+    ///
+    /// # Accuracy
+    /// As for [`sf`].
+    pub fn sf(&mut self, q: f64, df: f64) -> Result<f64, OutOfDomain> {
+        not_negative("q", q)?;
+        self.range.sf(q, df)
+    }
+
+    /// The q with P(Q > q) = `upper_p`, as by [`upper_quantile`].
+    ///
+    /// # Errors
+    /// [`OutOfDomain`] if `upper_p` is not from 0 to 1, or `df` is not positive.
+    ///
+    /// # Accuracy
+    /// As for [`upper_quantile`].
+    pub fn upper_quantile(&mut self, upper_p: f64, df: f64) -> Result<f64, OutOfDomain> {
+        let p = probability("upper_p", upper_p)?;
+        self.range.solve(1.0 - p, p, df)
     }
 }
 
@@ -130,6 +150,8 @@ struct Range {
     /// (n-1)/2, (n-2)/3, ...: 1 - (1-x)ⁿ = n x (1 - (n-1)/2 x (1 - (n-2)/3 x (...))); for n x <= 0.1 they are multiplied by
     /// less than 0.1/j, so that the first one left out counts for less than 1e-10/10! = 3e-17.
     ratios: [f64; TERMS],
+    /// R, where it is wanted tabulated.
+    panels: Option<Panels>,
 }
 
 /// Number of ratios of the binomial series.
@@ -143,7 +165,11 @@ struct Node {
 }
 
 impl Range {
-    fn new(groups: usize) -> Range {
+    fn new(groups: usize) -> Result<Range, OutOfDomain> {
+        if !(2..=1000).contains(&groups) {
+            let value = groups as f64;
+            return Err(OutOfDomain { argument: "groups", value, allowed: "from 2 to 1000" });
+        }
         let others = groups - 1;
         let k = groups as f64;
         // The more groups, the steeper the left flank of φΦⁿ: steps with errors of 1e-13 for 2 to 200 groups, found
@@ -151,21 +177,54 @@ impl Range {
         let step = 1.0 / (1.78 + 1.2 * libm::log(0.5 * k));
         let peak = normal::upper_quantile_unchecked(1.0 / k).max(0.0);
         let ratios = std::array::from_fn(|i| (others as f64 - (i + 1) as f64) / (i + 2) as f64);
-        Range {
+        Ok(Range {
             others,
             step,
             peak,
             grid: Vec::with_capacity(160),
             first: libm::floor(-9.0 / step) as i32,
             ratios,
+            panels: None,
+        })
+    }
+
+    /// P(Q > q) for a q that is not negative.
+    fn sf(&mut self, q: f64, df: f64) -> Result<f64, OutOfDomain> {
+        let df = degrees_of_freedom("df", df)?;
+        Ok(if q == 0.0 { 1.0 } else { self.upper(q, df).value })
+    }
+
+    /// The q with the given tails, found on the smaller of the two.
+    fn solve(&mut self, lower: f64, upper: f64, df: f64) -> Result<f64, OutOfDomain> {
+        let df = degrees_of_freedom("df", df)?;
+        if lower == 0.0 || upper == 0.0 {
+            return Ok(if lower == 0.0 { 0.0 } else { f64::INFINITY });
         }
+        // Bonferroni's bound for k(k-1)/2 pairs, sharp in the tail.
+        let share = upper / (self.others * (self.others + 1)) as f64;
+        let start = libm::log(SQRT_2 * student_t::upper_quantile(share, df)?);
+        let log_q = if upper <= 0.5 {
+            roots::log_tail(|log_q| self.upper(libm::exp(log_q), df).pair(), upper, true, start)
+        } else {
+            roots::log_tail(|log_q| self.lower(libm::exp(log_q), df).pair(), lower, false, start)
+        };
+        Ok(libm::exp(log_q))
     }
 
     /// P(Q > q), and the derivative of its logarithm by log q.
     fn upper(&mut self, q: f64, df: f64) -> Tail {
         let pairs = libm::log((self.others * (self.others + 1)) as f64);
         let log_shape = |s: f64| (pairs + normal::log_lower(-q * s * FRAC_1_SQRT_2)).min(0.0);
-        scale_mixture::tail(df, 1e-13, log_shape, |s| self.range_tail(q * s))
+        scale_mixture::tail(df, 1e-13, log_shape, |s| self.known_sigma_tail(q * s))
+    }
+
+    /// R(w), from the table if there is one.
+    fn known_sigma_tail(&mut self, w: f64) -> f64 {
+        // The table is put aside while it asks for what it does not know yet.
+        let Some(mut panels) = self.panels.take() else { return self.range_tail(w) };
+        let tail = panels.at(w, |w| self.range_tail(w));
+        self.panels = Some(panels);
+        tail
     }
 
     /// P(Q <= q), and the derivative of its logarithm by log q.
@@ -261,4 +320,21 @@ fn one_minus_power(x: f64, count: usize, ratios: &[f64; TERMS]) -> f64 {
         return 1.0 - power(1.0 - x, count);
     }
     mean * ratios.iter().rev().fold(1.0, |sum, ratio| 1.0 - ratio * x * sum)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_table_agrees_with_the_integrals() {
+        for groups in [2, 3, 7, 20, 77, 200, 1000] {
+            let mut family = Family::new(groups).unwrap();
+            for i in 1..1200 {
+                let w = f64::from(i) * 0.0451;
+                let (table, integral) = (family.range.known_sigma_tail(w), family.range.range_tail(w));
+                assert!((table / integral - 1.0).abs() < 3e-13, "{groups} {w}: {table:e} {integral:e}");
+            }
+        }
+    }
 }

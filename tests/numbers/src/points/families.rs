@@ -27,6 +27,20 @@ fn add_studentized_range(table: &mut Table) {
             }
         }
     }
+    add_studentized_range_family(table);
+}
+
+fn add_studentized_range_family(table: &mut Table) {
+    for groups in [2, 20, 200] {
+        let Ok(mut family) = studentized_range::Family::new(groups) else { continue };
+        for df in [2.5, 40.0, INFINITY] {
+            for q in [0.4, 3.3, 6.0, 18.0] {
+                table.add("studentized_range::Family::sf", &[&groups, &df, &q], family.sf(q, df));
+            }
+            let found = family.upper_quantile(0.05, df);
+            table.add("studentized_range::Family::upper_quantile", &[&groups, &df], found);
+        }
+    }
 }
 
 fn add_studentized_maximum(table: &mut Table) {

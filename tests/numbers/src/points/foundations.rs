@@ -109,6 +109,13 @@ fn add_roots(table: &mut Table) {
         let secant = roots::increasing_secant(|x| libm::sinh(x) - target, 0.5, 1.0);
         table.add("roots::increasing_secant", &[&target], secant);
     }
+    for target in [1e-200, 0.02, 0.7] {
+        // The tail exp(-x), with and without its slope.
+        for slope in [-1.0, f64::NAN] {
+            let found = roots::log_tail(|x| (libm::exp(-x), slope), target, true, 0.5);
+            table.add("roots::log_tail", &[&target, &slope], found);
+        }
+    }
 }
 
 fn add_sums_and_decimals(table: &mut Table) {
