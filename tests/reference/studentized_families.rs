@@ -295,3 +295,34 @@ fn an_argument_outside_its_range_is_named_with_the_range() {
         assert_eq!(result.unwrap_err().to_string(), text);
     }
 }
+
+/// The power law of the tails, and of one variable's lower tail, is that of Student's t, which has its own checks.
+#[test]
+fn tails_and_quantiles_at_the_ends_of_the_doubles_are_those_of_t() {
+    for df in [0.7, 1.0, 1.7] {
+        for t in [1e99, 1e101, 1e154, 1e155, 1e170] {
+            let both = 2.0 * student_t::sf(t, df).unwrap();
+            let range = studentized_range::sf(t * std::f64::consts::SQRT_2, 2, df).unwrap();
+            let maximum = studentized_maximum::sf(t, 1, df).unwrap();
+            let two_sided = many_to_one::sf(t, &[0.6], df, Sides::Both).unwrap();
+            let above = 2.0 * many_to_one::sf(t, &[0.6], df, Sides::Greater).unwrap();
+            let below = 2.0 * many_to_one::cdf(-t, &[0.6], df, Sides::Greater).unwrap();
+            for found in [range, maximum, two_sided, above, below] {
+                assert!((found / both - 1.0).abs() < 1e-12, "{df} {t:e}: {found:e} {both:e}");
+            }
+        }
+    }
+    for p in [1e-300, 1e-30, 1e-17, 3e-16] {
+        // Next to 0 the density of t with 5 df is 8/(3π√5).
+        let t = 0.5 * p * (3.0 * std::f64::consts::PI * 5.0_f64.sqrt() / 8.0);
+        let range = studentized_range::quantile(p, 2, 5.0).unwrap() / std::f64::consts::SQRT_2;
+        let maximum = studentized_maximum::quantile(p, 1, 5.0).unwrap();
+        let two_sided = many_to_one::quantile(p, &[0.6], 5.0, Sides::Both).unwrap();
+        for found in [range, maximum, two_sided] {
+            assert!((found / t - 1.0).abs() < 1e-12, "{p:e}: {found:e} {t:e}");
+        }
+        let below = many_to_one::quantile(p, &[0.6], 5.0, Sides::Greater).unwrap();
+        let t = student_t::quantile(p, 5.0).unwrap();
+        assert!((below / t - 1.0).abs() < 1e-12, "{p:e}: {below:e} {t:e}");
+    }
+}

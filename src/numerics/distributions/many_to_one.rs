@@ -14,7 +14,7 @@
 
 use super::{
     degrees_of_freedom, finite, normal, probability,
-    scale_mixture::{self, Tail},
+    scale_mixture::{self, FAR, Tail},
     student_t,
 };
 use crate::numerics::{OutOfDomain, quadrature, roots};
@@ -115,7 +115,13 @@ fn solve(lower: f64, upper: f64, comparisons: &Comparisons, df: f64) -> Result<f
     }
     // Bonferroni's bound, sharp in the tail.
     let share = upper / (comparisons.count as f64 * if both { 2.0 } else { 1.0 });
-    let start = student_t::upper_quantile(share, df)?;
+    let bound = student_t::upper_quantile(share, df)?;
+    // One comparison and a probability below the rounding of 1 leave nothing to start from.
+    let start = match comparisons.sides {
+        Sides::Both if bound == 0.0 => lower,
+        Sides::Greater if bound == f64::NEG_INFINITY => student_t::quantile(lower, df)?,
+        _ => bound,
+    };
     let falling = upper <= 0.5;
     let target = if falling { upper } else { lower };
     let tail = |d: f64| if falling { comparisons.upper(d, df) } else { comparisons.lower(d, df) };
@@ -186,6 +192,9 @@ impl Comparisons {
 
     /// P(max > d), and the derivative of its logarithm by log d.
     fn upper(&self, d: f64, df: f64) -> Tail {
+        if d > FAR {
+            return self.upper(FAR, df).beyond(d, df);
+        }
         let pairs = libm::log(self.count as f64 * if self.sides == Sides::Both { 2.0 } else { 1.0 });
         let log_shape = |s: f64| (pairs + normal::log_lower(-d * s)).min(0.0);
         scale_mixture::tail(df, 1e-16, log_shape, |s| self.exceeds(d * s))
@@ -193,6 +202,9 @@ impl Comparisons {
 
     /// P(max <= d), and the derivative of its logarithm by log d.
     fn lower(&self, d: f64, df: f64) -> Tail {
+        if d < -FAR {
+            return self.lower(-FAR, df).beyond(-d, df);
+        }
         // Laplace's approximation of the integral over the control.
         let log_shape = |s: f64| {
             let (_, top, curvature) = self.peak_below(d * s);

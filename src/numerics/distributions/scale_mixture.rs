@@ -39,7 +39,21 @@ pub(super) struct Tail {
     pub slope: f64,
 }
 
+/// From here on a studentized tail is its leading power q^-df to all digits (the next is smaller by about df²/q²), and squares
+/// of q come near the end of the range of doubles.
+pub(super) const FAR: f64 = 1e100;
+
+/// The share of a tail at [`FAR`] that is left at `q`.
+pub(super) fn left_beyond(q: f64, df: f64) -> f64 {
+    libm::pow(FAR / q, df)
+}
+
 impl Tail {
+    /// The tail at `q` from this one, which is that at [`FAR`].
+    pub fn beyond(self, q: f64, df: f64) -> Tail {
+        Tail { value: self.value * left_beyond(q, df), slope: -df }
+    }
+
     /// Value and slope, as the search for a quantile takes them.
     pub fn pair(self) -> (f64, f64) {
         (self.value, self.slope)

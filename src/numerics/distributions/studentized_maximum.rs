@@ -12,7 +12,7 @@
 
 use super::{
     degrees_of_freedom, normal, not_negative, probability,
-    scale_mixture::{self, Tail},
+    scale_mixture::{self, FAR, Tail},
     student_t,
 };
 use crate::numerics::{OutOfDomain, roots};
@@ -83,8 +83,9 @@ fn solve(p: f64, upper_p: f64, count: f64, df: f64) -> Result<f64, OutOfDomain> 
     if p == 0.0 || upper_p == 0.0 {
         return Ok(if p == 0.0 { 0.0 } else { f64::INFINITY });
     }
-    // Bonferroni's bound, sharp in the tail.
-    let start = libm::log(student_t::upper_quantile(0.5 * upper_p / count, df)?);
+    // Bonferroni's bound, sharp in the tail; one variable and a p below the rounding of 1 leave 0, and then m is about p.
+    let bound = student_t::upper_quantile(0.5 * upper_p / count, df)?;
+    let start = libm::log(if bound > 0.0 { bound } else { p });
     let log_m = if upper_p <= 0.5 {
         roots::log_tail(|log_m| upper(libm::exp(log_m), count, df).pair(), upper_p, true, start)
     } else {
@@ -95,6 +96,9 @@ fn solve(p: f64, upper_p: f64, count: f64, df: f64) -> Result<f64, OutOfDomain> 
 
 /// P(M > m), and the derivative of its logarithm by log m.
 fn upper(m: f64, count: f64, df: f64) -> Tail {
+    if m > FAR {
+        return upper(FAR, count, df).beyond(m, df);
+    }
     let log_shape = |s: f64| (libm::log(2.0 * count) + normal::log_lower(-m * s)).min(0.0);
     let inner = |s: f64| -libm::expm1(count * libm::log1p(-2.0 * normal::lower(-m * s)));
     scale_mixture::tail(df, 1e-13, log_shape, inner)

@@ -18,7 +18,7 @@ mod panels;
 
 use super::{
     degrees_of_freedom, normal, not_negative, probability,
-    scale_mixture::{self, Tail},
+    scale_mixture::{self, FAR, Tail},
     student_t,
 };
 use crate::numerics::{OutOfDomain, quadrature, roots};
@@ -202,7 +202,9 @@ impl Range {
         }
         // Bonferroni's bound for k(k-1)/2 pairs, sharp in the tail.
         let share = upper / (self.others * (self.others + 1)) as f64;
-        let start = libm::log(SQRT_2 * student_t::upper_quantile(share, df)?);
+        let bound = SQRT_2 * student_t::upper_quantile(share, df)?;
+        // Two groups and a probability below the rounding of 1 leave 0, and then q is about that probability.
+        let start = libm::log(if bound > 0.0 { bound } else { lower });
         let log_q = if upper <= 0.5 {
             roots::log_tail(|log_q| self.upper(libm::exp(log_q), df).pair(), upper, true, start)
         } else {
@@ -213,6 +215,9 @@ impl Range {
 
     /// P(Q > q), and the derivative of its logarithm by log q.
     fn upper(&mut self, q: f64, df: f64) -> Tail {
+        if q > FAR {
+            return self.upper(FAR, df).beyond(q, df);
+        }
         let pairs = libm::log((self.others * (self.others + 1)) as f64);
         let log_shape = |s: f64| (pairs + normal::log_lower(-q * s * FRAC_1_SQRT_2)).min(0.0);
         scale_mixture::tail(df, 1e-13, log_shape, |s| self.known_sigma_tail(q * s))

@@ -27,7 +27,8 @@
 mod equal;
 mod walk;
 
-use super::{degrees_of_freedom, finite, normal, probability, scale_mixture, student_t};
+use super::scale_mixture::{self, FAR, left_beyond};
+use super::{degrees_of_freedom, finite, normal, probability, student_t};
 use crate::numerics::{OutOfDomain, roots};
 use equal::EqualDoses;
 use walk::Walk;
@@ -38,9 +39,6 @@ const TOLERANCE: f64 = 1e-15;
 const MOST_DOSES: usize = 20;
 /// Beyond this w no double holds the tail: Φ(-45) is below 1e-400.
 const FARTHEST: f64 = 45.0;
-/// From here on a tail is its leading power, t^-df, to all digits (the next is smaller by about df²/t²), and squares of t
-/// come near the end of the range of doubles.
-const FAR: f64 = 1e100;
 /// The integral over the control's mean takes steps as short as 1/√(1 + n₁k/n₀); beyond this the walk is cheaper.
 const MOST_DOSED: f64 = 100.0;
 
@@ -183,7 +181,7 @@ impl Doses {
     /// P(T > t).
     fn upper(&self, t: f64, df: f64) -> f64 {
         if t > FAR {
-            return self.upper(FAR, df) * libm::pow(FAR / t, df);
+            return self.upper(FAR, df) * left_beyond(t, df);
         }
         // Between the highest dose alone and Bonferroni's bound.
         let log_shape = |s: f64| (libm::log(self.count) + normal::log_lower(-t * s)).min(0.0);
@@ -193,7 +191,7 @@ impl Doses {
     /// P(T <= t).
     fn lower(&self, t: f64, df: f64) -> f64 {
         if t < -FAR {
-            return self.lower(-FAR, df) * libm::pow(-FAR / t, df);
+            return self.lower(-FAR, df) * left_beyond(-t, df);
         }
         // Below 0 the mean of all doses decides (all must be low), above 0 the highest dose.
         let scale = if t < 0.0 { t * self.all_against_last } else { t };
