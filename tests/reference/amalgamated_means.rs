@@ -176,3 +176,17 @@ proptest! {
         }
     }
 }
+
+/// With few degrees of freedom the tail for known σ falls over a small part of the integral, which a coarse one steps over.
+#[test]
+fn tails_add_to_one_with_the_fewest_degrees_of_freedom() {
+    for df in [0.001, 0.01, 0.15, 0.5, 1.0] {
+        for t in [-25.3, -1.0, -0.01, 0.3, 2.0, 54.2] {
+            for sizes in [&[8.0][..], &[8.0; 3], &[5.0, 6.0, 9.0]] {
+                let sum = amalgamated_means::cdf(t, sizes, 8.0, df).unwrap()
+                    + amalgamated_means::sf(t, sizes, 8.0, df).unwrap();
+                assert!((sum - 1.0).abs() < 2e-11, "{df} {t} {sizes:?}: {:e}", sum - 1.0);
+            }
+        }
+    }
+}

@@ -326,3 +326,22 @@ fn tails_and_quantiles_at_the_ends_of_the_doubles_are_those_of_t() {
         assert!((below / t - 1.0).abs() < 1e-12, "{p:e}: {below:e} {t:e}");
     }
 }
+
+/// Far below 1 df the estimated standard deviation spreads over hundreds of powers of ten.
+#[test]
+fn single_comparisons_are_those_of_t_down_to_the_fewest_degrees_of_freedom() {
+    for df in [0.001, 0.01, 0.1, 0.3] {
+        for t in [0.05, 6.4, 25.3, 304.0] {
+            let one = student_t::sf(t, df).unwrap();
+            for (found, expected) in [
+                (studentized_range::sf(t * std::f64::consts::SQRT_2, 2, df).unwrap(), 2.0 * one),
+                (studentized_maximum::sf(t, 1, df).unwrap(), 2.0 * one),
+                (many_to_one::sf(t, &[0.5], df, Sides::Both).unwrap(), 2.0 * one),
+                (many_to_one::sf(t, &[0.5], df, Sides::Greater).unwrap(), one),
+                (many_to_one::sf(-t, &[0.5], df, Sides::Greater).unwrap(), 1.0 - one),
+            ] {
+                assert!((found / expected - 1.0).abs() < 1e-12, "{df} {t}: {found:e} {expected:e}");
+            }
+        }
+    }
+}

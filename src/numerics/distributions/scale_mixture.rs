@@ -73,10 +73,15 @@ pub(super) fn tail(
 ) -> Tail {
     // For a bell curve the first halving of 18 steps changes the integral by 4e-10; with fewer degrees of freedom the
     // integrand is wider than the steepest part of it, and takes more.
-    let steps = if df < 60.0 { 24 } else { 18 };
+    let steps = match df {
+        // log S spreads over about 1/df, but `inner` still falls over a length of about 1.
+        _ if df < 0.5 => (12.0 / df).min(1000.0) as usize,
+        _ if df < 60.0 => 24,
+        _ => 18,
+    };
     let (mut estimate, mut slope) = mix_with_slope(df, steps, tolerance, &log_shape, &mut inner);
     if estimate.value > 0.9 && df.is_finite() {
-        (estimate, slope) = mix_with_slope(df, 36, 1e-26, &log_shape, &mut inner);
+        (estimate, slope) = mix_with_slope(df, steps.max(36), 1e-26, &log_shape, &mut inner);
     }
     Tail { value: estimate.value.min(1.0), slope }
 }

@@ -33,7 +33,7 @@ use crate::numerics::{OutOfDomain, roots};
 use equal::EqualDoses;
 use walk::Walk;
 
-/// Relative error at which the integral over S stops.
+/// Where the integral over S stops, as [`scale_mixture::tail`] counts it.
 const TOLERANCE: f64 = 1e-15;
 /// Most doses.
 const MOST_DOSES: usize = 20;
@@ -185,7 +185,7 @@ impl Doses {
         }
         // Between the highest dose alone and Bonferroni's bound.
         let log_shape = |s: f64| (libm::log(self.count) + normal::log_lower(-t * s)).min(0.0);
-        scale_mixture::mix(df, 12, TOLERANCE, log_shape, |s| self.exceeds(t * s)).value.min(1.0)
+        scale_mixture::tail(df, TOLERANCE, log_shape, |s| self.exceeds(t * s)).value
     }
 
     /// P(T <= t).
@@ -196,7 +196,7 @@ impl Doses {
         // Below 0 the mean of all doses decides (all must be low), above 0 the highest dose.
         let scale = if t < 0.0 { t * self.all_against_last } else { t };
         let log_shape = |s: f64| normal::log_lower(scale * s);
-        scale_mixture::mix(df, 12, TOLERANCE, log_shape, |s| self.stays_below(t * s)).value.min(1.0)
+        scale_mixture::tail(df, TOLERANCE, log_shape, |s| self.stays_below(t * s)).value
     }
 
     /// P(T > w) when σ is known.
