@@ -108,3 +108,20 @@ fn tails_at_the_ends_of_the_range_are_tails() {
     assert_eq!(noncentral_chi_squared::cdf(1e300, 3.0, 5.0).unwrap(), 1.0);
     assert_eq!(noncentral_f::sf(1e300, 3.0, f64::INFINITY, 1e7).unwrap(), 0.0);
 }
+
+/// Where the probability hardly depends on the noncentrality its digits are few, and what is promised is the probability itself.
+#[test]
+fn a_solved_noncentrality_gives_the_probability_it_was_solved_for() {
+    for (df1, df2) in [(2.0, 27.0), (412_372.0, 1.55), (203_747.0, 3.07), (1.0, 1e6), (60.0, f64::INFINITY)] {
+        for ncp in [0.0024, 0.2, 5.0, 400.0, 1e4] {
+            for p in [1e-6, 0.025, 0.5, 0.975] {
+                let f = noncentral_f::quantile(p, df1, df2, ncp).unwrap();
+                let given = noncentral_f::cdf(f, df1, df2, ncp).unwrap();
+                let solved = noncentral_f::noncentrality(f, df1, df2, given).unwrap();
+                let back = noncentral_f::cdf(f, df1, df2, solved).unwrap();
+                let error = relative_error(back, given);
+                assert!(error < 1e-13, "{df1} {df2} {ncp} {p}: {solved}, {error:e}");
+            }
+        }
+    }
+}

@@ -42,9 +42,14 @@ pub fn kruskal_wallis(
     Ok(share_at_least(&states, &sizes, doubled_ranks.iter().sum(), &observed))
 }
 
-/// Bits of one group's part of a state: its number of observations (5 bits), then its doubled rank sum (10 bits).
-const WIDTH: usize = 15;
-const PART: u128 = (1 << WIDTH) - 1;
+/// Bits of one group's part of a state: its number of observations, then its doubled rank sum (10 bits).
+const WIDTH: usize = COUNT + 10;
+const COUNT: usize = 5;
+
+/// One group's part of a state.
+fn part(state: u128, group: usize) -> u128 {
+    state >> (WIDTH * group) & ((1 << WIDTH) - 1)
+}
 
 /// The states and the ways to reach them after one more rank, when `dealt` ranks are dealt out already. A state has a
 /// part for every group but the last.
@@ -52,10 +57,10 @@ fn deal(states: &[(u128, u64)], sizes: &[usize], dealt: usize, rank: u32) -> Vec
     let (last, others) = sizes.split_last().expect("at least two groups");
     let mut next = Vec::with_capacity(states.len() * sizes.len());
     for &(state, ways) in states {
-        let part = |group: usize| state >> (WIDTH * group) & PART;
+        let part = |group: usize| part(state, group);
         let (mut in_others, mut alike) = (0, 1);
         for (group, &size) in others.iter().enumerate() {
-            let count = (part(group) & 31) as usize;
+            let count = (part(group) & ((1 << COUNT) - 1)) as usize;
             in_others += count;
             // Groups that are alike so far come to the same: one stands for all of them.
             if others.get(group + 1) == Some(&size) && part(group) == part(group + 1) {
@@ -63,7 +68,7 @@ fn deal(states: &[(u128, u64)], sizes: &[usize], dealt: usize, rank: u32) -> Vec
                 continue;
             }
             if count < size {
-                let more = (1 + (u128::from(rank) << 5)) << (WIDTH * group);
+                let more = (1 + (u128::from(rank) << COUNT)) << (WIDTH * group);
                 next.push((exchanged(state + more, others, group), alike * ways));
             }
             alike = 1;
@@ -88,7 +93,7 @@ fn deal(states: &[(u128, u64)], sizes: &[usize], dealt: usize, rank: u32) -> Vec
 fn exchanged(mut state: u128, sizes: &[usize], grown: usize) -> u128 {
     for group in grown + 1..sizes.len() {
         let (low, high) = (WIDTH * (group - 1), WIDTH * group);
-        let (one, other) = (state >> low & PART, state >> high & PART);
+        let (one, other) = (part(state, group - 1), part(state, group));
         if sizes[group] != sizes[grown] || one <= other {
             break;
         }
@@ -108,7 +113,7 @@ fn share_at_least(states: &[(u128, u64)], sizes: &[usize], sum: u32, observed: &
     let (mut at_least, mut all) = (0_u64, 0_u64);
     for &(state, ways) in states {
         let mut sums: Vec<u32> =
-            (0..sizes.len() - 1).map(|group| (state >> (15 * group + 5) & 1023) as u32).collect();
+            (0..sizes.len() - 1).map(|group| (part(state, group) >> COUNT) as u32).collect();
         sums.push(sum - sums.iter().sum::<u32>());
         all += ways;
         if weighted(&sums) >= threshold {
