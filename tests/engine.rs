@@ -2,6 +2,7 @@
 
 use levelwise::notebook::engine::{Condition, Edit, Engine};
 use levelwise::notebook::kinds::Kind;
+use levelwise::notebook::sentence::Part;
 
 const NOTES: &str = "levelwise = 1\n\n[[cell]]\nkind = \"note\"\ntext = \"one\"\n\n[[cell]]\nkind = \"note\"\nname = \"b\"\ntext = \"two\"\n";
 
@@ -274,4 +275,28 @@ fn deleting_the_study_leaves_its_readers_waiting_for_a_name_and_undo_settles_the
     assert_eq!(engine.cell(overall).expect("a cell").condition, Condition::NeedsYou);
     assert_eq!(apply(&mut engine, Edit::Undo), [0u32; 0]);
     assert_eq!(engine.cell(overall).expect("a cell").condition, Condition::Settled);
+}
+
+/// A value typed wrong where decimals have a comma: "14,9x" is one text, and stays one when the blank is shown and sent again.
+#[test]
+fn a_text_with_a_comma_in_a_list_survives_its_way_through_the_blank() {
+    let mut engine = opened(
+        "levelwise = 1\n[[cell]]\nkind = \"data\"\nname = \"d\"\ntable = \"a;b\\nx;1,5\\ny;14,9x\\n\"\n",
+    );
+    let cell = engine.order()[0];
+    for (typed, written) in
+        [("14,9x;", "[\"14,9x\"]"), ("14,9x; NA", "[\"14,9x\", \"NA\"]"), ("NA, -", "[\"NA\", \"-\"]")]
+    {
+        let mut typed = typed.to_owned();
+        for _ in 0..2 {
+            apply(&mut engine, Edit::Field { cell, field: "missing".into(), value: typed.clone() });
+            assert!(engine.write().contains(&format!("missing = {written}")), "{typed}: {}", engine.write());
+            let sentence = engine.cell(cell).expect("a cell").sentence;
+            let blank = sentence.iter().find_map(|part| match part {
+                Part::Blank(blank) if blank.field == "missing" => Some(blank.value.clone()),
+                _ => None,
+            });
+            typed = blank.expect("the blank");
+        }
+    }
 }

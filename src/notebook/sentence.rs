@@ -223,8 +223,12 @@ fn typed_value(value: &Value) -> String {
         Value::String(text) => text.value().clone(),
         Value::Array(array) => {
             let parts: Vec<String> = array.iter().map(typed_value).collect();
-            let separator = if parts.iter().any(|part| part.contains([',', ';'])) { "; " } else { ", " };
-            parts.join(separator)
+            match parts.as_slice() {
+                // Without a second one only a semicolon at the end says that the comma is part of the text.
+                [one] if one.contains(',') => format!("{one};"),
+                _ if parts.iter().any(|part| part.contains([',', ';'])) => parts.join("; "),
+                _ => parts.join(", "),
+            }
         }
         other => {
             let mut plain = other.clone();

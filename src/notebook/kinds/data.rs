@@ -32,7 +32,7 @@ pub const TABLE: KindTable = KindTable {
         Field::new("table", Holds::LongText, "table", "Delimited text with a header row").required(),
         Field::new("separator", Holds::Choice(SEPARATORS), "column separator", "What stands between two columns").or("whatever separates them in the first line"),
         Field::new("decimal", Holds::Choice(DECIMALS), "decimal sign", "How decimals are written").or("a point or a comma, as found"),
-        Field::new("missing", Holds::Texts, "codes for missing values", "What is written where a value is missing, besides an empty cell").or("nothing, \"NA\" or \".\""),
+        Field::new("missing", Holds::Texts, "codes for missing values", "What is written where a value is missing, besides an empty cell; a semicolon after each keeps commas in them").or("nothing, \"NA\" or \".\""),
         Field::new("columns", Holds::NamedTexts, "forced types", "Columns whose type is not the one found: a line \"name: number\" or \"name: label\" each").or("as found").such_as("ward: label"),
         Field::new("exclude", Holds::Records(&[Part { name: "where", number: false }, Part { name: "reason", number: false }]), "rows left out", "Rows left out of every analysis: a line \"condition; reason\" each, such as \"score > 100; typing error\"").or("no row").such_as("score > 100; typing error"),
         Field::new("derive", Holds::NamedTexts, "new columns", "New columns computed from others: a line \"name: expression\" each, such as \"gain: after - before\"").or("none").such_as("gain: after - before"),
