@@ -72,7 +72,8 @@ impl Family {
     /// [`OutOfDomain`] if `c` is not finite, or negative when both sides count.
     ///
     /// # Accuracy
-    /// As listed in `tests/reference/accuracy.rs` up to rank 3; beyond, the standard error that is returned.
+    /// Relative error below 1e-12 up to rank 3 (`tests/reference/ACCURACY.md` has what is reached); beyond, the standard error that
+    /// is returned.
     pub fn sf(&self, c: f64, effort: Effort) -> Result<Answer, OutOfDomain> {
         Ok(self.refine(c, effort.seed)?.run(effort))
     }
@@ -80,7 +81,8 @@ impl Family {
     /// P(max <= `c`).
     ///
     /// # Errors
-    /// As for [`Family::sf`].
+    /// As for [`Family::sf`]; with one side and `c` below 0 up to rank 3 an absolute error of 1e-14 times the tail of one
+    /// statistic.
     ///
     /// # Accuracy
     /// As for [`Family::sf`]; for negative `c` up to rank 3 an absolute error of 1e-14 P(T₁ <= c).
