@@ -7,4 +7,5 @@ pub mod multiplicity;
 pub mod overall;
 pub mod power;
 pub mod profile;
+pub mod slices;
 pub mod trend;
