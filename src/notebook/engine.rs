@@ -2,10 +2,14 @@
 //! it and nothing else: every outcome is kept under a fingerprint of its ask and of the values that it read.
 //!
 //! The engine works in slices: [`Engine::apply`] takes an edit and settles what is already known;
-//! [`Engine::advance`] computes one cell. Between slices it takes new edits.
+//! [`Engine::advance`] computes one cell, or does a slice of the work for a cell that takes longer than a moment. Between
+//! slices it takes new edits.
 
 mod cells;
 mod edits;
+mod running;
+#[cfg(test)]
+mod running_tests;
 
 pub use edits::{Edit, Refused};
 
@@ -21,6 +25,7 @@ use super::kinds::{Kind, Read};
 use super::outcome::{Fingerprint, Outcome, Value};
 use super::sentence::{self, Around, Part};
 use cells::Slot;
+use running::Running;
 use serde::Serialize;
 use sha2::{Digest, Sha256};
 use std::sync::Arc;
@@ -79,6 +84,9 @@ pub struct CellView<'a> {
     /// The latest outcome; an outcome shown while the cell is working may be out of date.
     pub outcome: Option<&'a Arc<Outcome>>,
     pub sentence: Vec<Part>,
+    /// How far long work for the cell is, in a sentence.
+    pub progress: Option<&'a str>,
+    /// The cell in one line; `progress` while there is such.
     pub headline: String,
 }
 
@@ -92,6 +100,8 @@ pub struct Engine {
     graph: Graph,
     history: History,
     keeper: Keeper,
+    /// Long work in the order in which it was begun.
+    running: Vec<Running>,
     recomputed: Vec<u32>,
 }
 
@@ -147,30 +157,24 @@ impl Engine {
         self.slots.iter().all(|slot| slot.condition != Condition::Working)
     }
 
-    /// Computes one cell; false when nothing was left to compute.
-    pub fn advance(&mut self) -> bool {
-        let order = self.graph.order.clone();
-        let Some((index, key, read)) = order.into_iter().find_map(|index| match self.stage(index) {
-            Stage::Ready(key, read) => Some((index, key, read)),
-            _ => None,
-        }) else {
-            return false;
-        };
-        let slot = &mut self.slots[index];
-        let Some(ask) = slot.ask.clone() else { return false };
-        let outcome = ask.kind.evaluate(&ask, &read);
+    /// Takes the outcome that has been computed for the cell at `index`.
+    fn finish(&mut self, index: usize, key: Fingerprint, outcome: Outcome) {
         let value = outcome.value.as_ref().map(Value::fingerprint);
         let kept = Kept { outcome: Arc::new(outcome), value };
         self.keeper.keep(key, kept.clone());
-        self.recomputed.push(slot.id);
-        slot.settle(key, kept);
+        self.recomputed.push(self.slots[index].id);
+        self.slots[index].settle(key, kept);
         self.settle_known();
-        true
     }
 
     /// Computes until nothing is left.
     pub fn settle(&mut self) {
         while self.advance() {}
+    }
+
+    /// Whether an answer was computed since changes were last taken; otherwise what changed meanwhile is progress.
+    pub fn has_new_answers(&self) -> bool {
+        !self.recomputed.is_empty()
     }
 
     /// What changed since this was last called.
@@ -195,6 +199,7 @@ impl Engine {
             diagnostics: &slot.diagnostics,
             outcome: slot.outcome.as_ref(),
             sentence: self.sentence(slot),
+            progress: self.progress(slot.awaits.as_ref()),
             headline: self.headline(slot),
         })
     }
@@ -216,6 +221,9 @@ impl Engine {
     }
 
     fn headline(&self, slot: &Slot) -> String {
+        if let Some(progress) = self.progress(slot.awaits.as_ref()) {
+            return progress.to_string();
+        }
         match slot.condition {
             Condition::NeedsYou => {
                 slot.diagnostics.first().map(|first| first.message.clone()).unwrap_or_default()
@@ -259,22 +267,35 @@ impl Engine {
         self.settle_known();
     }
 
-    /// Gives every cell its condition, taking kept outcomes where they fit.
+    /// Gives every cell its condition, taking kept outcomes where they fit, and drops work that nobody waits for.
     fn settle_known(&mut self) {
         for index in self.graph.order.clone() {
-            match self.stage(index) {
+            let stage = self.stage(index);
+            let mut awaits = None;
+            match stage {
                 Stage::Current => self.slots[index].confirm(),
                 Stage::Ready(key, _) => {
                     match self.keeper.find(&key).filter(|kept| self.slots[index].can_take(kept)) {
                         Some(kept) => self.slots[index].settle(key, kept),
-                        None => self.slots[index].set_condition(Condition::Working, Vec::new()),
+                        None => {
+                            awaits = Some(key);
+                            self.slots[index].set_condition(Condition::Working, Vec::new());
+                        }
                     }
                 }
                 Stage::Soon => self.slots[index].set_condition(Condition::Working, Vec::new()),
                 Stage::Waiting => self.slots[index].clear(Condition::Waiting, Vec::new()),
                 Stage::Broken(problems) => self.slots[index].clear(Condition::NeedsYou, problems),
             }
+            // A progress line comes or goes with what is awaited.
+            let shown = |key: &Option<Fingerprint>| self.progress(key.as_ref()).is_some();
+            let changed =
+                self.slots[index].awaits != awaits && (shown(&self.slots[index].awaits) || shown(&awaits));
+            let slot = &mut self.slots[index];
+            slot.awaits = awaits;
+            slot.changed |= changed;
         }
+        self.drop_pointless_work();
     }
 
     /// Where the cell at `index` stands, given where those that it reads from stand.

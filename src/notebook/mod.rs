@@ -16,3 +16,4 @@ pub mod outcome;
 pub mod report;
 pub mod results;
 pub mod sentence;
+pub mod work;

@@ -139,6 +139,7 @@ pub struct CellMessage {
     sentence: Vec<PartMessage>,
     diagnostics: Vec<DiagnosticMessage>,
     headline: String,
+    progress: Option<String>,
     answer: String,
     writeup: Option<String>,
     table_rows: Option<usize>,
@@ -167,6 +168,7 @@ impl CellMessage {
                 .map(|problem| DiagnosticMessage::new(problem, cell.text))
                 .collect(),
             headline: cell.headline.clone(),
+            progress: cell.progress.map(str::to_string),
             answer: answer.map(html::answer).unwrap_or_default(),
             writeup: answer.and_then(|answer| answer.writeup.clone()),
             table_rows,

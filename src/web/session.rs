@@ -9,8 +9,12 @@ use std::sync::Arc;
 use wasm_bindgen::prelude::*;
 
 /// Cells are computed for about this long, in milliseconds, before the page is told and newer requests are heard: a
-/// frame of a screen with sixty a second. Cells that take longer are told one by one.
+/// frame of a screen with sixty a second. Cells that take longer are told one by one; long work is cut into slices below this.
 const SLICE: f64 = 16.0;
+
+/// The page is told of progress no more often than this, in milliseconds: a line that changes faster is not read, and every
+/// telling draws the cell.
+const CALM: f64 = 250.0;
 
 /// Texts longer than this are not sent again while they stay the same.
 const LONG_TEXT: usize = 20_000;
@@ -24,6 +28,8 @@ pub struct Session {
     seq: u32,
     revision: u32,
     told: BTreeMap<u32, Arc<str>>,
+    /// When the page was last told.
+    told_at: f64,
 }
 
 #[wasm_bindgen]
@@ -32,7 +38,8 @@ impl Session {
     #[wasm_bindgen(constructor)]
     pub fn new(post: js_sys::Function) -> Session {
         std::panic::set_hook(Box::new(|info| web_sys::console::error_1(&info.to_string().into())));
-        let session = Session { engine: Engine::new(), post, seq: 0, revision: 0, told: BTreeMap::new() };
+        let session =
+            Session { engine: Engine::new(), post, seq: 0, revision: 0, told: BTreeMap::new(), told_at: 0.0 };
         session.say(&Message::Ready { version: env!("CARGO_PKG_VERSION"), kinds: KindMessage::all() });
         session
     }
@@ -52,7 +59,9 @@ impl Session {
 
     /// Computes a slice of what is left and tells the page; false when nothing is left to compute.
     pub fn advance(&mut self) -> bool {
-        if self.work() {
+        let worked = self.work();
+        let news = self.engine.has_new_answers() || self.engine.is_settled();
+        if worked && (news || js_sys::Date::now() - self.told_at >= CALM) {
             self.tell();
         }
         !self.engine.is_settled()
@@ -96,6 +105,7 @@ impl Session {
 
     fn tell(&mut self) {
         self.revision += 1;
+        self.told_at = js_sys::Date::now();
         let told = &mut self.told;
         let mut known = |cell: &CellView<'_>| match told.insert(cell.id, cell.text.clone()) {
             Some(before) => before == *cell.text && before.len() > LONG_TEXT,

@@ -178,7 +178,7 @@ fn given_p_values_need_no_study() {
     let text = "kind = \"comparisons\"\nfamily = \"given p-values\"\ngiven = { a = 0.010, b = 0.015, c = 0.020, d = 0.030, e = 0.041, f = 0.300 }\nalso = [\"Benjamini-Hochberg\"]";
     let (ask, problems) = Ask::parse(text).unwrap();
     assert!(problems.is_empty());
-    let outcome = ask.kind.evaluate(&ask, &Read::default());
+    let outcome = ask.kind.evaluate(&ask, &Read::default()).finish();
     assert!(outcome.diagnostics.is_empty(), "{:?}", outcome.diagnostics);
     near(&numbers(&outcome, "p_adjusted"), &[0.06, 0.075, 0.08, 0.09, 0.09, 0.3], 1e-12);
     let also: Vec<f64> = outcome.results["rows"]
@@ -276,7 +276,7 @@ fn what_is_missing_or_mistyped_is_said_at_its_place() {
 #[test]
 fn without_a_study_the_field_is_named() {
     let (ask, _) = Ask::parse("kind = \"comparisons\"\nfamily = \"all pairs\"").unwrap();
-    let outcome = ask.kind.evaluate(&ask, &Read::default());
+    let outcome = ask.kind.evaluate(&ask, &Read::default()).finish();
     assert!(outcome.diagnostics[0].message.contains("The field \"study\" is missing"));
 }
 

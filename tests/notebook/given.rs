@@ -62,7 +62,7 @@ pub fn summarised(mut study: Study) -> Study {
 pub fn evaluated(text: &str, study: Study) -> Outcome {
     let (ask, problems) = Ask::parse(text).expect("an ask");
     assert!(problems.is_empty(), "{problems:?}");
-    ask.kind.evaluate(&ask, &Read::new(vec![("study", Value::Study(Arc::new(study)))]))
+    ask.kind.evaluate(&ask, &Read::new(vec![("study", Value::Study(Arc::new(study)))])).finish()
 }
 
 /// The answer as text, wide enough that no line breaks inside a number.

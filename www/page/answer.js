@@ -24,7 +24,9 @@ export function createAnswer(say) {
      */
     draw(cell, fileStem) {
       setText(headline, cell.headline);
-      headline.hidden = cell.headline === '' || cell.answer === '' || cell.answer.includes('class="a-headline"');
+      // While long work is going on, how far it is stands in the place of the headline of the answer before.
+      element.classList.toggle('going-on', cell.progress !== '');
+      headline.hidden = cell.progress === '' && (cell.headline === '' || cell.answer === '' || cell.answer.includes('class="a-headline"'));
       element.dataset['condition'] = cell.condition === 'needs you' ? 'needs' : cell.condition;
       element.setAttribute('aria-busy', String(cell.condition === 'working'));
       if (cell.answer === shown && cell.writeup === writeup) return;

@@ -50,14 +50,15 @@
  * @property {Condition} condition
  * @property {Part[]} sentence
  * @property {Diagnostic[]} diagnostics
- * @property {string} headline
+ * @property {string} headline the cell in one line; `progress` while there is such
+ * @property {string|null} [progress] how far long work for the cell is, in a sentence
  * @property {string} answer HTML from the engine
  * @property {string|null} [writeup]
  * @property {number|null} [table_rows] the number of rows of a data cell
  * @property {number} revision
  */
 
-/** @typedef {Readonly<CellMessage & { text: string, name: string|null, writeup: string, table_rows: number|null }>} CellView */
+/** @typedef {Readonly<CellMessage & { text: string, name: string|null, progress: string, writeup: string, table_rows: number|null }>} CellView */
 
 /**
  * A kind as the engine describes it.

@@ -101,6 +101,7 @@ function merged(state, message, seq) {
     ...message,
     text,
     name: message.name ?? null,
+    progress: message.progress ?? '',
     writeup: message.writeup ?? '',
     table_rows: message.table_rows ?? null,
     diagnostics: message.diagnostics ?? [],

@@ -31,6 +31,12 @@ test('a text that is left out is the one known before', () => {
   assert.equal(second.cells.get(1).text, 'long');
 });
 
+test('a cell says how far long work is while there is some, and no longer', () => {
+  const first = afterUpdate(EMPTY, update(1, [1], [cell(1, { condition: 'working', headline: '4 %', progress: '4 %' })]));
+  assert.equal(first.cells.get(1).progress, '4 %');
+  assert.equal(afterUpdate(first, update(1, [1], [cell(1, { progress: null })])).cells.get(1).progress, '');
+});
+
 test('an answer to an older request does not undo newer typing', () => {
   let state = afterUpdate(EMPTY, update(1, [1], [cell(1)]));
   state = afterTyping(state, 1, 'abc', 3);

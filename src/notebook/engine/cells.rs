@@ -28,6 +28,8 @@ pub(super) struct Slot {
     pub diagnostics: Vec<Diagnostic>,
     /// What the outcome was made from.
     pub key: Option<Fingerprint>,
+    /// What the outcome that is being computed is made from.
+    pub awaits: Option<Fingerprint>,
     pub outcome: Option<Arc<Outcome>>,
     /// Fingerprint of the value handed on.
     pub value: Option<Fingerprint>,
@@ -49,6 +51,7 @@ impl Slot {
             condition: Condition::Working,
             diagnostics: Vec::new(),
             key: None,
+            awaits: None,
             outcome: None,
             value: None,
             changed: true,

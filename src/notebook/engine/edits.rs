@@ -283,7 +283,8 @@ impl Engine {
         let study = self.slots[study].id;
         let data_name = self.slots[at].name.clone().unwrap_or_default();
         self.set_field(study, "data", &data_name)?;
-        let outcome = self.slots[at].ask.as_ref().map(|ask| ask.kind.evaluate(ask, &Read::default()));
+        let outcome =
+            self.slots[at].ask.as_ref().map(|ask| ask.kind.evaluate(ask, &Read::default()).finish());
         if let Some(Value::Table(table)) = outcome.and_then(|outcome| outcome.value) {
             let only = |kind| {
                 let mut of_kind = table.columns.iter().filter(|column| column.kind == kind);

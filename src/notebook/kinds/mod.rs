@@ -16,7 +16,8 @@ mod wording;
 
 use super::ask::Ask;
 use super::fields::KindTable;
-use super::outcome::{Outcome, Value};
+use super::outcome::Value;
+use super::work::Evaluation;
 
 /// A kind of cell.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -81,18 +82,18 @@ impl Kind {
         }
     }
 
-    /// Answers the ask from what the cells that it names have handed over.
-    pub fn evaluate(self, ask: &Ask, read: &Read) -> Outcome {
+    /// Answers the ask from what the cells that it names have handed over, at once or as work in slices.
+    pub fn evaluate(self, ask: &Ask, read: &Read) -> Evaluation {
         match self {
-            Kind::Note => note::evaluate(ask),
-            Kind::Data => data::evaluate(ask),
-            Kind::Summary => summary::evaluate(ask),
-            Kind::Study => study::evaluate(ask, read),
-            Kind::Profile => profile::evaluate(ask, read),
-            Kind::Overall => overall::evaluate(ask, read),
-            Kind::Comparisons => comparisons::evaluate(ask, read),
-            Kind::Trend => trend::evaluate(ask, read),
-            Kind::Power => power::evaluate(ask),
+            Kind::Note => note::evaluate(ask).into(),
+            Kind::Data => data::evaluate(ask).into(),
+            Kind::Summary => summary::evaluate(ask).into(),
+            Kind::Study => study::evaluate(ask, read).into(),
+            Kind::Profile => profile::evaluate(ask, read).into(),
+            Kind::Overall => overall::evaluate(ask, read).into(),
+            Kind::Comparisons => comparisons::evaluate(ask, read).into(),
+            Kind::Trend => trend::evaluate(ask, read).into(),
+            Kind::Power => power::evaluate(ask).into(),
         }
     }
 }
