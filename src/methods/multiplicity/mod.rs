@@ -14,8 +14,12 @@ mod explain;
 mod given;
 pub mod p_values;
 mod procedure;
+pub mod protected;
 mod range;
+pub mod ranges;
 mod scheffe;
+pub mod step_down_control;
+pub mod unequal;
 
 pub use compare::{Bounds, CannotCompare, ComparisonRow, Comparisons, IntervalKind, Request, compare};
 pub use explain::{Disagreement, Explanation, carrying_contrast, explain};

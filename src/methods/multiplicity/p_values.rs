@@ -90,7 +90,7 @@ pub fn levels_by_rank(m: usize, method: PValueMethod, alpha: f64) -> Option<Vec<
 }
 
 /// 1 - (1 - p)^m without the loss of small p, and never below p by rounding.
-fn sidak(p: f64, m: f64) -> f64 {
+pub fn sidak(p: f64, m: f64) -> f64 {
     if p >= 1.0 { 1.0 } else { (-libm::expm1(m * libm::log1p(-p))).max(p) }
 }
 
