@@ -25,6 +25,7 @@ mod noncentral_f;
 mod noncentral_t;
 mod one_way;
 mod open_data;
+mod partition;
 mod permutation;
 mod profile;
 mod properties;

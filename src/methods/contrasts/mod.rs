@@ -4,13 +4,15 @@
 //! Notation: L = Σ c μ with Σ c = 0 (Scheffé 1959, The Analysis of Variance, section 3.5).
 
 mod expression;
+mod partition;
 mod rank;
 mod sets;
 mod words;
 
 pub use expression::{ExpressionError, coefficients};
+pub use partition::{NoPartition, Overlap, Part, Partition, partition};
 pub use rank::rank;
-pub use sets::{Set, ready_set};
+pub use sets::{Set, polynomial_set, ready_set};
 pub use words::in_words;
 
 use crate::table::nearest;

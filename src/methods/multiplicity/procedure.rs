@@ -191,7 +191,14 @@ mod tests {
 
     #[test]
     fn the_default_suits_every_family() {
-        let sets = [Set::AllPairs, Set::AgainstControl(0), Set::Neighbours, Set::AgainstRest];
+        let sets = [
+            Set::AllPairs,
+            Set::AgainstControl(0),
+            Set::Neighbours,
+            Set::AgainstRest,
+            Set::AgainstEarlier,
+            Set::Polynomial,
+        ];
         let families = sets.map(Family::Set).into_iter().chain([Family::Contrasts, Family::Given]);
         for family in families {
             for variances in [Variances::Equal, Variances::Unequal] {

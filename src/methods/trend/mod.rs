@@ -2,6 +2,7 @@
 
 mod polynomial;
 
+pub(in crate::methods) use polynomial::scaled;
 pub use polynomial::{
     LackOfFit, NoTrend, PolynomialTrend, TrendRequest, TrendRow, Weights, coefficients, degree_name,
     highest_degree, polynomial,

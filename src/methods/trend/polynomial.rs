@@ -108,6 +108,8 @@ pub enum NoTrend {
     TooFewLevels { degree: usize, levels: usize },
     #[error("the degree is {degree}, but must be from 1 to 4")]
     Degree { degree: usize },
+    #[error("some scores are too close together, for the range of all, to compute the {name} contrast")]
+    TooClose { name: &'static str },
     #[error(
         "the {name} contrast has no finite estimate and standard error: the values or scores are too large or too small to compute with"
     )]
@@ -121,9 +123,12 @@ pub fn highest_degree(levels: usize) -> usize {
     levels.saturating_sub(1).min(4)
 }
 
-/// "linear", "quadratic", "cubic" or "quartic".
+/// "linear", "quadratic", "cubic", "quartic" or "quintic".
 pub fn degree_name(degree: usize) -> &'static str {
-    ["constant", "linear", "quadratic", "cubic", "quartic"].get(degree).copied().unwrap_or("higher")
+    ["constant", "linear", "quadratic", "cubic", "quartic", "quintic"]
+        .get(degree)
+        .copied()
+        .unwrap_or("higher")
 }
 
 /// Contrasts of every degree from 1 to the one asked for, with the tests of what they leave over.
@@ -193,8 +198,31 @@ pub fn coefficients(scores: &[f64], weights: &[f64], degree: usize) -> Result<Ve
     Ok(weighted.collect())
 }
 
-/// P_0 .. P_degree at the scores.
+/// P_0 .. P_degree at the scores, each monic in the score.
 fn orthogonal(scores: &[f64], weights: &[f64], degree: usize) -> Result<Vec<Vec<f64>>, NoTrend> {
+    if !(1..=4).contains(&degree) {
+        return Err(NoTrend::Degree { degree });
+    }
+    let Scaled { mut polynomials, half_range } = scaled(scores, weights, degree)?;
+    // Monic in the scaled score; times the scale to the power r it is monic in the score itself.
+    let mut scale = 1.0;
+    for polynomial in polynomials.iter_mut().skip(1) {
+        scale *= half_range;
+        polynomial.iter_mut().for_each(|p| *p *= scale);
+    }
+    Ok(polynomials)
+}
+
+/// Orthogonal polynomials of the scores moved and scaled to the range from about -1 to 1.
+pub(in crate::methods) struct Scaled {
+    /// P_0 .. P_degree, each monic in the scaled score.
+    pub polynomials: Vec<Vec<f64>>,
+    /// What a scaled score of 1 is in the scores.
+    pub half_range: f64,
+}
+
+/// The polynomials of every degree up to `degree`, which is below the number of levels.
+pub(in crate::methods) fn scaled(scores: &[f64], weights: &[f64], degree: usize) -> Result<Scaled, NoTrend> {
     check(scores, weights.len(), degree)?;
     let k = scores.len();
     let centre = sum(scores.iter().map(|x| x / k as f64));
@@ -212,13 +240,7 @@ fn orthogonal(scores: &[f64], weights: &[f64], degree: usize) -> Result<Vec<Vec<
         }
         found.push(next);
     }
-    // Monic in the scaled score; times the scale to the power r it is monic in the score itself.
-    let mut scale = 1.0;
-    for polynomial in found.iter_mut().skip(1) {
-        scale *= half_range;
-        polynomial.iter_mut().for_each(|p| *p *= scale);
-    }
-    Ok(found)
+    Ok(Scaled { polynomials: found, half_range })
 }
 
 fn check(scores: &[f64], levels: usize, degree: usize) -> Result<(), NoTrend> {
@@ -228,9 +250,6 @@ fn check(scores: &[f64], levels: usize, degree: usize) -> Result<(), NoTrend> {
     let falls = |pair: &&[f64]| !(pair[0] < pair[1] && pair[0].is_finite() && pair[1].is_finite());
     if let Some(pair) = scores.windows(2).find(falls) {
         return Err(NoTrend::NotIncreasing { before: pair[0], after: pair[1] });
-    }
-    if !(1..=4).contains(&degree) {
-        return Err(NoTrend::Degree { degree });
     }
     if degree + 1 > levels {
         return Err(NoTrend::TooFewLevels { degree, levels });

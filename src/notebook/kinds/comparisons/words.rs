@@ -65,6 +65,10 @@ pub fn family(asked: &Asked, study: &Study) -> String {
         Family::Set(Set::AllPairs) => format!("all pairs of {factor}"),
         Family::Set(Set::Neighbours) => format!("neighbouring levels of {factor}"),
         Family::Set(Set::AgainstRest) => format!("each level of {factor} against the mean of the others"),
+        Family::Set(Set::AgainstEarlier) => {
+            format!("each level of {factor} against the mean of the earlier ones")
+        }
+        Family::Set(Set::Polynomial) => format!("polynomial trends over the order of {factor}"),
         Family::Contrasts => format!("contrasts of {factor}"),
         Family::Given => "given p-values".to_string(),
     }
