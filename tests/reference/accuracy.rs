@@ -111,6 +111,8 @@ const PERMITTED: &[(&str, f64)] = &[
     ("rank counts", 1e-14),
     ("rank counts with ties", 1e-14),
     ("rank statistics in large samples", 1e-13),
+    ("comparisons by ranks", 1e-13),
+    ("detectable difference", 1e-10),
     ("multivariate t, rank 2 and 3", 1e-13),
     ("multivariate t, quantile", 1e-12),
     ("multivariate t, rectangle, absolute", 1e-14),

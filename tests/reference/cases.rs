@@ -32,3 +32,12 @@ pub fn log_relative_error(computed: f64, expected: f64) -> f64 {
     let error = relative_error(computed, expected);
     if error == 0.0 { 15.0 } else { (-libm::log10(error)).min(15.0) }
 }
+
+/// Fails unless `computed` is the printed number `digits`, to half a unit of its last digit.
+pub fn rounds_to(computed: f64, digits: &str) {
+    let decimals = digits.split_once('.').map_or(0, |(_, decimals)| decimals.len());
+    let printed: f64 = digits.parse().unwrap_or_else(|_| panic!("\"{digits}\" is not a number"));
+    // The rounding of the printed number itself is far below a thousandth of the half unit.
+    let half = 0.5005 * libm::pow(10.0, -(decimals as f64));
+    assert!((computed - printed).abs() <= half, "computed {computed}, printed {digits}");
+}

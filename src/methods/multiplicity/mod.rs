@@ -10,6 +10,7 @@
 
 mod compare;
 mod control;
+pub mod detectable;
 mod explain;
 mod given;
 mod graph;
@@ -19,6 +20,7 @@ mod procedure;
 pub mod protected;
 mod range;
 pub mod ranges;
+pub mod ranks;
 mod scheffe;
 pub mod step_down_control;
 pub mod unequal;
