@@ -3,6 +3,9 @@
 //! Labels such as "small" or "large" are on purpose not given here.
 
 mod contrast;
+pub mod control;
+pub mod ratio;
+pub mod superiority;
 mod whole_factor;
 
 pub use contrast::{Coverage, Interval, StandardisedBy, StandardisedEffect, Standardiser, hedges_correction};
