@@ -224,6 +224,151 @@ fn sample_curve() -> Curve {
     }
 }
 
+fn node(label: &str, weight: Option<f64>, mark: Mark) -> NetworkNode {
+    NetworkNode { label: label.to_owned(), weight, mark }
+}
+
+/// Two doses on two outcomes: one rejected, and with it its weight gone.
+fn sample_network() -> Network {
+    let arrow = |from, to, share| NetworkArrow { from, to, share };
+    Network {
+        title: "Graph of the hypotheses".into(),
+        words: "The graph when it stops.".into(),
+        solid: "rejected".into(),
+        hollow: "retained".into(),
+        nodes: vec![
+            node("high: pain", None, Mark::Solid),
+            node("low: pain", Some(0.75), Mark::Hollow),
+            node("high: function", Some(0.25), Mark::Hollow),
+            node("low: function", Some(0.0), Mark::Hollow),
+        ],
+        arrows: vec![
+            arrow(1, 2, 1.0 / 3.0),
+            arrow(1, 3, 2.0 / 3.0),
+            arrow(2, 1, 1.0),
+            arrow(3, 1, 0.9999),
+            arrow(3, 2, 0.0001),
+        ],
+    }
+}
+
+#[test]
+fn a_graph_shows_its_nodes_weights_and_shares() {
+    let figure = network(&sample_network());
+    // One mark a node and one of each in the key.
+    assert_eq!((count(&figure, "a-solid"), count(&figure, "a-hollow")), (2, 4));
+    let words = texts(&figure);
+    for expected in
+        ["rejected", "low: pain", "weight 0.75", "weight 0", "0.333", "0.667", "1", ">0.999", "<0.001"]
+    {
+        assert!(words.iter().any(|w| w == expected), "{expected} in {words:?}");
+    }
+    assert_eq!(words.iter().filter(|w| w.starts_with("weight")).count(), 3);
+    let named = read(&figure).descendants().filter(|n| n.has_tag_name("g")).count();
+    assert_eq!(named, 5, "one group an arrow");
+    for expected in [
+        "A graph of 4 nodes. The graph when it stops. high: pain: rejected. low: pain: weight 0.75; retained.",
+        "low: pain passes 0.333 to high: function. low: pain passes 0.667 to low: function.",
+    ] {
+        assert!(figure.description.contains(expected), "{}", figure.description);
+    }
+}
+
+#[test]
+fn arrows_that_all_pass_the_same_say_it_once() {
+    let all = |n: usize| -> Network {
+        let arrows = (0..n).flat_map(|from| (0..n).map(move |to| NetworkArrow { from, to, share: 0.5 }));
+        let nodes = (0..n).map(|i| node(&format!("H{i}"), Some(0.1), Mark::Hollow)).collect();
+        Network { nodes, arrows: arrows.collect(), ..sample_network() }
+    };
+    let figure = network(&all(3));
+    assert!(texts(&figure).iter().any(|t| t == "Every arrow passes on the share 0.5 of the weight."));
+    assert!(!texts(&figure).iter().any(|t| t == "0.5"));
+    // There and back in one line.
+    assert_eq!(read(&figure).descendants().filter(|n| n.has_tag_name("g")).count(), 3);
+    let large = network(&all(13));
+    assert_eq!(count(&large, "a-hollow"), 1, "the key alone");
+    assert!(
+        texts(&large).iter().any(|t| t == "A graph of 13 nodes is not drawn; the table has all of them.")
+    );
+    assert!(large.description.ends_with("It is not drawn; the table lists every node."));
+}
+
+/// Left, top, right and bottom of what words fill, with half of their size for a letter, which is less than most take.
+fn filled(n: roxmltree::Node<'_, '_>) -> [f64; 4] {
+    let number = |name: &str| n.attribute(name).map_or(0.0, |value| value.parse::<f64>().unwrap());
+    let shown: String = n.children().filter(|c| c.is_text()).filter_map(|c| c.text()).collect();
+    let width = 0.5 * number("font-size") * shown.chars().count() as f64;
+    let left = match n.attribute("text-anchor") {
+        Some("middle") => number("x") - width / 2.0,
+        Some(_) => number("x") - width,
+        None => number("x"),
+    };
+    [left, number("y") - 10.0, left + width, number("y") + 2.0]
+}
+
+#[test]
+fn words_of_a_graph_cover_no_node_and_no_other_words_and_stay_inside() {
+    for nodes in 1..=12 {
+        let list =
+            (0..nodes).map(|i| node(&format!("{i} minutes \u{2212} none at all"), Some(0.125), Mark::Hollow));
+        let arrows = (0..nodes).flat_map(|from| {
+            [1, 2, 5].map(|step| NetworkArrow { from, to: (from + step) % nodes, share: step as f64 / 8.0 })
+        });
+        let figure =
+            network(&Network { nodes: list.collect(), arrows: arrows.collect(), ..sample_network() });
+        let document = read(&figure);
+        let words: Vec<[f64; 4]> =
+            document.descendants().filter(|n| n.has_tag_name("text")).map(filled).collect();
+        let circles = document.descendants().filter(|n| n.has_tag_name("circle")).map(|n| {
+            let number = |name: &str| n.attribute(name).unwrap().parse::<f64>().unwrap();
+            let (x, y, r) = (number("cx"), number("cy"), number("r"));
+            [x - r, y - r, x + r, y + r]
+        });
+        let circles: Vec<[f64; 4]> = circles.collect();
+        let meets = |a: &[f64; 4], b: &[f64; 4]| a[0] < b[2] && b[0] < a[2] && a[1] < b[3] && b[1] < a[3];
+        for (i, word) in words.iter().enumerate() {
+            assert!(word[0] >= 0.0 && word[2] <= 440.0 && word[3] <= height(&figure), "{nodes}: {word:?}");
+            assert!(!circles.iter().any(|circle| meets(word, circle)), "{nodes} nodes: {word:?}");
+            assert!(!words[..i].iter().any(|other| meets(word, other)), "{nodes} nodes: {word:?}");
+        }
+        for (i, circle) in circles.iter().enumerate() {
+            assert!(!circles[..i].iter().any(|other| meets(circle, other)), "{nodes} nodes");
+        }
+    }
+}
+
+#[test]
+fn arrows_pass_by_every_node_but_their_own() {
+    for nodes in 3..=12 {
+        let list = (0..nodes).map(|i| node(&format!("{i}"), Some(0.125), Mark::Hollow));
+        let pairs = (0..nodes).flat_map(|from| (0..nodes).map(move |to| (from, to)));
+        let arrows = pairs.map(|(from, to)| NetworkArrow { from, to, share: 1.0 / (from + to + 2) as f64 });
+        let spec = Network {
+            nodes: list.collect(),
+            arrows: arrows.collect(),
+            solid: String::new(),
+            hollow: String::new(),
+            ..sample_network()
+        };
+        let figure = network(&spec);
+        let document = read(&figure);
+        let circles = document.descendants().filter(|n| n.has_tag_name("circle"));
+        let circles: Vec<[f64; 3]> = circles
+            .map(|n| ["cx", "cy", "r"].map(|name| n.attribute(name).unwrap().parse::<f64>().unwrap()))
+            .collect();
+        assert_eq!(circles.len(), nodes);
+        let lines = document.descendants().filter(|n| n.has_tag_name("polyline"));
+        for point in lines.flat_map(|n| n.attribute("points").unwrap().split(' ')) {
+            let (x, y) = point.split_once(',').unwrap();
+            let (x, y): (f64, f64) = (x.parse().unwrap(), y.parse().unwrap());
+            for [cx, cy, r] in &circles {
+                assert!(libm::hypot(x - cx, y - cy) > r + 0.5, "{nodes} nodes: {x}, {y} and {cx}, {cy}");
+            }
+        }
+    }
+}
+
 #[test]
 fn a_figure_stands_in_an_answer_with_its_text_alternative() {
     let answer = Answer::new("Done").with_figure(intervals(&sample_intervals()));
@@ -243,6 +388,7 @@ fn a_figure_of_nothing_is_still_a_figure() {
         groups(&Groups::default()),
         trend(&Trend::default()),
         curve(&Curve::default()),
+        network(&Network::default()),
     ] {
         read(&figure);
     }
@@ -329,6 +475,16 @@ proptest! {
     ) {
         let list = list.into_iter().map(|(label, values, mean, interval)| Group { label, values: values.repeat(repeat), mean, interval });
         assert_sound(&groups(&Groups { title: title.clone(), axis: title.clone(), bars: title, groups: list.collect() }));
+    }
+
+    #[test]
+    fn any_numbers_give_a_sound_graph(
+        list in prop::collection::vec((words(), prop::option::of(number()), any::<bool>()), 0..15),
+        lines in prop::collection::vec((0..16usize, 0..16usize, number()), 0..30), title in words(),
+    ) {
+        let nodes = list.into_iter().map(|(label, weight, solid)| NetworkNode { label, weight, mark: if solid { Mark::Solid } else { Mark::Hollow } });
+        let arrows = lines.into_iter().map(|(from, to, share)| NetworkArrow { from, to, share });
+        assert_sound(&network(&Network { title: title.clone(), words: title.clone(), solid: title.clone(), hollow: title, nodes: nodes.collect(), arrows: arrows.collect() }));
     }
 
     #[test]

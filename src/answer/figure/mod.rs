@@ -11,11 +11,13 @@ mod drawing;
 mod groups;
 mod intervals;
 mod label;
+mod network;
 mod trend;
 
 pub use curve::{Curve, curve};
 pub use groups::{Group, Groups, groups};
 pub use intervals::{IntervalRow, Intervals, Mark, intervals};
+pub use network::{Network, NetworkArrow, NetworkNode, network};
 pub use trend::{Trend, TrendPoint, trend};
 
 use super::number::{self, Precision};
