@@ -17,6 +17,8 @@ use levelwise::methods::multiplicity::ranks::{
     steel_dwass_critical, steel_loadings,
 };
 use levelwise::methods::multiplicity::{PValueMethod, Sides};
+use levelwise::numerics::distributions::rank_counts;
+use levelwise::numerics::distributions::rank_counts::large_samples::{self, Continuity};
 use levelwise::numerics::distributions::studentized_range::Family;
 use levelwise::numerics::random::Streams;
 use serde_json::Value;
@@ -279,6 +281,21 @@ fn beyond_the_limits_of_counting_the_answer_is_the_normal_one() {
     assert!(counted(30, 30, false) && !counted(30, 31, false));
     assert!(counted(20, 20, true) && !counted(20, 21, true));
     assert!(counted(2, 450, false) && !counted(2, 451, false));
+}
+
+// What the comment on `pairwise` says of the normal shape, from another count of the arrangements.
+#[test]
+fn far_out_the_normal_p_value_is_as_much_too_large_as_is_said() {
+    let sizes = [(31, 31, [1.05, 1.23, 1.58]), (21, 21, [1.07, 1.35, 1.99]), (5, 181, [1.32, 2.80, 9.1])];
+    for (n, m, factors) in sizes {
+        for (level, factor) in [0.01, 0.001, 0.0001].into_iter().zip(factors) {
+            let exact = |u: usize| rank_counts::rank_sum(u as f64, n, m).expect("a count").two_sided();
+            let u = (0..n * m / 2).rev().find(|u| exact(*u) <= level).expect("a value");
+            let normal = large_samples::rank_sum(u as f64, n, m, &[], Continuity::Uncorrected);
+            let ratio = normal.expect("a tail").two_sided() / exact(u);
+            assert!((ratio / factor - 1.0).abs() < 0.006, "{n} {m} {level}: {ratio}");
+        }
+    }
 }
 
 #[test]

@@ -130,7 +130,8 @@ fn the_inverse_contrast_has_the_inverse_ratio_and_bounds() {
         agrees(other.ratio, 1.0 / one.ratio, 1e-14, "ratio");
         agrees(inverse.lower, 1.0 / bounds.upper, 1e-13, "lower bound");
         agrees(inverse.upper, 1.0 / bounds.lower, 1e-13, "upper bound");
-        assert_eq!((one.numerator, one.denominator), (one.numerator, one.denominator));
+        agrees(other.numerator, one.denominator, 1e-14, "numerator");
+        agrees(other.denominator, one.numerator, 1e-14, "denominator");
         // One-sided sets at the same critical value share the bounds.
         for (reach, lower, upper) in [
             (Reach::LowerBound(2.5), bounds.lower, f64::INFINITY),

@@ -92,8 +92,10 @@ impl PairwiseRanks {
 /// [`CannotRank`] for an empty group, a value that is not finite, or if all values are equal; the groups are 0 and 1.
 ///
 /// # Accuracy
-/// Relative error of z below 1e-14, of the exact p-values below 1e-13. The normal ones are rough where a group is
-/// smaller than about six, and beyond a p-value of about 1e-3 for larger ones too.
+/// Relative error of z below 1e-14, of the exact p-values below 1e-13. The normal p-values are that far from the normal tail of
+/// z; what the normal shape itself adds makes them too large far out. Where the exact p-value on both sides is just below
+/// 0.01, 0.001 and 0.0001, the normal one is, by counting without ties, this many times as large: 1.05, 1.23 and 1.58 for
+/// 31 and 31 observations, 1.07, 1.35 and 1.99 for 21 and 21, but 1.32, 2.80 and 9.1 for 5 and 181.
 ///
 /// # Source
 /// Mann and Whitney (1947), Ann. Math. Statist. 18, 50–60; the variance with ties, Kendall (1970), as in
