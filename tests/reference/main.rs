@@ -29,6 +29,7 @@ mod one_way;
 mod open_data;
 mod partition;
 mod permutation;
+mod permutation_comparisons;
 mod profile;
 mod properties;
 mod random;

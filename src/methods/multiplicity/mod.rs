@@ -16,6 +16,7 @@ mod given;
 mod graph;
 mod letters;
 pub mod p_values;
+pub mod permutation;
 mod procedure;
 pub mod protected;
 mod range;
