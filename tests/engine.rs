@@ -267,6 +267,21 @@ fn edits_between_slices_are_taken_and_the_outcome_is_the_same() {
 }
 
 #[test]
+fn a_report_made_meanwhile_leaves_an_older_answer_out_and_says_so() {
+    let mut engine = opened(BRANCHES);
+    let missing = |engine: &Engine| {
+        levelwise::notebook::report::document(engine, None).matches("still being computed").count()
+    };
+    assert_eq!(missing(&engine), 0);
+    let [_, study, ..] = engine.order()[..] else { panic!("five cells") };
+    let edit = Edit::Field { cell: study, field: "alpha".into(), value: "1 %".into() };
+    engine.apply(edit).expect("accepted");
+    assert_eq!(missing(&engine), 3, "the study and the two that read from it");
+    engine.settle();
+    assert_eq!(missing(&engine), 0);
+}
+
+#[test]
 fn deleting_the_study_leaves_its_readers_waiting_for_a_name_and_undo_settles_them_from_kept_answers() {
     let mut engine = opened(BRANCHES);
     let study = engine.order()[1];

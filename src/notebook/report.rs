@@ -1,6 +1,6 @@
 //! A notebook's answers as one self-contained HTML document, and as plain text.
 
-use super::engine::{CellView, Engine};
+use super::engine::{CellView, Condition, Engine};
 use super::kinds::Kind;
 use super::sentence;
 use crate::answer::report::{Content, Report, Section};
@@ -55,6 +55,10 @@ fn in_words(cell: &CellView) -> String {
 fn content<'a>(cell: &CellView<'a>) -> Content<'a> {
     let answer = cell.outcome.filter(|outcome| outcome.diagnostics.is_empty()).map(|outcome| &outcome.answer);
     match answer {
+        // What is in sight meanwhile is the answer to an older question, and a report does not say so.
+        _ if cell.condition == Condition::Working => Content::Unanswered(vec![
+            "It was still being computed when this report was made. Make the report again once the cell has settled.",
+        ]),
         Some(answer) if cell.kind == Some(Kind::Note) => match answer.blocks.first() {
             Some(Block::Note(source)) => Content::Note(source),
             _ => Content::Answer(answer),
