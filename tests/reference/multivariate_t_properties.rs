@@ -268,3 +268,25 @@ fn quantiles_are_smooth_in_their_probability() {
         assert!((three[0] - 2.0 * three[1] + three[2]).abs() < 1e-5, "{c:?}");
     }
 }
+
+/// Differences of four means of unequal sizes: 1 - 0 and 2 - 1 both below a negative limit leave 2 - 0 below its own, as its
+/// variance is less than the sum of theirs. The planes of the three have one direction in common.
+#[test]
+fn a_row_that_others_imply_changes_nothing_below_a_negative_limit() {
+    let n = [3.0, 8.0, 5.0, 4.0];
+    let rows = [[-1.0, 1.0, 0.0, 0.0], [0.0, -1.0, 1.0, 0.0], [-1.0, 0.0, 0.0, 1.0], [-1.0, 0.0, 1.0, 0.0]];
+    let covariance = |a: &[f64; 4], b: &[f64; 4]| (0..4).map(|i| a[i] * b[i] / n[i]).sum::<f64>();
+    let correlation = |rows: &[[f64; 4]]| -> Vec<Vec<f64>> {
+        let one = |a, b| covariance(a, b) / (covariance(a, a) * covariance(b, b)).sqrt();
+        rows.iter().map(|a| rows.iter().map(|b| if a == b { 1.0 } else { one(a, b) }).collect()).collect()
+    };
+    for df in [2.0, 16.0, f64::INFINITY] {
+        for c in [-4.0, -1.5, -0.3, -0.01] {
+            let [without, with] = [&rows[..3], &rows[..]].map(|rows| {
+                let below = multivariate_t::cdf(c, &correlation(rows), df, Sides::Greater, Effort::default());
+                below.unwrap().value
+            });
+            assert!(with > 0.0 && (with / without - 1.0).abs() < 1e-8, "{df} {c}: {with} {without}");
+        }
+    }
+}

@@ -32,11 +32,15 @@ impl Line {
         if sine == 0.0 { 0.0 } else { room / sine }
     }
 
-    /// Whether the two have the same direction, up to rounding.
-    fn runs_with(&self, other: &Line) -> bool {
+    /// 1 if the two have the same direction, up to rounding, -1 if they have opposite ones, else 0.
+    fn runs_with(&self, other: &Line) -> i32 {
         let sine = self.normal[0] * other.normal[1] - self.normal[1] * other.normal[0];
         let cosine = self.normal[0] * other.normal[0] + self.normal[1] * other.normal[1];
-        sine.abs() <= PARALLEL && cosine > 0.0
+        match sine.abs() <= PARALLEL {
+            true if cosine > 0.0 => 1,
+            true => -1,
+            false => 0,
+        }
     }
 
     /// The corner with the next line of the chain.
@@ -101,7 +105,11 @@ pub(super) fn facet(sides: &[HalfSpace], i: usize) -> Option<Facet> {
 /// The chain after what lies beyond `line` is cut off.
 fn cut(chain: &[Line], line: Line) -> Vec<Line> {
     let count = chain.len();
-    let parallel = (0..count).find(|&k| chain[k].runs_with(&line));
+    // Opposite lines with nothing between them leave no face; corners far away on them could not tell.
+    if chain.iter().any(|known| known.runs_with(&line) == -1 && known.offset + line.offset < 0.0) {
+        return Vec::new();
+    }
+    let parallel = (0..count).find(|&k| chain[k].runs_with(&line) == 1);
     if parallel.is_some_and(|k| line.offset >= chain[k].offset) {
         return chain.to_vec();
     }
