@@ -18,6 +18,7 @@ mod glass;
 mod graph;
 mod handbook;
 mod invariances;
+mod joint;
 mod letters;
 mod many_to_one;
 mod multivariate_t;

@@ -14,6 +14,7 @@ pub mod detectable;
 mod explain;
 mod given;
 mod graph;
+pub mod joint;
 mod letters;
 pub mod p_values;
 pub mod permutation;
