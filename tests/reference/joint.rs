@@ -364,6 +364,27 @@ fn beyond_rank_three_the_errors_are_stated_and_hold() {
 }
 
 #[test]
+fn critical_values_beyond_rank_three_are_found_at_every_level() {
+    let estimates = of(&[3, 9, 5, 4, 6], 1.0, 73);
+    let pairs = rows(Set::AllPairs, &estimates);
+    for sides in [Sides::Both, Sides::Less] {
+        for alpha in [1e-9, 0.01, 0.4, 0.9] {
+            let work = JointWork::new(&estimates, &pairs, sides, Procedure::SingleStep, alpha).unwrap();
+            let row = work.finish().unwrap().rows[0];
+            // The probability there, by the same family with its first statistic put on the critical value.
+            let mut there = estimates.clone();
+            let first = there.contrast(&pairs[0]);
+            let t = if sides == Sides::Less { -row.critical } else { row.critical };
+            there.means = vec![0.0, t * first.se, 0.0, 0.0, 0.0];
+            let found = joint(&there, &pairs, sides, Procedure::SingleStep).rows[0];
+            // A critical value that is off by e standard errors of 1 moves the logarithm of its tail by less than (c + 3) e.
+            let slack = alpha * (row.critical.abs() + 3.0) * row.critical_error + found.p_error;
+            assert!((found.p_adjusted - alpha).abs() <= 4.5 * slack, "{sides:?} {alpha} {row:?} {found:?}");
+        }
+    }
+}
+
+#[test]
 fn slices_end_in_the_same_result_and_tell_how_far_they_are() {
     let estimates = of(&[3, 9, 5, 4, 6], 1.0, 72);
     let pairs = rows(Set::AllPairs, &estimates);

@@ -147,6 +147,12 @@ mod tests {
             let rows = all_pairs(levels);
             assert_eq!(by_ranks(&rows), closed_sets(&rows).unwrap());
         }
+        // Some of the pairs only, one of them turned round and a level left out.
+        let mut rows = all_pairs(6);
+        rows.retain(|row| row[2] == 0.0);
+        rows.remove(4);
+        rows[1].iter_mut().for_each(|c| *c = -*c);
+        assert_eq!(by_ranks(&rows), closed_sets(&rows).unwrap());
     }
 
     #[test]
