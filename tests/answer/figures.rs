@@ -40,6 +40,7 @@ fn sample_intervals() -> Intervals {
         solid: "adjusted p at most 0.05".into(),
         hollow: "adjusted p above 0.05".into(),
         reference: Some(0.0),
+        margins: Vec::new(),
         rows: vec![
             row("15 min \u{2212} none", 2.5, 0.4, 4.6, Mark::Solid),
             row("30 min \u{2212} none", 1.0, -1.1, 3.1, Mark::Hollow),
@@ -120,11 +121,13 @@ fn few_values_are_points_and_many_are_counts() {
         values: (0..n).map(|i| libm::sin(i as f64) * 10.0 + 50.0).collect(),
         mean: Some(50.0),
         interval: Some(Span { lower: 48.0, upper: 52.0 }),
+        letters: None,
     };
     let spec = |n| Groups {
         title: "Scores".into(),
         axis: "Score".into(),
         bars: "Bars: 95 % intervals of the mean.".into(),
+        letters: String::new(),
         groups: vec![group(n), group(n / 2)],
     };
     let few = groups(&spec(100));
@@ -140,6 +143,42 @@ fn few_values_are_points_and_many_are_counts() {
     );
     let means_only = Groups { groups: vec![Group { values: Vec::new(), ..group(2) }], ..spec(2) };
     assert!(!texts(&groups(&means_only)).iter().any(|t| t.contains("value.")));
+}
+
+#[test]
+fn margins_are_dashed_lines_and_are_named() {
+    let figure = intervals(&Intervals { margins: vec![-1.5, 1.5], ..sample_intervals() });
+    let document = read(&figure);
+    let dashed = document.descendants().filter(|node| node.attribute("stroke-dasharray").is_some());
+    assert_eq!(dashed.count(), 2);
+    assert!(
+        texts(&figure).contains(&"Dashed: margins \u{2212}1.5 and 1.5".to_owned()),
+        "{:?}",
+        texts(&figure)
+    );
+    assert!(figure.description.contains("Dashed: margins \u{2212}1.5 and 1.5."));
+}
+
+#[test]
+fn letters_stand_at_the_right_of_their_group_and_are_explained() {
+    let group = |label: &str, letters: &str| Group {
+        label: label.into(),
+        mean: Some(5.0),
+        letters: Some(letters.into()),
+        ..Group::default()
+    };
+    let spec = Groups {
+        letters: "Levels that share a letter are not shown to differ.".into(),
+        groups: vec![group("none", "a"), group("15 min", "ab")],
+        ..Groups::default()
+    };
+    let figure = groups(&spec);
+    assert!(
+        ["a", "ab", spec.letters.as_str()]
+            .iter()
+            .all(|words| texts(&figure).iter().any(|text| text == words))
+    );
+    assert!(figure.description.contains("15 min: mean 5, letters ab."), "{}", figure.description);
 }
 
 #[test]
@@ -466,15 +505,15 @@ proptest! {
         rows in prop::collection::vec((words(), number(), span(), any::<bool>()), 0..8), reference in prop::option::of(number()), title in words(),
     ) {
         let rows = rows.into_iter().map(|(label, estimate, interval, solid)| IntervalRow { label, estimate, interval, mark: if solid { Mark::Solid } else { Mark::Hollow } });
-        assert_sound(&intervals(&Intervals { title: title.clone(), axis: title.clone(), bars: title.clone(), solid: title.clone(), hollow: title, reference, rows: rows.collect() }));
+        assert_sound(&intervals(&Intervals { title: title.clone(), axis: title.clone(), bars: title.clone(), solid: title.clone(), hollow: title, reference, margins: Vec::new(), rows: rows.collect() }));
     }
 
     #[test]
     fn any_numbers_give_a_sound_group_figure(
         list in prop::collection::vec((words(), prop::collection::vec(number(), 0..30), prop::option::of(number()), span()), 0..6), repeat in 1..60usize, title in words(),
     ) {
-        let list = list.into_iter().map(|(label, values, mean, interval)| Group { label, values: values.repeat(repeat), mean, interval });
-        assert_sound(&groups(&Groups { title: title.clone(), axis: title.clone(), bars: title, groups: list.collect() }));
+        let list = list.into_iter().map(|(label, values, mean, interval)| Group { label, values: values.repeat(repeat), mean, interval, letters: None });
+        assert_sound(&groups(&Groups { title: title.clone(), axis: title.clone(), bars: title, letters: String::new(), groups: list.collect() }));
     }
 
     #[test]

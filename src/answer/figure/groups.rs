@@ -27,6 +27,9 @@ const MEANS: f64 = 20.0;
 /// The widest that labels may be; longer ones are wrapped or shortened.
 const LABELS: f64 = 132.0;
 
+/// The widest that letters may be; longer ones are shortened.
+const LETTERS: f64 = 90.0;
+
 /// What [`groups`] draws.
 #[derive(Debug, Clone, PartialEq, Default)]
 pub struct Groups {
@@ -35,6 +38,8 @@ pub struct Groups {
     pub axis: String,
     /// What the bars are, said inside the figure: "Bars: mean with its 95 % interval, own variance".
     pub bars: String,
+    /// What the groups' letters mean; empty where they have none.
+    pub letters: String,
     pub groups: Vec<Group>,
 }
 
@@ -46,6 +51,8 @@ pub struct Group {
     pub values: Vec<f64>,
     pub mean: Option<f64>,
     pub interval: Option<Span>,
+    /// Letters that stand at the right end of the group's row.
+    pub letters: Option<String>,
 }
 
 /// How the values of all groups are drawn.
@@ -69,7 +76,9 @@ pub fn groups(spec: &Groups) -> Figure {
     let total: usize = shown.iter().map(|g| g.values.len()).sum();
     let widest = shown.iter().map(|g| label::width(&g.label, TEXT)).fold(0.0, f64::max);
     let left = widest.clamp(28.0, LABELS) + 20.0;
-    let place = Place { from: left, to: WIDTH - 14.0, text_size: SMALL, direction: Direction::Across };
+    let lettered = |g: &&Group| g.letters.as_ref().map_or(0.0, |letters| label::width(letters, TEXT) + 10.0);
+    let right = WIDTH - 14.0 - shown.iter().map(lettered).fold(0.0, f64::max).min(LETTERS);
+    let place = Place { from: left, to: right, text_size: SMALL, direction: Direction::Across };
     let spans = shown.iter().filter_map(|g| g.interval.and_then(Span::usable));
     let axis = Axis::covering(with_room_for_arrows(shown.iter().flat_map(|g| numbers_of(g)), spans), place);
     let values = how(&axis, &shown, total);
@@ -90,7 +99,7 @@ pub fn groups(spec: &Groups) -> Figure {
         drawing.line(x, top, x, bottom, Stroke::Grid);
         drawing.text(x, bottom + 18.0, &tick.label, Anchor::Middle, Words::Small);
     }
-    drawing.line(left, bottom, WIDTH - 14.0, bottom, Stroke::Axis);
+    drawing.line(left, bottom, right, bottom, Stroke::Axis);
     let every = (15.0 / pitch).ceil().max(1.0) as usize;
     for (place, group) in shown.iter().enumerate() {
         // The values stand on a floor, the mean below it.
@@ -100,6 +109,10 @@ pub fn groups(spec: &Groups) -> Figure {
         if place.is_multiple_of(every) {
             let beside = if values == Values::None { middle } else { floor - 2.0 * scale };
             name(&mut drawing, &group.label, left, beside, pitch);
+            if let Some(letters) = &group.letters {
+                let short = label::shorten(letters, TEXT, LETTERS - 10.0);
+                drawing.titled(right + 10.0, beside + 5.0, &short, letters, Anchor::Start, Words::Label);
+            }
         }
         match values {
             Values::None => {}
@@ -148,6 +161,9 @@ fn key(drawing: &mut Drawing, spec: &Groups, total: usize, values: Values) -> f6
     }
     if !spec.bars.is_empty() {
         y = drawing.paragraph(y, &spec.bars);
+    }
+    if !spec.letters.is_empty() {
+        y = drawing.paragraph(y, &spec.letters);
     }
     if spec.groups.len() > MOST_GROUPS {
         let all = number::count(spec.groups.len());
@@ -257,6 +273,9 @@ fn describe(spec: &Groups) -> String {
     if !spec.bars.is_empty() {
         sentences.push(spec.bars.clone());
     }
+    if !spec.letters.is_empty() {
+        sentences.push(spec.letters.clone());
+    }
     if spec.groups.len() <= 12 {
         for group in &spec.groups {
             let mean = group.mean.map(|mean| {
@@ -264,7 +283,8 @@ fn describe(spec: &Groups) -> String {
             });
             let n =
                 (!group.values.is_empty()).then(|| format!("{} values", number::count(group.values.len())));
-            let parts: Vec<String> = n.into_iter().chain(mean).collect();
+            let letters = group.letters.as_ref().map(|letters| format!("letters {letters}"));
+            let parts: Vec<String> = n.into_iter().chain(mean).chain(letters).collect();
             sentences.push(format!(
                 "{}: {}",
                 group.label,

@@ -27,6 +27,8 @@ pub struct Intervals {
     pub hollow: String,
     /// Where the line of no difference stands.
     pub reference: Option<f64>,
+    /// Margins that a claim must stay inside: dashed lines, named in the figure.
+    pub margins: Vec<f64>,
     pub rows: Vec<IntervalRow>,
 }
 
@@ -72,7 +74,10 @@ pub fn intervals(spec: &Intervals) -> Figure {
     let numbers =
         rows.iter().flat_map(|row| row.interval.into_iter().flat_map(Span::limits).chain([row.estimate]));
     let spans = rows.iter().filter_map(|row| row.interval);
-    let axis = Axis::covering(with_room_for_arrows(numbers.chain(spec.reference), spans), place);
+    let axis = Axis::covering(
+        with_room_for_arrows(numbers.chain(spec.reference).chain(spec.margins.iter().copied()), spans),
+        place,
+    );
     for tick in &axis.ticks {
         let x = axis.place(tick.value);
         drawing.line(x, layout.top, x, bottom, Stroke::Grid);
@@ -82,6 +87,10 @@ pub fn intervals(spec: &Intervals) -> Figure {
     if let Some(reference) = spec.reference.filter(|r| r.is_finite()) {
         let x = axis.place(reference);
         drawing.line(x, layout.top - 4.0, x, bottom + 4.0, Stroke::Zero);
+    }
+    for margin in spec.margins.iter().filter(|margin| margin.is_finite()) {
+        let x = axis.place(*margin);
+        drawing.line(x, layout.top - 4.0, x, bottom + 4.0, Stroke::Guide);
     }
     for (place, row) in rows.iter().enumerate() {
         let y = layout.top + layout.pitch * (place as f64 + 0.5);
@@ -130,6 +139,9 @@ fn key(drawing: &mut Drawing, spec: &Intervals, dense: bool) -> f64 {
     if !spec.bars.is_empty() {
         y = drawing.paragraph(y, &spec.bars);
     }
+    if !spec.margins.is_empty() {
+        y = drawing.paragraph(y, &margins_in_words(spec));
+    }
     if dense && !spec.solid.is_empty() {
         y = drawing.paragraph(y, "Solid rows are flagged at the right edge as well.");
     }
@@ -139,6 +151,11 @@ fn key(drawing: &mut Drawing, spec: &Intervals, dense: bool) -> f64 {
             .paragraph(y, &format!("Drawn are the first {MOST_ROWS} of {all} rows; the table has all."));
     }
     y - 8.0
+}
+
+fn margins_in_words(spec: &Intervals) -> String {
+    let each: Vec<String> = spec.margins.iter().map(|margin| number::plain(*margin)).collect();
+    format!("Dashed: margin{} {}", if each.len() == 1 { "" } else { "s" }, each.join(" and "))
 }
 
 fn layout(rows: &[IntervalRow], top: f64) -> Layout {
@@ -230,6 +247,9 @@ fn describe(spec: &Intervals) -> String {
     )];
     if !spec.bars.is_empty() {
         sentences.push(spec.bars.clone());
+    }
+    if !spec.margins.is_empty() {
+        sentences.push(margins_in_words(spec));
     }
     if spec.rows.len() <= 12 {
         for row in &spec.rows {

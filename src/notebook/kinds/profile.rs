@@ -168,11 +168,13 @@ fn values_figure(study: &Study, profile: &Profile) -> Figure {
         },
         mean: group.moments.mean,
         interval: group.moments.lower.zip(group.moments.upper).map(|(lower, upper)| Span { lower, upper }),
+        letters: None,
     });
     figure::groups(&Groups {
         title: format!("{} by {}", study.outcome, study.factor),
         axis: outcome_with_unit(study),
         bars: format!("Bars: mean with its {} interval, own SD.", number::percent(profile.confidence)),
+        letters: String::new(),
         groups: groups.collect(),
     })
 }
