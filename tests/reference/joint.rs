@@ -22,7 +22,7 @@ fn rows(set: Set, estimates: &Estimates) -> Vec<Vec<f64>> {
 }
 
 fn joint(estimates: &Estimates, rows: &[Vec<f64>], sides: Sides, procedure: Procedure) -> Joint {
-    JointWork::new(estimates, rows, sides, procedure, 0.05).unwrap().finish().unwrap()
+    JointWork::new(estimates, rows, 0.0, sides, procedure, 0.05).unwrap().finish().unwrap()
 }
 
 fn p(joint: &Joint) -> Vec<f64> {
@@ -369,7 +369,7 @@ fn critical_values_beyond_rank_three_are_found_at_every_level() {
     let pairs = rows(Set::AllPairs, &estimates);
     for sides in [Sides::Both, Sides::Less] {
         for alpha in [1e-9, 0.01, 0.4, 0.9] {
-            let work = JointWork::new(&estimates, &pairs, sides, Procedure::SingleStep, alpha).unwrap();
+            let work = JointWork::new(&estimates, &pairs, 0.0, sides, Procedure::SingleStep, alpha).unwrap();
             let row = work.finish().unwrap().rows[0];
             // The probability there, by the same family with its first statistic put on the critical value.
             let mut there = estimates.clone();
@@ -389,7 +389,7 @@ fn slices_end_in_the_same_result_and_tell_how_far_they_are() {
     let estimates = of(&[3, 9, 5, 4, 6], 1.0, 72);
     let pairs = rows(Set::AllPairs, &estimates);
     for procedure in [Procedure::SingleStep, Procedure::StepDown] {
-        let mut work = JointWork::new(&estimates, &pairs, Sides::Both, procedure, 0.05).unwrap();
+        let mut work = JointWork::new(&estimates, &pairs, 0.0, Sides::Both, procedure, 0.05).unwrap();
         let (mut slices, mut done) = (0, 0.0);
         let result = loop {
             match work.advance() {
@@ -427,7 +427,7 @@ fn statistics_far_out_and_none_at_all_are_no_nan() {
 fn what_has_no_joint_distribution_is_refused_by_name() {
     let estimates = estimates(&blood(), Variances::Equal);
     let refused = |rows: &[Vec<f64>], alpha: f64| {
-        let work = JointWork::new(&estimates, rows, Sides::Both, Procedure::StepDown, alpha);
+        let work = JointWork::new(&estimates, rows, 0.0, Sides::Both, Procedure::StepDown, alpha);
         work.err().unwrap().to_string()
     };
     assert_eq!(refused(&[], 0.05), "number of contrasts is 0, but must be from 1 to 1000");

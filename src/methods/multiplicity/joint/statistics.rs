@@ -22,10 +22,17 @@ pub struct Statistics {
 }
 
 impl Statistics {
+    /// The statistics of the contrasts `rows`, each against the value `null`, 0 for a difference.
+    ///
     /// # Errors
     /// [`OutOfDomain`] if there is no contrast, one has not as many coefficients as there are levels, or its estimate and
     /// standard error give no finite t with positive degrees of freedom.
-    pub fn of(estimates: &Estimates, rows: &[Vec<f64>], sides: Sides) -> Result<Self, OutOfDomain> {
+    pub fn of(
+        estimates: &Estimates,
+        rows: &[Vec<f64>],
+        null: f64,
+        sides: Sides,
+    ) -> Result<Self, OutOfDomain> {
         let levels = estimates.means.len();
         if rows.is_empty() || rows.len() > 1000 {
             let value = rows.len() as f64;
@@ -38,7 +45,7 @@ impl Statistics {
         let (mut t, mut df, mut raw) = (Vec::new(), Vec::new(), Vec::new());
         for row in rows {
             let found = estimates.contrast(row);
-            let statistic = found.estimate / found.se;
+            let statistic = (found.estimate - null) / found.se;
             if !statistic.is_finite() {
                 let allowed = "a finite number (estimate over a positive standard error)";
                 return Err(OutOfDomain { argument: "t", value: statistic, allowed });

@@ -45,7 +45,8 @@ enum Now {
 }
 
 impl JointWork {
-    /// The work for these contrasts (`rows`: one coefficient a level), to be decided at `alpha`.
+    /// The work for these contrasts (`rows`: one coefficient a level), each against the value `null` under its hypothesis (0 for a
+    /// difference, a margin otherwise), to be decided at `alpha`.
     ///
     /// # Errors
     /// [`OutOfDomain`] if there are no contrasts or more than 1000, one has not as many coefficients as there are levels, one
@@ -53,6 +54,7 @@ impl JointWork {
     pub fn new(
         estimates: &Estimates,
         rows: &[Vec<f64>],
+        null: f64,
         sides: Sides,
         procedure: Procedure,
         alpha: f64,
@@ -61,7 +63,7 @@ impl JointWork {
             let allowed = "greater than 0 and less than 1";
             return Err(OutOfDomain { argument: "alpha", value: alpha, allowed });
         }
-        let statistics = Statistics::of(estimates, rows, sides)?;
+        let statistics = Statistics::of(estimates, rows, null, sides)?;
         let (steps, jobs) = match procedure {
             Procedure::SingleStep => (Steps::Single, single_step(&statistics)),
             Procedure::StepDown => {
@@ -216,6 +218,16 @@ fn single_step(statistics: &Statistics) -> Vec<Job> {
         }
     }
     jobs
+}
+
+impl std::fmt::Debug for JointWork {
+    fn fmt(&self, formatter: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        formatter
+            .debug_struct("JointWork")
+            .field("jobs", &self.jobs.len())
+            .field("next", &self.next)
+            .finish_non_exhaustive()
+    }
 }
 
 impl InSlices for JointWork {
