@@ -220,7 +220,7 @@ fn a_plan_shows_its_family_its_coefficients_and_its_method_and_waits() {
 fn a_procedure_that_does_not_suit_is_named_with_those_that_do() {
     let (message, place) = problem("adjust = \"Tukey\"", blood_counts(Variances::Unequal));
     assert_eq!(place, "\"Tukey\"");
-    assert!(message.starts_with("Tukey's procedure needs one standard deviation for all levels, and the study says unequal variances. Suitable here: \"Games-Howell\", \"Holm\""), "{message}");
+    assert!(message.starts_with("Tukey's procedure needs one standard deviation for all levels, and the study says unequal variances. Suitable here: \"Games-Howell\", \"step-down max-t\""), "{message}");
     let contrasts = "family = \"contrasts\"\ncontrasts = { a = \"A - B\" }\nadjust = \"Tukey\"";
     assert!(problem(contrasts, blood_counts(Variances::Equal)).0.contains("is for all pairs of levels"));
     assert!(problem("adjust = \"Dunnett\"", controlled(Variances::Equal)).0.contains("with a control"));

@@ -10,6 +10,7 @@ mod given;
 mod note;
 mod overall;
 mod power;
+mod procedures;
 mod profile;
 mod study;
 mod summary;

@@ -8,8 +8,8 @@ use crate::cases::{cases, number, relative_error};
 use levelwise::methods::contrasts::{Contrast, Set, ready_set};
 use levelwise::methods::multiplicity::PValueMethod::*;
 use levelwise::methods::multiplicity::{
-    Adjust, Bounds, CannotCompare, Comparisons, Disagreement, Family, IntervalKind, Request, Sides, compare,
-    explain,
+    Adjust, Basis, Bounds, CannotCompare, Claim, ComparisonRow, Comparisons, Disagreement, Family,
+    IntervalKind, Request, Setting, Sides, compare, explain,
 };
 use levelwise::study::{Estimates, GroupSummary, Sample, Summary, Variances};
 use proptest::prelude::*;
@@ -57,17 +57,19 @@ pub fn by(
     sides: Sides,
     alpha: f64,
 ) -> Comparisons {
-    compare(&Request {
-        estimates: &layout.estimates,
-        summary: Some(&layout.summary),
-        contrasts,
-        family,
-        adjust,
-        sides,
-        alpha,
-        confidence: 1.0 - alpha,
-    })
-    .unwrap()
+    let request = Request::of_means(&layout.estimates, contrasts, family, adjust);
+    compare(&Request { summary: Some(&layout.summary), sides, alpha, confidence: 1.0 - alpha, ..request })
+        .unwrap()
+}
+
+fn excludes_zero(row: &ComparisonRow) -> bool {
+    let interval = row.interval.unwrap();
+    interval.lower > 0.0 || interval.upper < 0.0
+}
+
+fn suits(adjust: Adjust, set: Set, variances: Variances, sides: Sides) -> bool {
+    let (family, basis, claim) = (Family::Set(set), Basis::Means, Claim::Difference);
+    adjust.unsuitable(&Setting { family, basis, variances, sides, claim }).is_none() && !adjust.ordered()
 }
 
 pub fn close(computed: f64, expected: f64, tolerance: f64, what: &str) {
@@ -112,14 +114,14 @@ fn pooled_t_and_its_adjustments_agree_with_the_twelve_data_sets() {
             let (expected, row) = (&pair["pooled_t"], &plain.rows[i]);
             let what = format!("{} {}", case["name"], row.name);
             close(row.estimate, -number(&pair["diff"]), 1e-9, &what);
-            close(row.se, number(&expected["se"]), 1e-12, &what);
+            close(row.se.unwrap(), number(&expected["se"]), 1e-12, &what);
             close(row.t, -number(&expected["t"]), 1e-9, &what);
             close(row.df, number(&expected["df"]), 1e-14, &what);
             close(row.p, number(&expected["p"]), TOLERANCE, &what);
-            assert_bounds(row.interval, expected, &what);
+            assert_bounds(row.interval.unwrap(), expected, &what);
             let simultaneous = serde_json::json!({
                 "ci_lower": expected["bonferroni_ci_lower"], "ci_upper": expected["bonferroni_ci_upper"] });
-            assert_bounds(bonferroni.rows[i].interval, &simultaneous, &what);
+            assert_bounds(bonferroni.rows[i].interval.unwrap(), &simultaneous, &what);
             for (name, other) in &others {
                 close(other.rows[i].p_adjusted, number(&expected["adjusted_p"][*name]), TOLERANCE, &what);
             }
@@ -145,13 +147,13 @@ fn tukey_kramer_games_howell_and_scheffe_agree_with_the_twelve_data_sets() {
                 close(row.statistic, number(&expected["q"]), 1e-9, &what);
                 close(row.df, number(&expected["df"]), 1e-9, &what);
                 close(row.p_adjusted, number(&expected["p"]), TOLERANCE, &what);
-                assert_bounds(row.interval, expected, &what);
+                assert_bounds(row.interval.unwrap(), expected, &what);
             }
             let (row, expected) = (&scheffe.rows[i], &pair["scheffe"]);
             let levels = groups.len() as f64;
             close(row.t * row.t / (levels - 1.0), number(&expected["F"]), 1e-9, &what);
             close(row.p_adjusted, number(&expected["p"]), TOLERANCE, &what);
-            assert_bounds(row.interval, expected, &what);
+            assert_bounds(row.interval.unwrap(), expected, &what);
         }
     }
 }
@@ -169,9 +171,9 @@ fn dunnett_agrees_with_the_twelve_data_sets() {
             close(row.t, number(&expected["t"]), 1e-9, &what);
             close(row.p_adjusted, number(&expected["p"]), TOLERANCE, &what);
             close(greater.rows[i].p_adjusted, number(&expected["p_greater"]), TOLERANCE, &what);
-            close(row.interval.lower, number(&expected["ci_lower"]), 1e-7, &what);
-            close(row.interval.upper, number(&expected["ci_upper"]), 1e-7, &what);
-            assert_eq!(greater.rows[i].interval.upper, f64::INFINITY);
+            close(row.interval.unwrap().lower, number(&expected["ci_lower"]), 1e-7, &what);
+            close(row.interval.unwrap().upper, number(&expected["ci_upper"]), 1e-7, &what);
+            assert_eq!(greater.rows[i].interval.unwrap().upper, f64::INFINITY);
         }
     }
 }
@@ -257,8 +259,9 @@ fn dunnetts_own_example_gives_his_critical_values_and_the_p_values_computed_for_
 fn effect_sizes_of_the_blood_counts_agree_alone_and_at_tukeys_level() {
     let layout = layout(&blood(), Variances::Equal);
     let alone = compared(&layout, Set::AllPairs, Adjust::PValues(None));
-    let effects =
-        |result: &Comparisons| result.rows.iter().map(|row| row.effect.clone().unwrap()).collect::<Vec<_>>();
+    let effects = |result: &Comparisons| {
+        result.rows.iter().map(|row| row.effects.standardised.clone().unwrap()).collect::<Vec<_>>()
+    };
     let d: Vec<f64> = effects(&alone).iter().map(|effect| effect.d).collect();
     printed(&d, &[".553212", "2.236678", "1.683466"], "d");
     let g: Vec<f64> = effects(&alone).iter().map(|effect| effect.g).collect();
@@ -292,7 +295,7 @@ fn a_contrast_of_the_blood_counts_agrees_with_one_error_term_and_with_separate_v
         let result = by(&layout, &[contrast], Family::Contrasts, Adjust::PValues(Holm), Sides::Both, 0.05);
         let row = &result.rows[0];
         assert_eq!(row.words, "mean of L1 and L2 minus L0");
-        printed(&[row.estimate, row.se, row.t, row.df, row.p_adjusted], &expected, "contrast");
+        printed(&[row.estimate, row.se.unwrap(), row.t, row.df, row.p_adjusted], &expected, "contrast");
     }
 }
 
@@ -344,9 +347,9 @@ fn the_nist_handbook_example_has_its_tukey_and_scheffe_intervals() {
         let same = ["2_minus_1", "3_minus_1"].contains(&format!("{later}_minus_{earlier}").as_str());
         let id = if same { format!("{later}_minus_{earlier}") } else { format!("{earlier}_minus_{later}") };
         let (lower, upper) = if same {
-            (row.interval.lower, row.interval.upper)
+            (row.interval.unwrap().lower, row.interval.unwrap().upper)
         } else {
-            (-row.interval.upper, -row.interval.lower)
+            (-row.interval.unwrap().upper, -row.interval.unwrap().lower)
         };
         let text = |which: &str| handbook_value(&file, 0, &format!("{which}_{id}"));
         printed(&[lower, upper], &[&text("lower"), &text("upper")], &id);
@@ -360,8 +363,13 @@ fn the_nist_handbook_example_has_its_tukey_and_scheffe_intervals() {
     let contrasts = [contrast("C1"), contrast("C2")];
     let scheffe = by(&layout, &contrasts, Family::Contrasts, Adjust::Scheffe, Sides::Both, 0.05);
     let (one, two) = (&scheffe.rows[0], &scheffe.rows[1]);
-    let computed =
-        [one.estimate, two.estimate, scheffe.critical.unwrap(), one.interval.upper, two.interval.lower];
+    let computed = [
+        one.estimate,
+        two.estimate,
+        scheffe.critical.unwrap(),
+        one.interval.unwrap().upper,
+        two.interval.unwrap().lower,
+    ];
     let ids = ["C1_estimate", "C2_estimate", "scheffe_multiplier", "C1_upper", "C2_lower"];
     for (computed, id) in computed.iter().zip(ids) {
         printed(&[*computed], &[&handbook_value(&file, 1, id)], id);
@@ -370,30 +378,33 @@ fn the_nist_handbook_example_has_its_tukey_and_scheffe_intervals() {
         by(&layout, &contrasts, Family::Contrasts, Adjust::PValues(Bonferroni), Sides::Both, 0.05);
     let expected = &file["sections"][2]["further_recomputed"];
     close(bonferroni.critical.unwrap(), number(&expected["t_0.9875_16"]), 1e-12, "t at 1 - 0.05/4");
-    close(bonferroni.rows[0].interval.lower, number(&expected["C1"][0]), 1e-12, "Bonferroni interval of C1");
-    close(bonferroni.rows[1].interval.upper, number(&expected["C2"][1]), 1e-12, "Bonferroni interval of C2");
+    close(
+        bonferroni.rows[0].interval.unwrap().lower,
+        number(&expected["C1"][0]),
+        1e-12,
+        "Bonferroni interval of C1",
+    );
+    close(
+        bonferroni.rows[1].interval.unwrap().upper,
+        number(&expected["C2"][1]),
+        1e-12,
+        "Bonferroni interval of C2",
+    );
 }
 
 #[test]
 fn a_procedure_that_does_not_suit_is_refused_with_the_suitable_ones() {
     let layout = layout(&blood(), Variances::Unequal);
     let contrasts = ready_set(Set::AllPairs, &layout.estimates.labels);
-    let error = compare(&Request {
-        estimates: &layout.estimates,
-        summary: Option::None,
-        contrasts: &contrasts,
-        family: Family::Set(Set::AllPairs),
-        adjust: Adjust::Tukey,
-        sides: Sides::Both,
-        alpha: 0.05,
-        confidence: 0.95,
-    })
-    .unwrap_err();
+    let family = Family::Set(Set::AllPairs);
+    let error =
+        compare(&Request::of_means(&layout.estimates, &contrasts, family, Adjust::Tukey)).unwrap_err();
     assert!(matches!(error, CannotCompare::Unsuitable { .. }));
     assert_eq!(
         error.to_string(),
         "Tukey's procedure needs one standard deviation for all levels, and the study says unequal variances. \
-         Suitable here: Games-Howell, Holm, Holm-Sidak, Hochberg, Hommel, Bonferroni, Sidak, Benjamini-Hochberg, \
+         Suitable here: Games-Howell, step-down max-t, max-t, Dunnett T3, Dunnett C, Tamhane T2, Holm, Holm-Sidak, \
+         Hochberg, Hommel, Bonferroni, Sidak, fixed sequence, fallback, graph, Benjamini-Hochberg, \
          Benjamini-Yekutieli, none."
     );
 }
@@ -403,8 +414,8 @@ fn a_stepwise_procedure_shows_single_step_intervals_and_names_the_rows_that_disa
     let layout = layout(&blood(), Variances::Equal);
     // B - A has raw p 0.0274: Holm's second step compares it with 0.025 at 5 %, and with 0.03 at 6 %.
     let result = sided(&layout, Set::AllPairs, Adjust::PValues(Holm), Sides::Both, 0.06);
-    assert_eq!(result.interval_kind, IntervalKind::SimultaneousBy(Bonferroni));
-    assert!(result.rows[2].rejected && !result.rows[2].interval.excludes_zero());
+    assert_eq!(result.interval_kind, IntervalKind::SimultaneousBy(Adjust::PValues(Bonferroni)));
+    assert!(result.rows[2].rejected && !excludes_zero(&result.rows[2]));
     assert_eq!(result.disagreeing, [2]);
 }
 
@@ -493,15 +504,15 @@ proptest! {
             for set in [Set::AllPairs, Set::AgainstControl(1), Set::AgainstRest] {
                 for sides in [Sides::Both, Sides::Greater, Sides::Less] {
                     for adjust in single_step {
-                        if adjust.unsuitable(Family::Set(set), variances, sides).is_some() { continue }
+                        if !suits(adjust, set, variances, sides) { continue }
                         let result = sided(&layout, set, adjust, sides, alpha);
                         for row in result.rows.iter().filter(|row| (row.p_adjusted - alpha).abs() > 1e-7) {
                             prop_assert!(row.p_adjusted >= row.p);
-                            prop_assert_eq!(row.interval.excludes_zero(), row.rejected, "{} {:?}", adjust.name(), row);
+                            prop_assert_eq!(excludes_zero(row), row.rejected, "{} {:?}", adjust.name(), row);
                             prop_assert_eq!(row.p <= row.alpha.unwrap(), row.rejected, "{} {:?}", adjust.name(), row);
-                            let effect = row.effect.as_ref().unwrap().d_interval.unwrap();
+                            let effect = row.effects.standardised.as_ref().unwrap().d_interval.unwrap();
                             prop_assert_eq!(effect.lower > 0.0 || effect.upper < 0.0, row.rejected);
-                            prop_assert!(row.effect.as_ref().unwrap().d * row.estimate >= 0.0);
+                            prop_assert!(row.effects.standardised.as_ref().unwrap().d * row.estimate >= 0.0);
                         }
                     }
                 }
@@ -540,12 +551,12 @@ proptest! {
             for adjust in levelwise::methods::multiplicity::ALL {
                 for (set, sides) in [(Set::AllPairs, Sides::Both), (Set::AgainstControl(1), Sides::Less)] {
                     let contrasts = ready_set(set, &layout.estimates.labels);
-                    let result = compare(&Request { estimates: &layout.estimates, summary: Some(&layout.summary),
-                        contrasts: &contrasts, family: Family::Set(set), adjust, sides, alpha, confidence: 1.0 - alpha });
+                    let request = Request::of_means(&layout.estimates, &contrasts, Family::Set(set), adjust);
+                    let result = compare(&Request { summary: Some(&layout.summary), sides, alpha, confidence: 1.0 - alpha, ..request });
                     for row in result.iter().flat_map(|result| &result.rows) {
-                        let effect = row.effect.as_ref().map_or([0.0; 2], |effect| [effect.d, effect.g]);
-                        let numbers = [row.estimate, row.se, row.df, row.t, row.statistic, row.p, row.p_adjusted,
-                            row.critical, row.interval.lower, row.interval.upper, effect[0], effect[1]];
+                        let effect = row.effects.standardised.as_ref().map_or([0.0; 2], |effect| [effect.d, effect.g]);
+                        let numbers = [row.estimate, row.se.unwrap(), row.df, row.t, row.statistic, row.p, row.p_adjusted,
+                            row.critical.unwrap(), row.interval.unwrap().lower, row.interval.unwrap().upper, effect[0], effect[1]];
                         prop_assert!(!numbers.iter().any(|x| x.is_nan()), "{row:?}");
                         prop_assert!((row.p..=1.0).contains(&row.p_adjusted), "{row:?}");
                     }

@@ -31,6 +31,7 @@ mod open_data;
 mod partition;
 mod permutation;
 mod permutation_comparisons;
+mod procedures;
 mod profile;
 mod properties;
 mod random;

@@ -20,7 +20,9 @@ use serde::Serialize;
 pub enum StandardisedBy {
     /// The root of the mean square within, pooled over all groups of the study.
     PooledOverAllGroups,
-    /// The root of the plain average of the variances of the groups in the contrast (their indices).
+    /// The root of the mean square within, pooled over these groups.
+    PooledOver(Vec<usize>),
+    /// The root of the plain average of the variances of these groups.
     AverageVarianceOf(Vec<usize>),
 }
 
@@ -49,12 +51,35 @@ impl Standardiser {
                 let sd = pooled.variance.sqrt();
                 (sd > 0.0).then_some(Self { sd, df: pooled.df, by: StandardisedBy::PooledOverAllGroups })
             }
-            Variances::Unequal => Self::average(summary, coefficients),
+            Variances::Unequal => Self::average(summary, compared(coefficients)),
         }
     }
 
-    fn average(summary: &Summary, coefficients: &[f64]) -> Option<Self> {
-        let involved: Vec<usize> = (0..coefficients.len()).filter(|&i| coefficients[i] != 0.0).collect();
+    /// The standard deviation of all groups, whatever is compared: pooled, or the root of the average variance.
+    ///
+    /// `None` as [`Standardiser::of`].
+    pub fn over_all(summary: &Summary, variances: Variances) -> Option<Self> {
+        match variances {
+            Variances::Equal => Self::of(summary, variances, &[]),
+            Variances::Unequal => Self::average(summary, (0..summary.groups.len()).collect()),
+        }
+    }
+
+    /// The standard deviation of the groups compared: pooled over them alone, or the root of their average variance.
+    ///
+    /// `None` as [`Standardiser::of`].
+    pub fn over_compared(summary: &Summary, variances: Variances, coefficients: &[f64]) -> Option<Self> {
+        let involved = compared(coefficients);
+        if variances == Variances::Unequal {
+            return Self::average(summary, involved);
+        }
+        let groups = involved.iter().map(|i| summary.groups.get(*i).copied()).collect::<Option<Vec<_>>>()?;
+        let pooled = Summary { origin: summary.origin, groups }.pooled()?;
+        let sd = pooled.variance.sqrt();
+        (sd > 0.0).then_some(Self { sd, df: pooled.df, by: StandardisedBy::PooledOver(involved) })
+    }
+
+    fn average(summary: &Summary, involved: Vec<usize>) -> Option<Self> {
         let (mut total, mut below) = (0.0, 0.0);
         for &i in &involved {
             let group = summary.groups.get(i)?;
@@ -67,6 +92,11 @@ impl Standardiser {
         let usable = sd > 0.0 && sd.is_finite() && df.is_finite();
         usable.then_some(Self { sd, df, by: StandardisedBy::AverageVarianceOf(involved) })
     }
+}
+
+/// The groups with a coefficient that is not 0.
+fn compared(coefficients: &[f64]) -> Vec<usize> {
+    (0..coefficients.len()).filter(|&i| coefficients[i] != 0.0).collect()
 }
 
 /// How much probability an interval leaves outside, and on which sides it is closed.

@@ -1,193 +1,196 @@
 //! Decides every comparison of a family once.
 
-use super::p_values::{self, PValueMethod};
-use super::{Adjust, Family, Sides, control, range, scheffe, suitable};
-use crate::methods::contrasts::{Contrast, Set, in_words};
-use crate::methods::effect_size::{Coverage, StandardisedEffect, Standardiser};
-use crate::numerics::OutOfDomain;
-use crate::numerics::distributions::{student_t, studentized_range};
-use crate::study::{ContrastEstimate, DegreesOfFreedom, Estimates, Summary, Variances};
-use serde::Serialize;
+use super::decision::{self, Decision};
+use super::detectable::Detectable;
+use super::letters::letters;
+use super::long::{Long, Worked};
+use super::ordered::Order;
+use super::result::{CannotCompare, ComparisonRow, Comparisons};
+use super::row_test::{self, Test};
+use super::setting::{Basis, Claim, Family, Resampling, Setting, Sides, Standardise};
+use super::{Adjust, range, row_effects};
+use crate::methods::contrasts::{Contrast, Set};
+use crate::methods::slices::{Advance, Progress};
+use crate::study::{DegreesOfFreedom, Estimates, Sample, Summary, Variances};
+
+/// The power that a detectable difference is detected with.
+const POWER: f64 = 0.8;
 
 /// What is to be compared, and how.
 #[derive(Debug, Clone, Copy)]
 pub struct Request<'a> {
-    pub estimates: &'a Estimates,
-    /// For the standard deviation of the standardised effects; without it there are none.
+    /// The levels' names.
+    pub labels: &'a [String],
+    /// Means with their covariance; ranks can do without.
+    pub estimates: Option<&'a Estimates>,
+    /// For the standard deviations of effect sizes; without it there are none.
     pub summary: Option<&'a Summary>,
+    /// Every value, for ranks and rearrangements.
+    pub sample: Option<&'a Sample>,
     /// The whole family: its size is their number.
     pub contrasts: &'a [Contrast],
     pub family: Family,
+    pub basis: Basis,
     pub adjust: Adjust,
     pub sides: Sides,
+    pub claim: Claim,
+    /// For the ordered procedures.
+    pub order: Option<&'a Order>,
+    /// `None` for all levels under equal variances, and those compared under unequal ones.
+    pub standardise: Option<Standardise>,
+    pub resampling: Resampling,
     /// Error rate, between 0 and 1.
     pub alpha: f64,
     /// Confidence of the intervals; 1 - alpha where they are to agree with the decisions.
     pub confidence: f64,
 }
 
-/// What the intervals of a result hold for.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize)]
-#[serde(rename_all = "snake_case")]
-pub enum IntervalKind {
-    /// All of them together, by the procedure itself.
-    Simultaneous,
-    /// All of them together, by this single-step relative of a stepwise procedure: a row's interval may disagree
-    /// with its decision.
-    SimultaneousBy(PValueMethod),
-    /// Each by itself.
-    PerComparison,
-}
-
-/// One comparison, decided.
-#[derive(Debug, Clone, PartialEq)]
-pub struct ComparisonRow {
-    pub name: String,
-    /// What is taken from what: "mean of B and C minus A".
-    pub words: String,
-    /// One a level.
-    pub coefficients: Vec<f64>,
-    pub estimate: f64,
-    pub se: f64,
-    pub df: f64,
-    /// estimate / se, whatever statistic the procedure uses.
-    pub t: f64,
-    /// The procedure's statistic: q = √2 |t| for the studentized range, else t.
-    pub statistic: f64,
-    /// "t" or "q".
-    pub statistic_name: &'static str,
-    /// Of this comparison by itself, on the sides asked for.
-    pub p: f64,
-    pub p_adjusted: f64,
-    /// Bound on the error of `p_adjusted` where it comes from numerical integration.
-    pub p_error: Option<f64>,
-    /// The level at which the raw p-value is judged; `None` where the procedure has none.
-    pub alpha: Option<f64>,
-    /// p_adjusted <= alpha of the family.
-    pub rejected: bool,
-    /// The value that the statistic must reach for its interval to exclude zero, on the scale of `statistic`.
-    pub critical: f64,
-    /// Interval of the kind that the result names; infinite on a side that is not bounded.
-    pub interval: Bounds,
-    /// d and g with the interval of the same critical value; `None` without a standard deviation.
-    pub effect: Option<StandardisedEffect>,
-}
-
-/// Lower and upper bound.
-#[derive(Debug, Clone, Copy, PartialEq, Serialize)]
-pub struct Bounds {
-    pub lower: f64,
-    pub upper: f64,
-}
-
-impl Bounds {
-    /// Whether zero lies outside.
-    pub fn excludes_zero(&self) -> bool {
-        self.lower > 0.0 || self.upper < 0.0
+impl<'a> Request<'a> {
+    /// Two-sided tests of the means at 5 %, without effect sizes.
+    pub fn of_means(
+        estimates: &'a Estimates,
+        contrasts: &'a [Contrast],
+        family: Family,
+        adjust: Adjust,
+    ) -> Self {
+        Self {
+            labels: &estimates.labels,
+            estimates: Some(estimates),
+            summary: None,
+            sample: None,
+            contrasts,
+            family,
+            basis: Basis::Means,
+            adjust,
+            sides: Sides::Both,
+            claim: Claim::Difference,
+            order: None,
+            standardise: None,
+            resampling: Resampling::default(),
+            alpha: 0.05,
+            confidence: 0.95,
+        }
     }
-}
 
-/// A family of comparisons, decided.
-#[derive(Debug, Clone, PartialEq)]
-pub struct Comparisons {
-    pub adjust: Adjust,
-    pub family: Family,
-    pub family_size: usize,
-    pub sides: Sides,
-    pub variances: Variances,
-    pub alpha: f64,
-    pub confidence: f64,
-    pub interval_kind: IntervalKind,
-    /// The rows' critical value where it is one for all.
-    pub critical: Option<f64>,
-    /// The rows' per-comparison alpha where it is one for all.
-    pub alpha_per_comparison: Option<f64>,
-    pub rows: Vec<ComparisonRow>,
-    /// Indices of rows whose interval excludes zero without a rejection, or the reverse.
-    pub disagreeing: Vec<usize>,
-}
+    /// What it depends on whether the procedure suits.
+    pub fn setting(&self) -> Setting {
+        let Self { family, basis, sides, claim, .. } = *self;
+        Setting { family, basis, variances: self.variances(), sides, claim }
+    }
 
-/// Why a family cannot be compared as asked.
-#[derive(Debug, Clone, PartialEq, thiserror::Error)]
-pub enum CannotCompare {
-    #[error("{reason}. Suitable here: {}.", names(suitable))]
-    Unsuitable { reason: &'static str, suitable: Vec<Adjust> },
-    #[error(
-        "comparison \"{name}\" has no finite estimate and standard error: its values are too large or too small to compute with"
-    )]
-    NotFinite { name: String },
-    #[error("there is nothing to compare: the family is empty")]
-    Empty,
-    #[error("{0}")]
-    OutOfDomain(#[from] OutOfDomain),
-}
+    /// The estimates, for a basis that cannot do without.
+    pub(super) fn estimates(&self) -> Result<&'a Estimates, CannotCompare> {
+        self.estimates.ok_or(CannotCompare::NoMeans)
+    }
 
-fn names(procedures: &[Adjust]) -> String {
-    procedures.iter().map(|adjust| adjust.name()).collect::<Vec<_>>().join(", ")
+    /// What the intervals leave outside: alpha to the last bit where their confidence is 1 - alpha.
+    pub(super) fn outside(&self) -> f64 {
+        let outside = 1.0 - self.confidence;
+        if (outside - self.alpha).abs() < 1e-12 { self.alpha } else { outside }
+    }
+
+    pub(super) fn variances(&self) -> Variances {
+        match self.estimates.map(|estimates| &estimates.df) {
+            Some(DegreesOfFreedom::PerMean(_)) => Variances::Unequal,
+            _ => Variances::Equal,
+        }
+    }
 }
 
 /// The decision on every comparison of the family.
 ///
-/// Hypotheses: each contrast of the population means is zero (or not beyond zero on the side asked for). What is
-/// controlled depends on `adjust` ([`Adjust::error_rate`]); with one error term the t statistics share it and its
+/// Hypotheses: each contrast of the population means is zero (or not beyond zero on the side asked for; or not on the
+/// claimed side of its margin); with ranks and rearrangements, the levels of a comparison have one distribution. What
+/// is controlled depends on `adjust` ([`Adjust::error_rate`]); with one error term the t statistics share it and its
 /// df, with a variance for each mean every row has Satterthwaite's df.
 ///
 /// # Errors
-/// [`CannotCompare`] where the procedure does not suit the family, the variances or the sides, the family is empty,
-/// or the numbers are too extreme.
+/// [`CannotCompare`] where the procedure does not suit what is asked, the family is empty, or the numbers are too
+/// extreme.
 pub fn compare(request: &Request) -> Result<Comparisons, CannotCompare> {
-    let variances = match request.estimates.df {
-        DegreesOfFreedom::Common(_) => Variances::Equal,
-        DegreesOfFreedom::PerMean(_) => Variances::Unequal,
-    };
-    if let Some(reason) = request.adjust.unsuitable(request.family, variances, request.sides) {
-        let suitable = suitable(request.family, variances, request.sides);
-        return Err(CannotCompare::Unsuitable { reason, suitable });
+    let mut comparing = Comparing::new(request)?;
+    while comparing.advance()?.is_some() {}
+    comparing.conclude(request)
+}
+
+/// A family that is being decided. Joint distributions and rearrangements take long: they advance by slices.
+#[derive(Debug)]
+pub struct Comparing {
+    tests: Vec<Test>,
+    long: Option<Long>,
+    seed: u64,
+    worked: Option<Worked>,
+}
+
+impl Comparing {
+    /// Every comparison's own test, and the long work that the procedure needs.
+    ///
+    /// # Errors
+    /// As [`compare`].
+    pub fn new(request: &Request) -> Result<Self, CannotCompare> {
+        let setting = request.setting();
+        if let Some(reason) = request.adjust.unsuitable(&setting) {
+            return Err(CannotCompare::unsuitable(reason, &setting));
+        }
+        if request.contrasts.is_empty() {
+            return Err(CannotCompare::Empty);
+        }
+        let tests = row_test::tests(request)?;
+        let long = Long::of(request)?;
+        Ok(Self { tests, long, seed: request.resampling.seed, worked: None })
     }
-    if request.contrasts.is_empty() {
-        return Err(CannotCompare::Empty);
+
+    /// One slice of the long work; `None` when nothing is left of it.
+    ///
+    /// # Errors
+    /// [`CannotCompare`] where the work comes to no result.
+    pub fn advance(&mut self) -> Result<Option<Progress>, CannotCompare> {
+        let Some(long) = &mut self.long else { return Ok(None) };
+        match long.advance(self.seed) {
+            Advance::Working(progress) => Ok(Some(progress)),
+            Advance::Done(worked) => {
+                self.worked = Some(worked?);
+                self.long = None;
+                Ok(None)
+            }
+        }
     }
-    let tests = request
-        .contrasts
-        .iter()
-        .map(|contrast| Test::of(request, contrast))
-        .collect::<Result<Vec<_>, _>>()?;
-    let raw: Vec<f64> = tests.iter().map(|test| test.p).collect();
-    let loadings = match request.family {
-        Family::Set(Set::AgainstControl(control)) => control::loadings(request.estimates, control),
-        _ => Vec::new(),
-    };
-    let mut range = None;
-    let adjusted = adjusted(request, &tests, &raw, &loadings, &mut range)?;
-    let outside = outside(request);
-    let critical = critical_at(outside, request, &tests, &loadings, &mut range)?;
-    let deciding = match request.adjust {
-        // The raw p-value of a comparison that just reaches the critical value of the decision is its alpha.
-        Adjust::PValues(_) => Vec::new(),
-        _ if outside == request.alpha => critical.clone(),
-        _ => critical_at(request.alpha, request, &tests, &loadings, &mut range)?,
-    };
-    let alphas = alphas(request, &tests, &raw, &deciding)?;
-    let decided = Decided { adjusted, critical, alphas };
-    let rows = (0..tests.len())
-        .map(|i| decided.row(i, request, variances, &tests[i]))
-        .collect::<Result<Vec<_>, _>>()?;
-    Ok(Comparisons {
-        adjust: request.adjust,
-        family: request.family,
-        family_size: rows.len(),
-        sides: request.sides,
-        variances,
-        alpha: request.alpha,
-        confidence: request.confidence,
-        interval_kind: interval_kind(request.adjust),
-        critical: common(rows.iter().map(|row| Some(row.critical))),
-        alpha_per_comparison: common(rows.iter().map(|row| row.alpha)),
-        disagreeing: (0..rows.len())
-            .filter(|i| rows[*i].interval.excludes_zero() != rows[*i].rejected)
-            .collect(),
-        rows,
-    })
+
+    /// The decisions, after the long work; `request` is the one that it was made for.
+    ///
+    /// # Errors
+    /// As [`compare`].
+    pub fn conclude(mut self, request: &Request) -> Result<Comparisons, CannotCompare> {
+        if let Some(raw) = self.worked.as_ref().and_then(|worked| worked.raw.as_ref()) {
+            for (test, raw) in self.tests.iter_mut().zip(raw) {
+                (test.p, test.p_counted) = (raw.p, raw.counted);
+            }
+        }
+        let decision = decision::decide(request, &self.tests, self.worked.as_ref())?;
+        let mut rows =
+            Rows { request, decision: &decision, detectable: Detectable::with_power(POWER, request.sides)? };
+        let rows =
+            (0..self.tests.len()).map(|i| rows.row(&self.tests[i], i)).collect::<Result<Vec<_>, _>>()?;
+        Ok(Comparisons {
+            adjust: request.adjust,
+            family: request.family,
+            basis: request.basis,
+            claim: request.claim,
+            family_size: rows.len(),
+            sides: request.sides,
+            variances: request.variances(),
+            alpha: request.alpha,
+            confidence: request.confidence,
+            interval_kind: decision::interval_kind(request),
+            critical: common(rows.iter().map(|row| row.critical)),
+            alpha_per_comparison: common(rows.iter().map(|row| row.alpha)),
+            disagreeing: (0..rows.len()).filter(|i| disagrees(&rows[*i], request)).collect(),
+            letters: lettered(request, &rows),
+            path: decision.path,
+            rearranged: self.worked.and_then(|worked| worked.rearranged),
+            rows,
+        })
+    }
 }
 
 impl Comparisons {
@@ -201,162 +204,8 @@ impl Comparisons {
     }
 }
 
-/// What the intervals of a procedure hold for.
-fn interval_kind(adjust: Adjust) -> IntervalKind {
-    match adjust {
-        Adjust::PValues(method) => match method {
-            PValueMethod::Bonferroni | PValueMethod::Sidak => IntervalKind::Simultaneous,
-            PValueMethod::Holm | PValueMethod::Hochberg | PValueMethod::Hommel => {
-                IntervalKind::SimultaneousBy(PValueMethod::Bonferroni)
-            }
-            PValueMethod::HolmSidak => IntervalKind::SimultaneousBy(PValueMethod::Sidak),
-            PValueMethod::None | PValueMethod::BenjaminiHochberg | PValueMethod::BenjaminiYekutieli => {
-                IntervalKind::PerComparison
-            }
-        },
-        _ => IntervalKind::Simultaneous,
-    }
-}
-
-/// A contrast's own t test.
-struct Test {
-    name: String,
-    words: String,
-    coefficients: Vec<f64>,
-    contrast: ContrastEstimate,
-    t: f64,
-    p: f64,
-}
-
-impl Test {
-    fn of(request: &Request, contrast: &Contrast) -> Result<Self, CannotCompare> {
-        let found = request.estimates.contrast(&contrast.coefficients);
-        let t = found.estimate / found.se;
-        if !(t.is_finite() && found.se > 0.0 && found.se.is_finite() && found.df > 0.0) {
-            return Err(CannotCompare::NotFinite { name: contrast.name.clone() });
-        }
-        Ok(Self {
-            name: contrast.name.clone(),
-            words: in_words(&contrast.coefficients, &request.estimates.labels),
-            coefficients: contrast.coefficients.clone(),
-            contrast: found,
-            t,
-            p: tail(t, found.df, request.sides)?,
-        })
-    }
-}
-
-/// P(T beyond t) on the sides asked for.
-fn tail(t: f64, df: f64, sides: Sides) -> Result<f64, OutOfDomain> {
-    match sides {
-        Sides::Both => Ok((2.0 * student_t::sf(t.abs(), df)?).min(1.0)),
-        Sides::Greater => student_t::sf(t, df),
-        Sides::Less => student_t::sf(-t, df),
-    }
-}
-
-fn adjusted(
-    request: &Request,
-    tests: &[Test],
-    raw: &[f64],
-    loadings: &[f64],
-    range: &mut Option<studentized_range::Family>,
-) -> Result<Vec<f64>, OutOfDomain> {
-    let levels = request.estimates.means.len();
-    let each = |of: &mut dyn FnMut(&Test) -> Result<f64, OutOfDomain>| -> Result<Vec<f64>, OutOfDomain> {
-        // Integration leaves errors of a few units in the last place; an adjusted p-value is never below its raw one.
-        tests.iter().map(|test| Ok(of(test)?.clamp(test.p, 1.0))).collect()
-    };
-    match request.adjust {
-        Adjust::PValues(method) => Ok(p_values::adjusted(raw, method)),
-        Adjust::Tukey | Adjust::GamesHowell => {
-            let range = range::of(levels, range)?;
-            each(&mut |test| range::adjusted_p(test.t, range, test.contrast.df))
-        }
-        Adjust::Dunnett => {
-            each(&mut |test| control::adjusted_p(test.t, loadings, test.contrast.df, request.sides))
-        }
-        Adjust::Scheffe => each(&mut |test| scheffe::adjusted_p(test.t, levels, test.contrast.df)),
-    }
-}
-
-/// What the intervals leave outside: alpha to the last bit where their confidence is 1 - alpha.
-fn outside(request: &Request) -> f64 {
-    let outside = 1.0 - request.confidence;
-    if (outside - request.alpha).abs() < 1e-12 { request.alpha } else { outside }
-}
-
-/// The number of standard errors that each row's interval reaches.
-fn critical_at(
-    outside: f64,
-    request: &Request,
-    tests: &[Test],
-    loadings: &[f64],
-    range: &mut Option<studentized_range::Family>,
-) -> Result<Vec<f64>, OutOfDomain> {
-    let (levels, m) = (request.estimates.means.len(), tests.len() as f64);
-    let mut last: Option<(f64, f64)> = None;
-    let mut result = Vec::with_capacity(tests.len());
-    for test in tests {
-        let df = test.contrast.df;
-        // With one error term all rows share one critical value; finding it is the costly part.
-        if let Some((_, value)) = last.filter(|(known, _)| *known == df) {
-            result.push(value);
-            continue;
-        }
-        let value = match request.adjust {
-            Adjust::PValues(_) => {
-                let each = match interval_kind(request.adjust) {
-                    IntervalKind::PerComparison => outside,
-                    IntervalKind::SimultaneousBy(PValueMethod::Sidak) => p_values::sidak_level(outside, m),
-                    IntervalKind::Simultaneous if request.adjust == Adjust::PValues(PValueMethod::Sidak) => {
-                        p_values::sidak_level(outside, m)
-                    }
-                    _ => outside / m,
-                };
-                let upper = if request.sides == Sides::Both { each / 2.0 } else { each };
-                student_t::upper_quantile(upper, df)?
-            }
-            Adjust::Tukey | Adjust::GamesHowell => {
-                range::critical_q(outside, range::of(levels, range)?, df)? / std::f64::consts::SQRT_2
-            }
-            Adjust::Dunnett => control::critical(outside, loadings, df, request.sides)?,
-            Adjust::Scheffe => scheffe::critical(outside, levels, df)?,
-        };
-        last = Some((df, value));
-        result.push(value);
-    }
-    Ok(result)
-}
-
-/// The level at which each raw p-value is judged, from the critical values of the decision.
-fn alphas(
-    request: &Request,
-    tests: &[Test],
-    raw: &[f64],
-    critical: &[f64],
-) -> Result<Vec<Option<f64>>, OutOfDomain> {
-    if let Adjust::PValues(method) = request.adjust {
-        let levels = p_values::alpha_per_comparison(raw, method, request.alpha);
-        return Ok(levels.map_or(vec![None; raw.len()], |levels| levels.into_iter().map(Some).collect()));
-    }
-    let each = tests.iter().zip(critical);
-    each.map(|(test, critical)| beyond(*critical, test.contrast.df, request.sides).map(Some)).collect()
-}
-
-/// The probability that t on `df` goes beyond `critical` standard errors on the sides that count.
-fn beyond(critical: f64, df: f64, sides: Sides) -> Result<f64, OutOfDomain> {
-    let upper = student_t::sf(critical, df)?;
-    Ok(if sides == Sides::Both { (2.0 * upper).min(1.0) } else { upper })
-}
-
-/// Relative error of the adjusted p-values of procedures whose distribution is integrated.
-fn relative_error(adjust: Adjust) -> Option<f64> {
-    match adjust {
-        Adjust::Tukey | Adjust::GamesHowell => Some(range::RELATIVE_ERROR),
-        Adjust::Dunnett => Some(control::RELATIVE_ERROR),
-        _ => None,
-    }
+fn disagrees(row: &ComparisonRow, request: &Request) -> bool {
+    row.interval.is_some_and(|interval| interval.supports(request.claim, request.sides) != row.rejected)
 }
 
 /// The one value of all, where there is one.
@@ -365,71 +214,75 @@ fn common(mut values: impl Iterator<Item = Option<f64>>) -> Option<f64> {
     values.all(|value| value == Some(first)).then_some(first)
 }
 
-struct Decided {
-    adjusted: Vec<f64>,
-    critical: Vec<f64>,
-    alphas: Vec<Option<f64>>,
+/// The letters of all pairs compared to both sides; `None` for any other family, and where they would be too many to read.
+fn lettered(request: &Request, rows: &[ComparisonRow]) -> Option<super::letters::Letters> {
+    let both = request.sides == Sides::Both && request.claim == Claim::Difference;
+    if request.family != Family::Set(Set::AllPairs) || !both {
+        return None;
+    }
+    let k = request.labels.len();
+    let place = |i: usize, j: usize| i * (2 * k - i - 1) / 2 + (j - i - 1);
+    let means: Vec<f64> = match (request.estimates, request.sample) {
+        (Some(estimates), _) => estimates.means.clone(),
+        (None, Some(sample)) => sample.summary().groups.iter().map(|group| group.mean).collect(),
+        (None, None) => return None,
+    };
+    letters(k, &means, |i, j| rows[place(i.min(j), i.max(j))].rejected).ok()
 }
 
-impl Decided {
-    fn row(
-        &self,
-        i: usize,
-        request: &Request,
-        variances: Variances,
-        test: &Test,
-    ) -> Result<ComparisonRow, OutOfDomain> {
-        let on_range = matches!(request.adjust, Adjust::Tukey | Adjust::GamesHowell);
+/// Makes the rows of a result.
+struct Rows<'a> {
+    request: &'a Request<'a>,
+    decision: &'a Decision,
+    detectable: Detectable,
+}
+
+impl Rows<'_> {
+    fn row(&mut self, test: &Test, i: usize) -> Result<ComparisonRow, CannotCompare> {
+        let (request, decision) = (self.request, self.decision);
+        let on_range = matches!(
+            request.adjust,
+            Adjust::Tukey | Adjust::GamesHowell | Adjust::NewmanKeuls | Adjust::RyanEinotGabrielWelsch
+        );
         let scale = if on_range { std::f64::consts::SQRT_2 } else { 1.0 };
-        let reach = self.critical[i] * test.contrast.se;
-        let interval = Bounds {
-            lower: if request.sides == Sides::Less {
-                f64::NEG_INFINITY
-            } else {
-                test.contrast.estimate - reach
-            },
-            upper: if request.sides == Sides::Greater {
-                f64::INFINITY
-            } else {
-                test.contrast.estimate + reach
-            },
+        let reach = decision.reach[i];
+        let shift = row_effects::shift(request, test, reach)?;
+        let statistic_name = match request.basis {
+            _ if on_range => "q",
+            Basis::Ranks(_) => "z",
+            _ => "t",
         };
         Ok(ComparisonRow {
             name: test.name.clone(),
             words: test.words.clone(),
             coefficients: test.coefficients.clone(),
-            estimate: test.contrast.estimate,
-            se: test.contrast.se,
-            df: test.contrast.df,
+            estimate: shift.map_or(test.estimate, |shift| shift.estimate),
+            se: test.se,
+            df: test.df,
             t: test.t,
             statistic: if on_range { range::q(test.t) } else { test.t },
-            statistic_name: if on_range { "q" } else { "t" },
+            statistic_name,
             p: test.p,
-            p_adjusted: self.adjusted[i],
-            p_error: relative_error(request.adjust).map(|relative| relative * self.adjusted[i]),
-            alpha: self.alphas[i],
-            rejected: self.adjusted[i] <= request.alpha,
-            critical: self.critical[i] * scale,
-            interval,
-            effect: effect(request, variances, test, self.critical[i])?,
+            p_counted: test.p_counted,
+            p_adjusted: decision.adjusted[i],
+            p_error: decision.errors[i],
+            alpha: decision.alphas[i],
+            rejected: decision.adjusted[i] <= request.alpha,
+            critical: reach.critical().map(|critical| critical * scale),
+            interval: row_effects::interval(request, test, reach, shift.as_ref()),
+            effects: row_effects::effects(request, test, reach)?,
+            detectable: self.detectable(test, reach)?,
         })
     }
-}
 
-fn effect(
-    request: &Request,
-    variances: Variances,
-    test: &Test,
-    critical: f64,
-) -> Result<Option<StandardisedEffect>, OutOfDomain> {
-    let standardiser = request.summary.and_then(|it| Standardiser::of(it, variances, &test.coefficients));
-    let Some(standardiser) = standardiser else {
-        return Ok(None);
-    };
-    let coverage = match request.sides {
-        Sides::Both => Coverage::beyond_both(critical, test.contrast.df)?,
-        Sides::Greater => Coverage::lower_beyond(critical, test.contrast.df)?,
-        Sides::Less => Coverage::upper_beyond(critical, test.contrast.df)?,
-    };
-    Ok(StandardisedEffect::of(&test.contrast, &test.coefficients, standardiser, coverage))
+    /// Only for differences of means: a margin or a rank has no difference of means to detect.
+    fn detectable(&mut self, test: &Test, reach: decision::Reach) -> Result<Option<f64>, CannotCompare> {
+        let means = self.request.basis == Basis::Means && self.request.claim == Claim::Difference;
+        match (reach.critical(), test.se, self.request.summary) {
+            (Some(critical), Some(se), Some(_)) if means => {
+                Ok(Some(self.detectable.difference(critical, test.df, se)?))
+            }
+            _ => Ok(None),
+        }
+    }
 }

@@ -1,6 +1,9 @@
 //! p-values that come from elsewhere, adjusted as one family.
 
-use super::p_values::{self, PValueMethod};
+use super::graph::GraphDecision;
+use super::ordered::in_order;
+use super::p_values;
+use super::{Adjust, CannotCompare, Order};
 
 /// One given p-value, decided.
 #[derive(Debug, Clone, PartialEq)]
@@ -16,19 +19,38 @@ pub struct GivenRow {
 /// A family of given p-values, decided.
 #[derive(Debug, Clone, PartialEq)]
 pub struct GivenComparisons {
-    pub method: PValueMethod,
+    pub adjust: Adjust,
     pub family_size: usize,
     pub alpha: f64,
     /// The rows' per-comparison alpha where it is one for all.
     pub alpha_per_comparison: Option<f64>,
     pub rows: Vec<GivenRow>,
+    /// How an ordered procedure went, in its own order.
+    pub path: Option<GraphDecision>,
 }
 
-/// The decision on every given p-value; each must be from 0 to 1.
-pub fn adjust_given(given: &[(String, f64)], method: PValueMethod, alpha: f64) -> GivenComparisons {
+/// The decision on every given p-value; each must be from 0 to 1. `order` is for the ordered procedures.
+///
+/// # Errors
+/// [`CannotCompare`] for a procedure that needs more than p-values, or an ordered one without its order.
+pub fn adjust_given(
+    given: &[(String, f64)],
+    adjust: Adjust,
+    order: Option<&Order>,
+    alpha: f64,
+) -> Result<GivenComparisons, CannotCompare> {
     let raw: Vec<f64> = given.iter().map(|(_, p)| *p).collect();
-    let adjusted = p_values::adjusted(&raw, method);
-    let levels = p_values::alpha_per_comparison(&raw, method, alpha);
+    let (adjusted, levels, path) = match adjust {
+        Adjust::PValues(method) => {
+            let levels = p_values::alpha_per_comparison(&raw, method, alpha);
+            (p_values::adjusted(&raw, method), levels, None)
+        }
+        adjust if adjust.ordered() => {
+            let found = in_order(order, &raw, alpha)?;
+            (found.adjusted, Some(found.levels), Some(found.path))
+        }
+        _ => return Err(CannotCompare::NoOrder),
+    };
     let rows: Vec<GivenRow> = (0..raw.len())
         .map(|i| GivenRow {
             name: given[i].0.clone(),
@@ -40,5 +62,5 @@ pub fn adjust_given(given: &[(String, f64)], method: PValueMethod, alpha: f64) -
         .collect();
     let first = rows.first().and_then(|row| row.alpha);
     let common = first.filter(|first| rows.iter().all(|row| row.alpha == Some(*first)));
-    GivenComparisons { method, family_size: rows.len(), alpha, alpha_per_comparison: common, rows }
+    Ok(GivenComparisons { adjust, family_size: rows.len(), alpha, alpha_per_comparison: common, rows, path })
 }

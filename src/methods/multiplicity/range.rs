@@ -16,17 +16,6 @@ pub fn q(t: f64) -> f64 {
     t.abs() * std::f64::consts::SQRT_2
 }
 
-/// The range of `levels` means. One serves the whole family of comparisons: it is made the first time and then `known`.
-///
-/// # Errors
-/// [`OutOfDomain`] from the distribution.
-pub fn of(levels: usize, known: &mut Option<Family>) -> Result<&mut Family, OutOfDomain> {
-    match known {
-        Some(range) => Ok(range),
-        none => Ok(none.insert(Family::new(levels)?)),
-    }
-}
-
 /// Adjusted p-value of a pair with this t on `df` degrees of freedom; `range` is that of all levels.
 ///
 /// # Errors

@@ -91,7 +91,7 @@ impl Kind {
             Kind::Study => study::evaluate(ask, read).into(),
             Kind::Profile => profile::evaluate(ask, read).into(),
             Kind::Overall => overall::evaluate(ask, read).into(),
-            Kind::Comparisons => comparisons::evaluate(ask, read).into(),
+            Kind::Comparisons => comparisons::evaluate(ask, read),
             Kind::Trend => trend::evaluate(ask, read).into(),
             Kind::Power => power::evaluate(ask).into(),
         }
@@ -118,6 +118,11 @@ impl Read {
 
     /// The study read through the field `study`.
     pub fn study(&self) -> Option<&crate::study::Study> {
-        self.value("study").and_then(Value::study).map(|study| &**study)
+        self.shared_study().map(|study| &**study)
+    }
+
+    /// The same, to be kept while long work goes on.
+    pub fn shared_study(&self) -> Option<&std::sync::Arc<crate::study::Study>> {
+        self.value("study").and_then(Value::study)
     }
 }

@@ -2,7 +2,7 @@
 //! procedures that the notebook uses.
 
 use levelwise::methods::contrasts::{Set, ready_set};
-use levelwise::methods::multiplicity::{Adjust, Family, Request, Sides, compare};
+use levelwise::methods::multiplicity::{Adjust, Family, Request, compare};
 use levelwise::study::{Estimates, Sample, Variances};
 
 /// What a family of comparisons came to: for each comparison in order the adjusted p-value and the two bounds of its
@@ -30,17 +30,9 @@ fn decide(groups: Vec<Vec<f64>>, set: Set, adjust: Adjust) -> Result<Decided, St
     let summary = Sample { origin: 0.0, groups }.summary();
     let estimates =
         Estimates::one_way(&labels, &summary, Variances::Equal).map_err(|error| error.to_string())?;
-    let decided = compare(&Request {
-        estimates: &estimates,
-        summary: None,
-        contrasts: &ready_set(set, &labels),
-        family: Family::Set(set),
-        adjust,
-        sides: Sides::Both,
-        alpha: 0.05,
-        confidence: 0.95,
-    })
-    .map_err(|error| error.to_string())?;
-    let numbers = decided.rows.iter().map(|row| [row.p_adjusted, row.interval.lower, row.interval.upper]);
-    Ok(numbers.flatten().collect())
+    let contrasts = ready_set(set, &labels);
+    let decided = compare(&Request::of_means(&estimates, &contrasts, Family::Set(set), adjust))
+        .map_err(|error| error.to_string())?;
+    let bounds = decided.rows.iter().filter_map(|row| Some((row.p_adjusted, row.interval?)));
+    Ok(bounds.flat_map(|(p, interval)| [p, interval.lower, interval.upper]).collect())
 }

@@ -15,6 +15,7 @@
 mod family;
 mod joint;
 mod pair;
+pub mod shift;
 
 pub use family::{steel, steel_critical, steel_dwass, steel_dwass_critical, steel_loadings};
 pub use joint::{JointRanks, RankContrast};

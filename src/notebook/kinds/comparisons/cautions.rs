@@ -1,9 +1,13 @@
 //! What could mislead in a family of comparisons, said in place.
 
-use super::{Laid, words};
+use super::asked::Asked;
+use super::decided::Laid;
+use super::words;
 use crate::answer::number;
 use crate::methods::contrasts::Set;
-use crate::methods::multiplicity::{Adjust, Family, PValueMethod, Sides};
+use crate::methods::multiplicity::{
+    Adjust, Basis, Claim, Family, IntervalKind, PValueMethod, Ranking, Sides,
+};
 use crate::notebook::kinds::wording::listed;
 use crate::study::Variances;
 
@@ -16,68 +20,118 @@ const RATIO: f64 = 2.0;
 
 /// Cautions about this result.
 pub fn of(laid: &Laid) -> Vec<String> {
-    let (result, family) = (&laid.comparisons, laid.asked.family);
+    let (result, asked) = (laid.comparisons, laid.asked);
     let mut found = Vec::new();
     found.extend(pooled_spread(laid));
     found.extend(small_groups(laid));
-    found.extend(of_procedure(result.adjust, family, result.sides, result.family_size, result.alpha));
+    found.extend(of_ask(asked, laid.study.levels.count()));
+    found.extend(unequal_steps(laid));
+    found.extend(too_many_contrasts(laid));
     found.extend(disagreeing(laid));
-    if (result.confidence - (1.0 - result.alpha)).abs() > 1e-12 {
+    if result.interval_kind != IntervalKind::None && (result.confidence - (1.0 - result.alpha)).abs() > 1e-12
+    {
         found.push(format!(
             "The intervals have the study's confidence of {} and the decisions an error rate of {}: they need not agree.",
             number::percent(result.confidence),
             number::percent(result.alpha)
         ));
     }
-    found.extend(unused(&laid.asked.unused, laid.asked.family_name));
     found
 }
 
-/// Cautions that the procedure itself calls for, whatever the data.
-pub fn of_procedure(adjust: Adjust, family: Family, sides: Sides, size: usize, alpha: f64) -> Vec<String> {
-    let mut found = Vec::new();
-    let Adjust::PValues(method) = adjust else { return found };
+/// Cautions that what is asked calls for, whatever the data.
+pub fn of_ask(asked: &Asked, levels: usize) -> Vec<String> {
+    let size = asked.given.as_ref().map_or(asked.contrasts.len(), Vec::len);
+    let mut found = of_procedure(asked.adjust, asked.family, asked.sides, size, asked.alpha, levels);
+    found.extend(of_basis(asked.basis));
+    if asked.claim != Claim::Difference {
+        found.push(MARGIN.to_string());
+    }
+    found.extend(unused(&asked.unused));
+    found
+}
+
+/// What holds for every claim with a margin, in clinical work above all.
+const MARGIN: &str = "The margin must have been fixed, with its reasons, before the data were seen. A decision on treatment or safety rests on the approved protocol, a qualified statistician and local rules; this cell does not replace them.";
+
+fn of_basis(basis: Basis) -> Option<String> {
+    match basis {
+        Basis::Ranks(Ranking::Joint) => Some(
+            "With joint ranks the result of a comparison depends on the values of the other levels too, and the family-wise error is not strictly kept once some levels differ. Ranking pair by pair has neither trait."
+                .to_string(),
+        ),
+        Basis::Ranks(Ranking::PairByPair) => None,
+        Basis::Permutation => Some(
+            "The hypothesis of a rearrangement is that the levels compared have one distribution, spread included: it is exact after random assignment, and a difference in spread can also lead to a rejection."
+                .to_string(),
+        ),
+        Basis::Means => None,
+    }
+}
+
+/// Cautions that the procedure itself calls for.
+pub fn of_procedure(
+    adjust: Adjust,
+    family: Family,
+    sides: Sides,
+    size: usize,
+    alpha: f64,
+    levels: usize,
+) -> Vec<String> {
     let name = words::procedure(adjust);
-    match method {
-        PValueMethod::Hochberg | PValueMethod::Hommel => {
+    let chance = |tests: usize| number::percent(1.0 - libm::pow(1.0 - alpha, tests as f64));
+    let found = match adjust {
+        Adjust::PValues(PValueMethod::Hochberg | PValueMethod::Hommel) => {
             let doubt = match family {
                 Family::Set(Set::AllPairs) => " For all pairs this is not guaranteed.",
                 _ => "",
             };
-            found.push(format!(
+            Some(format!(
                 "{name}'s procedure keeps its error rate when the tests are independent or positively dependent.{doubt} Holm's needs no such condition."
-            ));
+            ))
         }
-        PValueMethod::BenjaminiHochberg | PValueMethod::BenjaminiYekutieli => found.push(format!(
+        Adjust::PValues(PValueMethod::BenjaminiHochberg | PValueMethod::BenjaminiYekutieli) => Some(format!(
             "{name} controls the expected share of false findings among the findings, not the chance of any false one: it is for exploratory screening, not for confirming."
         )),
-        PValueMethod::Sidak | PValueMethod::HolmSidak if sides != Sides::Both || family == Family::Given => {
-            found.push(format!(
+        Adjust::PValues(PValueMethod::Sidak | PValueMethod::HolmSidak)
+            if sides != Sides::Both || family == Family::Given =>
+        {
+            Some(format!(
                 "{name} keeps its error rate for two-sided t tests with a common error term and for independent tests; here it also needs positive dependence."
-            ));
+            ))
         }
-        PValueMethod::None if size > 1 => found.push(format!(
+        Adjust::PValues(PValueMethod::None) if size > 1 => Some(format!(
             "Nothing is adjusted: if no level differed, the chance of at least one false finding among {size} tests could reach {}.",
-            number::percent(1.0 - libm::pow(1.0 - alpha, size as f64))
+            chance(size)
         )),
-        _ => {}
-    }
-    found
+        Adjust::NewmanKeuls if levels > 3 => Some(format!(
+            "The Newman-Keuls procedure does not control the family-wise error strongly: with {} well separated pairs of equal levels the chance of a false finding approaches {}. It is offered for reading older work, not for a plan.",
+            levels / 2,
+            chance(levels / 2)
+        )),
+        Adjust::LeastSignificantDifference if levels > 3 => Some(format!(
+            "The least significant difference does not control the family-wise error strongly: once one level differs, the overall test opens the gate, and the chance of a false finding among the other {} can reach about {}. It is offered for reading older work, not for a plan.",
+            levels - 1,
+            chance((levels - 1) / 2)
+        )),
+        _ => None,
+    };
+    found.into_iter().collect()
 }
 
 /// Fields that are written and not used.
-pub fn unused(fields: &[&str], family: &str) -> Option<String> {
-    let names = listed(fields.iter().map(|field| format!("\"{field}\"")));
-    let verb = if fields.len() == 1 { "is" } else { "are" };
-    (!fields.is_empty())
-        .then(|| format!("{names} {verb} written in this cell but not used by the family \"{family}\"."))
+pub fn unused(fields: &[(&'static str, String)]) -> Vec<String> {
+    fields
+        .iter()
+        .map(|(field, by)| format!("\"{field}\" is written in this cell but not used by {by}."))
+        .collect()
 }
 
 fn pooled_spread(laid: &Laid) -> Option<String> {
-    if laid.study.variances != Variances::Equal {
+    if laid.study.variances != Variances::Equal || matches!(laid.asked.basis, Basis::Ranks(_)) {
         return None;
     }
-    let groups = laid.summary.groups.iter().zip(&laid.estimates.labels);
+    let groups = laid.summary.groups.iter().zip(&laid.study.levels.labels);
     let spreads: Vec<(f64, usize, &String)> =
         groups.filter_map(|(g, level)| Some((g.sd()?, g.n, level))).collect();
     let largest = spreads.iter().max_by(|one, other| one.0.total_cmp(&other.0))?;
@@ -106,32 +160,57 @@ fn pooled_spread(laid: &Laid) -> Option<String> {
 }
 
 fn small_groups(laid: &Laid) -> Option<String> {
-    let small = laid.estimates.n.iter().zip(&laid.estimates.labels).filter(|(n, _)| **n < SMALL);
+    let small = laid.n().into_iter().zip(&laid.study.levels.labels).filter(|(n, _)| *n < SMALL);
     let names: Vec<String> = small.map(|(n, level)| format!("\"{level}\" (n = {n})")).collect();
-    // With two levels it is Welch's t test alone.
-    let liberal = laid.comparisons.adjust == Adjust::GamesHowell && laid.estimates.labels.len() > 2;
-    (liberal && !names.is_empty()).then(|| {
+    if names.is_empty() {
+        return None;
+    }
+    let names = listed(names.into_iter());
+    match laid.comparisons.adjust {
+        // With two levels it is Welch's t test alone.
+        Adjust::GamesHowell if laid.study.levels.count() > 2 => Some(format!(
+            "The Games-Howell procedure finds somewhat too many differences with groups smaller than {SMALL}: {names}. Dunnett T3 is the careful choice for all pairs with unequal variances."
+        )),
+        Adjust::Steel | Adjust::SteelDwass => Some(format!(
+            "{} refers rank sums to a distribution for large samples, which is rough for groups smaller than {SMALL}: {names}. Holm with exact rank sums is the careful choice.",
+            words::procedure(laid.comparisons.adjust)
+        )),
+        _ => None,
+    }
+}
+
+/// Stepwise ranges of ordered means rest on equal sizes.
+fn unequal_steps(laid: &Laid) -> Option<String> {
+    let n = laid.n();
+    let stepwise = matches!(laid.comparisons.adjust, Adjust::RyanEinotGabrielWelsch | Adjust::NewmanKeuls);
+    (stepwise && n.windows(2).any(|pair| pair[0] != pair[1])).then(|| {
         format!(
-            "The Games-Howell procedure finds somewhat too many differences with groups smaller than {SMALL}: {}. Holm with Welch's t tests is the careful choice.",
-            listed(names.into_iter())
+            "{} is made for equal group sizes; with unequal ones its error rate is not proven. The step-down max-t procedure holds for any sizes.",
+            words::procedure(laid.comparisons.adjust)
+        )
+    })
+}
+
+/// More contrasts than the levels have degrees of freedom.
+fn too_many_contrasts(laid: &Laid) -> Option<String> {
+    let (size, free) = (laid.asked.contrasts.len(), laid.study.levels.count() - 1);
+    (laid.asked.family == Family::Contrasts && size > free).then(|| {
+        format!(
+            "{size} contrasts are more than the {free} degrees of freedom between {} levels: they cannot all be independent questions. The error rate is kept over all {size}.",
+            free + 1
         )
     })
 }
 
 fn disagreeing(laid: &Laid) -> Option<String> {
-    let result = &laid.comparisons;
-    let names: Vec<String> = result
-        .disagreeing
-        .iter()
-        .map(|i| words::row_name(&result.rows[*i].name, laid.asked.family))
-        .collect();
-    if names.is_empty() {
+    let result = laid.comparisons;
+    if result.disagreeing.is_empty() {
         return None;
     }
-    let rows = listed(names.into_iter());
+    let rows = listed(result.disagreeing.iter().map(|i| laid.name(&result.rows[*i])));
     Some(if result.adjust.single_step() {
         format!(
-            "The interval of {rows} and its decision do not say the same, because they are at different levels."
+            "The interval of {rows} and its decision do not say the same, because they are at different levels or by different approximations."
         )
     } else {
         format!(

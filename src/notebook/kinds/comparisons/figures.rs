@@ -1,45 +1,68 @@
 //! The figures: differences with their intervals, and the groups with their means.
 
-use super::{Laid, words};
-use crate::answer::figure::{self, Group, Groups, IntervalRow, Intervals, Mark, Span};
+use super::decided::Laid;
+use super::{letters, rows, words};
+use crate::answer::figure::{
+    self, Group, Groups, IntervalRow, Intervals, Mark, Network, NetworkArrow, NetworkNode, Span,
+};
 use crate::answer::{Figure, number};
-use crate::methods::multiplicity::Family;
+use crate::methods::multiplicity::{Basis, Claim, GraphDecision, IntervalKind, Order, Ranking};
 use crate::notebook::kinds::wording::outcome_with_unit;
 use crate::numerics::distributions::student_t;
 use crate::study::{Observed, Variances};
 
 /// The differences with the intervals of the table, one row a comparison.
 pub fn differences(laid: &Laid) -> Figure {
-    let result = &laid.comparisons;
-    let what = if laid.asked.family == Family::Contrasts { "Contrast" } else { "Difference" };
+    let result = laid.comparisons;
+    let what = rows::capital(laid.estimate_word());
     let rows = result.rows.iter().map(|row| IntervalRow {
-        label: words::row_name(&row.name, laid.asked.family),
+        label: laid.name(row),
         estimate: row.estimate,
-        interval: Some(Span { lower: row.interval.lower, upper: row.interval.upper }),
+        interval: row.interval.map(|interval| Span { lower: interval.lower, upper: interval.upper }),
         mark: if row.rejected { Mark::Solid } else { Mark::Hollow },
     });
+    let bars = match result.interval_kind {
+        IntervalKind::None => format!("No intervals: {} has none here", words::procedure(result.adjust)),
+        _ => format!("Bars: {} ({})", words::interval(result), words::procedure(result.adjust)),
+    };
+    let margins = match result.claim {
+        Claim::Difference => Vec::new(),
+        Claim::NonInferiority { .. } => vec![result.claim.null(result.sides)],
+        Claim::Equivalence { lower, upper } => vec![lower, upper],
+    };
+    let shown = words::shown(result.claim);
+    let unit = match result.basis {
+        Basis::Ranks(Ranking::Joint) => format!("ranks of {}", laid.study.outcome),
+        _ => outcome_with_unit(laid.study),
+    };
     figure::intervals(&Intervals {
         title: format!("{what}s of {}", laid.study.outcome),
-        axis: format!("{what} in {}", outcome_with_unit(laid.study)),
-        bars: format!("Bars: {} ({})", words::interval(result), words::procedure(result.adjust)),
-        solid: "a difference is shown".to_string(),
-        hollow: "not shown to differ".to_string(),
+        axis: format!("{what} in {unit}"),
+        bars,
+        solid: format!("{shown} is shown"),
+        hollow: if result.claim == Claim::Difference {
+            "not shown to differ".into()
+        } else {
+            "not shown".into()
+        },
         reference: Some(0.0),
+        margins,
         rows: rows.collect(),
     })
 }
 
 /// Every value where it is known, with the means and their own intervals.
 pub fn groups(laid: &Laid) -> Figure {
-    let (study, estimates) = (laid.study, laid.estimates);
+    let study = laid.study;
     let values = |i: usize| match &study.observed {
         Observed::Sample(sample) => sample.groups[i].iter().map(|offset| sample.origin + offset).collect(),
         _ => Vec::new(),
     };
-    let groups = (0..estimates.labels.len()).map(|i| Group {
-        label: estimates.labels[i].clone(),
+    let groups = (0..study.levels.count()).map(|i| Group {
+        label: study.levels.labels[i].clone(),
         values: values(i),
-        mean: Some(estimates.origin + estimates.means[i]),
+        mean: Some(laid.summary.origin + laid.summary.groups[i].mean),
+        letters: laid.comparisons.letters.as_ref().map(|letters| letters.of_level[i].clone()),
         interval: mean_interval(laid, i),
     });
     let spread = match study.variances {
@@ -53,13 +76,18 @@ pub fn groups(laid: &Laid) -> Figure {
         bars: format!(
             "Bars: mean with its {level} interval, each level by itself ({spread}); they do not decide the comparisons"
         ),
+        letters: if laid.comparisons.letters.is_some() {
+            letters::CAPTION.to_string()
+        } else {
+            String::new()
+        },
         groups: groups.collect(),
     })
 }
 
 /// The mean with t times its standard error, from the same error term as the comparisons.
 fn mean_interval(laid: &Laid, i: usize) -> Option<Span> {
-    let estimates = laid.estimates;
+    let estimates = laid.estimates?;
     let df = match &estimates.df {
         crate::study::DegreesOfFreedom::Common(df) => *df,
         crate::study::DegreesOfFreedom::PerMean(dfs) => dfs[i],
@@ -67,4 +95,59 @@ fn mean_interval(laid: &Laid, i: usize) -> Option<Span> {
     let t = student_t::upper_quantile((1.0 - laid.comparisons.confidence) / 2.0, df).ok()?;
     let (mean, reach) = (estimates.origin + estimates.means[i], t * estimates.covariance[(i, i)].sqrt());
     Some(Span { lower: mean - reach, upper: mean + reach })
+}
+
+/// The graphs of an ordered procedure: as it was declared, and as it stands after the rejections.
+pub fn path(laid: &Laid) -> Vec<Figure> {
+    let (Some(order), Some(path)) = (&laid.asked.order, &laid.comparisons.path) else { return Vec::new() };
+    let names: Vec<String> = laid.comparisons.rows.iter().map(|row| laid.name(row)).collect();
+    graphs(&names, order, path)
+}
+
+/// The declared graph of the hypotheses of these `names`, with what was rejected; and where some were and others not, what
+/// the rejections left.
+pub fn graphs(names: &[String], order: &Order, path: &GraphDecision) -> Vec<Figure> {
+    let rejected = |place: usize| path.rejected[place];
+    let nodes = |weight: &dyn Fn(usize) -> Option<f64>| -> Vec<NetworkNode> {
+        let node = |(place, row): (usize, &usize)| NetworkNode {
+            label: names[*row].clone(),
+            weight: weight(place),
+            mark: if rejected(place) { Mark::Solid } else { Mark::Hollow },
+        };
+        order.places.iter().enumerate().map(node).collect()
+    };
+    let draw = |title: &str, words: &str, nodes: Vec<NetworkNode>, transitions: &[Vec<f64>]| {
+        figure::network(&Network {
+            title: title.to_string(),
+            words: words.to_string(),
+            solid: "rejected".to_string(),
+            hollow: "not rejected".to_string(),
+            nodes,
+            arrows: arrows(transitions),
+        })
+    };
+    let declared = draw(
+        "The graph as declared",
+        "Weights: each comparison's share of the error rate. Arrows: where it goes on rejection.",
+        nodes(&|place| Some(order.graph.weights()[place])),
+        &order.graph.transitions(),
+    );
+    let Some(last) = path.steps.last().filter(|_| path.steps.len() < names.len()) else {
+        return vec![declared];
+    };
+    let left = draw(
+        "The graph after the rejections",
+        "What is left: the weights at which the others were judged.",
+        nodes(&|place| (!rejected(place)).then(|| path.final_weights[place])),
+        &last.transitions_after,
+    );
+    vec![declared, left]
+}
+
+fn arrows(transitions: &[Vec<f64>]) -> Vec<NetworkArrow> {
+    let row = |(from, row): (usize, &Vec<f64>)| -> Vec<NetworkArrow> {
+        let arrow = |(to, share): (usize, &f64)| NetworkArrow { from, to, share: *share };
+        row.iter().enumerate().filter(|(_, share)| **share > 0.0).map(arrow).collect()
+    };
+    transitions.iter().enumerate().flat_map(row).collect()
 }

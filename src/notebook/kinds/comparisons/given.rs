@@ -1,40 +1,40 @@
 //! p-values from elsewhere, adjusted as one family.
 
 use super::asked::Asked;
-use super::decided::level_cell;
-use super::{cautions, words};
+use super::rows::level_cell;
+use super::{cautions, figures, json as shared, words};
 use crate::answer::{Answer, Cell, Row, Table, number};
 use crate::methods::multiplicity::{
-    Adjust, ErrorRate, GivenComparisons, GivenRow, PValueMethod, adjust_given,
+    Adjust, CannotCompare, ErrorRate, GivenComparisons, GivenRow, PValueMethod, adjust_given,
 };
 use crate::notebook::kinds::wording::{listed, p_cell, p_statement};
 use crate::notebook::outcome::Outcome;
 use crate::notebook::results::number as json_number;
 use serde_json::{Map, Value, json};
 
-/// The settled answer, or nothing to mend left out: only p-value methods reach here.
+/// The settled answer, or what to mend.
 pub fn outcome(asked: &Asked, given: &[(String, f64)]) -> Outcome {
-    let Adjust::PValues(method) = asked.adjust else {
-        return Outcome::mend(Vec::new());
-    };
-    let result = adjust_given(given, method, asked.alpha);
+    let Ok(result) = decide(asked, given, asked.adjust) else { return Outcome::mend(Vec::new()) };
     let also: Vec<(Adjust, Vec<f64>)> = asked
         .also
         .iter()
-        .filter_map(|adjust| match adjust {
-            Adjust::PValues(method) => {
-                let rows = adjust_given(given, *method, asked.alpha).rows;
-                Some((*adjust, rows.iter().map(|row| row.p_adjusted).collect()))
-            }
-            _ => None,
+        .filter_map(|adjust| {
+            let rows = decide(asked, given, *adjust).ok()?.rows;
+            Some((*adjust, rows.iter().map(|row| row.p_adjusted).collect()))
         })
         .collect();
     let mut answer = Answer::new(headline(asked, &result)).with_table(table(asked, &result, &also));
+    if let (Some(order), Some(path)) = (&asked.order, &result.path) {
+        let names: Vec<String> = given.iter().map(|(name, _)| name.clone()).collect();
+        answer = figures::graphs(&names, order, path).into_iter().fold(answer, Answer::with_figure);
+    }
     answer = answer.with_writeup(writeup(asked, &result));
-    answer.cautions =
-        cautions::of_procedure(asked.adjust, asked.family, asked.sides, given.len(), asked.alpha);
-    answer.cautions.extend(cautions::unused(&asked.unused, asked.family_name));
+    answer.cautions = cautions::of_ask(asked, 0);
     Outcome::settled(answer, results(asked, &result, &also))
+}
+
+fn decide(asked: &Asked, given: &[(String, f64)], adjust: Adjust) -> Result<GivenComparisons, CannotCompare> {
+    adjust_given(given, adjust, asked.order.as_ref(), asked.alpha)
 }
 
 fn headline(asked: &Asked, result: &GivenComparisons) -> String {
@@ -147,6 +147,10 @@ fn results(asked: &Asked, result: &GivenComparisons, also: &[(Adjust, Vec<f64>)]
     object.insert("alpha".into(), json_number(asked.alpha));
     if let Some(level) = result.alpha_per_comparison {
         object.insert("alpha_per_comparison".into(), json_number(level));
+    }
+    if let (Some(order), Some(path)) = (&asked.order, &result.path) {
+        let names: Vec<&str> = result.rows.iter().map(|row| row.name.as_str()).collect();
+        object.insert("path".into(), shared::path(&names, order, path));
     }
     object.insert("rows".into(), (0..result.rows.len()).map(row).collect());
     Value::Object(object)

@@ -1,21 +1,26 @@
 //! The result under the names that outside checks rely on.
 
-use super::Laid;
 use super::asked::Asked;
-use crate::methods::contrasts::{Contrast, in_words, rank};
+use super::decided::Laid;
+use crate::methods::contrasts::{Contrast, Partition, in_words, rank};
 use crate::methods::multiplicity::{
-    Adjust, ComparisonRow, Disagreement, Explanation, IntervalKind, PValueMethod,
+    Adjust, Basis, Claim, ComparisonRow, Disagreement, Explanation, GraphDecision, IntervalKind, Order,
+    PValueMethod, Ranking, Rearranged, Sized,
 };
 use crate::notebook::results::number;
 use serde_json::{Map, Value, json};
 
 /// All rows with full precision.
 pub fn results(laid: &Laid) -> Value {
-    let result = &laid.comparisons;
-    let mut object = family(laid.asked, &laid.estimates.labels);
+    let result = laid.comparisons;
+    let mut object = family(laid.asked, &laid.study.levels.labels);
     insert(&mut object, "critical", result.critical.map(number));
     insert(&mut object, "alpha_per_comparison", result.alpha_per_comparison.map(number));
     object.insert("confidence".into(), number(result.confidence));
+    insert(&mut object, "letters", letters(laid));
+    insert(&mut object, "partition", laid.partition.as_ref().map(partition));
+    insert(&mut object, "path", path_of(laid));
+    insert(&mut object, "rearranged", result.rearranged.as_ref().map(rearranged));
     object.insert("intervals".into(), interval_kind(result.interval_kind));
     let rows = (0..result.rows.len()).map(|i| row(laid, i));
     object.insert("rows".into(), rows.collect());
@@ -51,6 +56,23 @@ fn family(asked: &Asked, labels: &[String]) -> Map<String, Value> {
     object.insert("rank".into(), json!(rank(&coefficients(&asked.contrasts))));
     object.insert("levels".into(), json!(labels));
     object.insert("sides".into(), json!(asked.sides));
+    object.insert("basis".into(), json!(asked.basis.word()));
+    match asked.basis {
+        Basis::Ranks(Ranking::Joint) => drop(object.insert("ranking".into(), json!("joint"))),
+        Basis::Ranks(Ranking::PairByPair) => drop(object.insert("ranking".into(), json!("pair by pair"))),
+        Basis::Means | Basis::Permutation => {}
+    }
+    match asked.claim {
+        Claim::Difference => drop(object.insert("claim".into(), json!("difference"))),
+        Claim::NonInferiority { margin } => {
+            object.insert("claim".into(), json!("non-inferiority"));
+            object.insert("margin".into(), json!([margin]));
+        }
+        Claim::Equivalence { lower, upper } => {
+            object.insert("claim".into(), json!("equivalence"));
+            object.insert("margin".into(), json!([lower, upper]));
+        }
+    }
     object.insert("alpha".into(), number(asked.alpha));
     object
 }
@@ -71,28 +93,36 @@ fn named(contrast: &Contrast, labels: &[String]) -> Map<String, Value> {
 
 fn row(laid: &Laid, i: usize) -> Value {
     let row = &laid.comparisons.rows[i];
-    let mut object = named(&laid.asked.contrasts[i], &laid.estimates.labels);
+    let mut object = named(&laid.asked.contrasts[i], &laid.study.levels.labels);
     let numbers = [
-        ("estimate", row.estimate),
+        ("estimate", Some(row.estimate)),
         ("se", row.se),
-        ("df", row.df),
-        ("t", row.t),
-        ("statistic", row.statistic),
-        ("p", row.p),
-        ("p_adjusted", row.p_adjusted),
+        ("df", Some(row.df)),
+        ("t", Some(row.t)),
+        ("statistic", Some(row.statistic)),
+        ("p", Some(row.p)),
+        ("p_adjusted", Some(row.p_adjusted)),
         ("critical", row.critical),
+        ("p_error", row.p_error),
+        ("alpha", row.alpha),
+        ("detectable", row.detectable),
     ];
-    numbers.into_iter().for_each(|(key, value)| drop(object.insert(key.into(), number(value))));
+    numbers.into_iter().for_each(|(key, value)| insert(&mut object, key, value.map(number)));
     object.insert("statistic_name".into(), json!(row.statistic_name));
-    insert(&mut object, "p_error", row.p_error.map(number));
-    insert(&mut object, "alpha", row.alpha.map(number));
+    if laid.comparisons.basis != Basis::Means {
+        object.insert("p_counted".into(), json!(row.p_counted));
+    }
     object.insert("rejected".into(), json!(row.rejected));
     let own = procedure_has_intervals(laid);
-    let bound = |value: f64| if own { number(value) } else { Value::Null };
-    object.insert("lower".into(), bound(row.interval.lower));
-    object.insert("upper".into(), bound(row.interval.upper));
-    object.insert("shown_lower".into(), number(row.interval.lower));
-    object.insert("shown_upper".into(), number(row.interval.upper));
+    let bound = |value: fn(&crate::methods::multiplicity::Bounds) -> f64| {
+        row.interval.as_ref().map(value).map(number)
+    };
+    for (key, shown, value) in
+        [("lower", "shown_lower", bound(|it| it.lower)), ("upper", "shown_upper", bound(|it| it.upper))]
+    {
+        object.insert(key.into(), value.clone().filter(|_| own).unwrap_or(Value::Null));
+        insert(&mut object, shown, value);
+    }
     effect(row, &mut object);
     if !laid.also.is_empty() {
         let also = laid.also.iter().map(|(adjust, p)| (adjust.name().to_string(), number(p[i])));
@@ -103,30 +133,97 @@ fn row(laid: &Laid, i: usize) -> Value {
 
 /// Whether the shown intervals are the procedure's own, so that they belong to its decisions.
 fn procedure_has_intervals(laid: &Laid) -> bool {
-    laid.comparisons.adjust.single_step() || laid.comparisons.family_size == 1
+    let result = laid.comparisons;
+    result.adjust.single_step() || result.family_size == 1 || result.interval_kind == IntervalKind::Compatible
 }
 
 fn effect(row: &ComparisonRow, object: &mut Map<String, Value>) {
-    let Some(effect) = &row.effect else { return };
-    object.insert("d".into(), number(effect.d));
-    object.insert("g".into(), number(effect.g));
-    object.insert("standardiser".into(), number(effect.standardiser.sd));
-    let pairs = [("d", effect.d_interval), ("g", effect.g_interval)];
-    for (name, interval) in pairs {
-        if let Some(interval) = interval {
-            object.insert(format!("{name}_lower"), number(interval.lower));
-            object.insert(format!("{name}_upper"), number(interval.upper));
-        }
+    if let Some(effect) = &row.effects.standardised {
+        object.insert("standardiser".into(), number(effect.standardiser.sd));
+        size(object, "d", Sized { estimate: effect.d, interval: effect.d_interval });
+        size(object, "g", Sized { estimate: effect.g, interval: effect.g_interval });
     }
+    let others = [
+        ("delta", row.effects.control_sd),
+        ("ratio", row.effects.ratio),
+        ("superiority", row.effects.superiority),
+    ];
+    others
+        .into_iter()
+        .for_each(|(name, found)| found.into_iter().for_each(|found| size(object, name, found)));
+}
+
+fn size(object: &mut Map<String, Value>, name: &str, size: Sized) {
+    object.insert(name.into(), number(size.estimate));
+    if let Some(interval) = size.interval {
+        object.insert(format!("{name}_lower"), number(interval.lower));
+        object.insert(format!("{name}_upper"), number(interval.upper));
+    }
+}
+
+/// Letters by level.
+fn letters(laid: &Laid) -> Option<Value> {
+    let letters = laid.comparisons.letters.as_ref()?;
+    let by_level = laid.study.levels.labels.iter().zip(&letters.of_level);
+    Some(Value::Object(by_level.map(|(level, shared)| (level.clone(), json!(shared))).collect()))
+}
+
+fn partition(found: &Partition) -> Value {
+    let parts = found.parts.iter().map(|part| {
+        let mut object = Map::new();
+        object.insert("name".into(), json!(part.name));
+        object.insert("ss".into(), number(part.ss));
+        insert(&mut object, "share", part.share.map(number));
+        Value::Object(object)
+    });
+    json!({
+        "parts": parts.collect::<Vec<_>>(),
+        "ss_between": number(found.ss_between),
+        "df_between": found.df_between,
+        "complete": found.complete(),
+        "correlations": found.correlations,
+    })
+}
+
+/// How an ordered procedure went: its order, the rejections one after the other, and the weights that are left.
+pub fn path(names: &[&str], order: &Order, found: &GraphDecision) -> Value {
+    let name = |place: usize| names[order.places[place]];
+    let steps = found.steps.iter().map(|step| {
+        json!({
+            "rejected": name(step.rejected),
+            "weight": number(step.weight),
+            "alpha": number(step.level),
+        })
+    });
+    json!({
+        "order": (0..order.places.len()).map(name).collect::<Vec<_>>(),
+        "weights": order.graph.weights(),
+        "steps": steps.collect::<Vec<_>>(),
+        "weights_left": found.final_weights,
+    })
+}
+
+fn path_of(laid: &Laid) -> Option<Value> {
+    let names: Vec<&str> = laid.comparisons.rows.iter().map(|row| row.name.as_str()).collect();
+    Some(path(&names, laid.asked.order.as_ref()?, laid.comparisons.path.as_ref()?))
+}
+
+fn rearranged(found: &Rearranged) -> Value {
+    json!({
+        "counted": found.counted,
+        "repeats": found.repeats,
+        "seed": found.seed,
+        "partitions": found.partitions,
+    })
 }
 
 fn interval_kind(kind: IntervalKind) -> Value {
     match kind {
         IntervalKind::Simultaneous => json!("simultaneous"),
-        IntervalKind::SimultaneousBy(method) => {
-            json!(format!("simultaneous by {}", Adjust::PValues(method).name()))
-        }
+        IntervalKind::SimultaneousBy(adjust) => json!(format!("simultaneous by {}", adjust.name())),
+        IntervalKind::Compatible => json!("bounds that go with the decisions"),
         IntervalKind::PerComparison => json!("per comparison"),
+        IntervalKind::None => json!("none"),
     }
 }
 
@@ -137,7 +234,7 @@ fn explanation(laid: &Laid, found: &Explanation) -> Value {
             Disagreement::ComparisonsOnly => "comparisons only",
         },
         "overall": found.overall,
-        "carrying_contrast": named(&found.carrying, &laid.estimates.labels),
+        "carrying_contrast": named(&found.carrying, &laid.study.levels.labels),
         "carrying_estimate": number(found.carrying_estimate.estimate),
         "carrying_t": number(found.carrying_estimate.estimate / found.carrying_estimate.se),
         "nearest": laid.comparisons.rows[found.nearest].name,

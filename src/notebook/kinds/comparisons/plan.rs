@@ -1,9 +1,10 @@
 //! What can be said before there are data: the family, its size, its contrasts and coefficients, the method.
 
 use super::asked::Asked;
-use super::decided::{capital, level_cell};
+use super::rows::{capital, level_cell};
+use super::shares::weight;
 use super::{cautions, json, words};
-use crate::answer::{Answer, Cell, Precision, Row, Table};
+use crate::answer::{Answer, Cell, Row, Table};
 use crate::methods::contrasts::{in_words, rank};
 use crate::methods::multiplicity::{Adjust, p_values};
 use crate::notebook::outcome::Outcome;
@@ -23,9 +24,7 @@ pub fn outcome(asked: &Asked, study: &Study) -> Outcome {
     let headline = format!("Planned: {size} ({}), {method}; waiting for data", words::family(asked, study));
     let mut answer =
         Answer::new(headline).with_table(table(asked, study)).with_writeup(writeup(asked, study));
-    answer.cautions =
-        cautions::of_procedure(asked.adjust, asked.family, asked.sides, asked.contrasts.len(), asked.alpha);
-    answer.cautions.extend(cautions::unused(&asked.unused, asked.family_name));
+    answer.cautions = cautions::of_ask(asked, study.levels.count());
     Outcome::plan(answer, json::planned(asked, labels))
 }
 
@@ -58,11 +57,6 @@ fn table(asked: &Asked, study: &Study) -> Table {
     }
 }
 
-fn weight(c: f64) -> Cell {
-    let whole = (c - c.round()).abs() < 1e-12;
-    Cell::estimate(c, Precision::decimals(if whole { 0 } else { 3 }))
-}
-
 /// The levels at which raw p-values will be judged, where they are known beforehand.
 fn levels_note(asked: &Asked) -> Option<String> {
     let Adjust::PValues(method) = asked.adjust else { return None };
@@ -82,8 +76,8 @@ fn method(asked: &Asked, study: &Study) -> String {
     format!(
         "{}; {}, {}; {} over the family of {}, {}",
         words::family(asked, study),
-        words::error_term(study.variances, None, study.levels.count()),
-        words::sides(asked.sides),
+        words::tests(asked.basis, study.variances, None, study.levels.count()),
+        words::sides(asked.sides, asked.claim),
         // Group sizes are not known yet; the procedure's plain name fits both cases.
         capital(words::procedure(asked.adjust)),
         words::comparisons(asked.contrasts.len()),

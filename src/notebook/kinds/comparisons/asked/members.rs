@@ -1,99 +1,22 @@
-//! Reads a comparisons ask against the study that it names.
+//! The comparisons of the family that an ask chooses.
 
-use crate::methods::contrasts::{Contrast, NoContrast, Set, ready_set};
-use crate::methods::multiplicity::{Adjust, Family, Sides, default_adjust, suitable};
-use crate::notebook::ask::{Ask, At, Reader, finite};
-use crate::notebook::diagnostics::{Diagnostic, quoted_choices};
-use crate::study::{Study, Variances};
+use crate::methods::contrasts::{Contrast, NoContrast, Set, polynomial_set, ready_set};
+use crate::methods::multiplicity::Family;
+use crate::notebook::ask::{At, Reader, finite};
+use crate::notebook::diagnostics::quoted_choices;
+use crate::study::Study;
 use std::ops::Range;
 use toml_edit::Value;
 
-/// The error rate where neither the cell nor a study says one.
-const ALPHA: f64 = 0.05;
-
-/// A comparisons ask that can be answered.
-#[derive(Debug, Clone)]
-pub struct Asked {
-    pub family: Family,
-    /// The family as the ask chooses it.
-    pub family_name: &'static str,
-    pub contrasts: Vec<Contrast>,
-    /// Named p-values; `Some` exactly when the family is given p-values.
-    pub given: Option<Vec<(String, f64)>>,
-    pub adjust: Adjust,
-    pub also: Vec<Adjust>,
-    pub sides: Sides,
-    pub alpha: f64,
-    /// Confidence of the intervals.
-    pub confidence: f64,
-    /// Fields that are written but that this family does not use.
-    pub unused: Vec<&'static str>,
-}
-
-impl Asked {
-    /// The ask, with every default filled in.
-    ///
-    /// # Errors
-    /// What must be mended.
-    pub fn of(ask: &Ask, study: Option<&Study>) -> Result<Self, Vec<Diagnostic>> {
-        let mut reader = ask.reader();
-        let family_name = family_name(&mut reader);
-        let sides = match reader.choice("sides") {
-            Some("greater") => Sides::Greater,
-            Some("less") => Sides::Less,
-            _ => Sides::Both,
-        };
-        let alpha = reader.number("alpha").or(study.map(|study| study.alpha)).unwrap_or(ALPHA);
-        let confidence = match study {
-            // A confidence that the study sets apart from its error rate is meant; else intervals agree with decisions.
-            Some(study) if (study.confidence - (1.0 - study.alpha)).abs() > 1e-12 => study.confidence,
-            _ => 1.0 - alpha,
-        };
-        let members = members(&mut reader, family_name, study);
-        let family = members.as_ref().map_or(Family::Given, |members| members.family);
-        let variances = study.map_or(Variances::Equal, |study| study.variances);
-        let adjust = adjust(&mut reader, family, variances, sides, members.is_some());
-        let also = also(&mut reader, family, variances, sides, adjust);
-        let unused = unused(ask, family_name, family);
-        let members = members.unwrap_or(Members { family, contrasts: Vec::new(), given: None });
-        let (contrasts, given) = (members.contrasts, members.given);
-        reader.finish(Self {
-            family,
-            family_name,
-            contrasts,
-            given,
-            adjust,
-            also,
-            sides,
-            alpha,
-            confidence,
-            unused,
-        })
-    }
-}
-
-fn family_name(reader: &mut Reader) -> &'static str {
-    let ask = reader.ask();
-    if !ask.given("family") && (ask.given("contrasts") || ask.given("given")) {
-        let (field, family) = match ask.given("contrasts") {
-            true => ("contrasts", "contrasts"),
-            false => ("given", "given p-values"),
-        };
-        let message = format!("\"{field}\" is written, but no family is chosen. Add family = \"{family}\".");
-        reader.problem(field, message);
-        return family;
-    }
-    reader.choice("family").unwrap_or("all pairs")
-}
-
 /// The comparisons of the family.
-struct Members {
-    family: Family,
-    contrasts: Vec<Contrast>,
-    given: Option<Vec<(String, f64)>>,
+pub struct Members {
+    pub family: Family,
+    pub contrasts: Vec<Contrast>,
+    pub given: Option<Vec<(String, f64)>>,
 }
 
-fn members(reader: &mut Reader, family_name: &str, study: Option<&Study>) -> Option<Members> {
+/// The family's members; `None` where it cannot be said, which has been noted.
+pub fn members(reader: &mut Reader, family_name: &str, study: Option<&Study>) -> Option<Members> {
     if family_name == "given p-values" {
         let given = given(reader)?;
         return Some(Members { family: Family::Given, contrasts: Vec::new(), given: Some(given) });
@@ -111,6 +34,8 @@ fn members(reader: &mut Reader, family_name: &str, study: Option<&Study>) -> Opt
         "each against control" => Set::AgainstControl(control(reader, study)?),
         "neighbours" => Set::Neighbours,
         "each against the rest" => Set::AgainstRest,
+        "each against the earlier" => Set::AgainstEarlier,
+        "polynomial" => return polynomial(reader, study),
         "contrasts" => {
             let contrasts = contrasts(reader, study)?;
             return Some(Members { family: Family::Contrasts, contrasts, given: None });
@@ -118,6 +43,25 @@ fn members(reader: &mut Reader, family_name: &str, study: Option<&Study>) -> Opt
         _ => Set::AllPairs,
     };
     Some(Members { family: Family::Set(set), contrasts: ready_set(set, labels), given: None })
+}
+
+/// Linear, quadratic and so on, on the study's scores; without scores on the levels' places.
+fn polynomial(reader: &mut Reader, study: &Study) -> Option<Members> {
+    let family = Family::Set(Set::Polynomial);
+    let labels = &study.levels.labels;
+    let contrasts = match &study.levels.scores {
+        None => ready_set(Set::Polynomial, labels),
+        Some(scores) => match polynomial_set(scores, labels) {
+            Ok(contrasts) => contrasts,
+            Err(error) => {
+                let message =
+                    format!("Polynomial contrasts cannot be made from the study's scores: {error}.");
+                reader.problem("family", message);
+                return None;
+            }
+        },
+    };
+    Some(Members { family, contrasts, given: None })
 }
 
 fn control(reader: &mut Reader, study: &Study) -> Option<usize> {
@@ -258,60 +202,4 @@ fn not_numbers(name: &str) -> String {
 /// Where the text inside plain quotes starts; `None` where escapes or long quotes shift what is inside.
 fn inside_quotes(span: &Range<usize>, text: &str) -> Option<usize> {
     (span.len() == text.len() + 2).then_some(span.start + 1)
-}
-
-fn adjust(reader: &mut Reader, family: Family, variances: Variances, sides: Sides, known: bool) -> Adjust {
-    let default = default_adjust(family, variances, sides);
-    let Some(chosen) = reader.choice("adjust").and_then(Adjust::from_name) else {
-        return default;
-    };
-    if known && let Some(message) = objection(chosen, family, variances, sides) {
-        reader.problem("adjust", message);
-    }
-    chosen
-}
-
-fn also(
-    reader: &mut Reader,
-    family: Family,
-    variances: Variances,
-    sides: Sides,
-    adjust: Adjust,
-) -> Vec<Adjust> {
-    if !reader.ask().given("also") {
-        return Vec::new();
-    }
-    let mut found: Vec<Adjust> = Vec::new();
-    for beside in reader.choices("also").into_iter().filter_map(Adjust::from_name) {
-        if let Some(message) = objection(beside, family, variances, sides) {
-            reader.problem("also", message);
-        } else if beside != adjust && !found.contains(&beside) {
-            found.push(beside);
-        }
-    }
-    found
-}
-
-/// Why the procedure does not suit, with those that do.
-fn objection(adjust: Adjust, family: Family, variances: Variances, sides: Sides) -> Option<String> {
-    let reason = adjust.unsuitable(family, variances, sides)?;
-    let fitting = suitable(family, variances, sides);
-    let names = quoted_choices(fitting.iter().map(|adjust| adjust.name()));
-    let mut letters = reason.chars();
-    let first = letters.next().map(|letter| letter.to_uppercase().to_string()).unwrap_or_default();
-    Some(format!("{first}{}. Suitable here: {names}.", letters.as_str()))
-}
-
-fn unused(ask: &Ask, family_name: &str, family: Family) -> Vec<&'static str> {
-    let mut unused = Vec::new();
-    if ask.given("contrasts") && family_name != "contrasts" {
-        unused.push("contrasts");
-    }
-    if ask.given("given") && family_name != "given p-values" {
-        unused.push("given");
-    }
-    if family == Family::Given && ask.given("sides") {
-        unused.push("sides");
-    }
-    unused
 }
