@@ -35,7 +35,7 @@ impl Document {
     /// # Errors
     /// A sentence, when the text has neither a version line nor a cell.
     pub fn read(file: &str) -> Result<Self, String> {
-        let file = file.strip_prefix('\u{feff}').unwrap_or(file);
+        let file = file.trim_start_matches('\u{feff}');
         let (preamble, cells) = split(file);
         let version = preamble
             .parse::<toml_edit::DocumentMut>()
@@ -167,6 +167,14 @@ fn one_line_string(bytes: &[u8]) -> usize {
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn byte_order_marks_before_a_notebook_are_no_part_of_it() {
+        let one = Document::read("\u{feff}\u{feff}\n[[cell]]\n").unwrap();
+        assert!(
+            !Document::write(&one.preamble, one.cells.iter().map(|cell| &*cell.text)).contains('\u{feff}')
+        );
+    }
 
     fn texts(file: &str) -> Vec<String> {
         Document::read(file).expect("a notebook").cells.into_iter().map(|cell| cell.text).collect()

@@ -180,6 +180,140 @@ fn small_untied_groups_are_counted_and_their_shift_has_the_interval_of_the_same_
 }
 
 #[test]
+fn groups_too_small_to_be_significant_at_all_are_said() {
+    let tiny = super::given::study(
+        &[("a", &[1.0, 2.0, 3.0]), ("b", &[4.0, 5.0, 6.5]), ("c", &[7.0, 8.0, 9.0])],
+        Variances::Unequal,
+    );
+    let outcome = settled("basis = \"ranks\"\nadjust = \"Holm\"", tiny);
+    let expected = "3 comparisons have too few values to be significant whatever they are: the smallest p-value that the sizes of b \u{2212} a allow is 0.100, and its level is 0.0167.";
+    assert!(
+        outcome.answer.cautions.iter().any(|caution| caution == expected),
+        "{:?}",
+        outcome.answer.cautions
+    );
+}
+
+#[test]
+fn groups_of_one_row_and_without_variation_are_named_where_a_variance_of_their_own_is_needed() {
+    let study = |values: &[f64], variances| {
+        super::given::study(&[("a", &[1.0, 2.0, 3.0]), ("b", values), ("c", &[7.0, 8.0, 9.5])], variances)
+    };
+    let of = |rest: &str, values: &[f64], variances| problems(rest, study(values, variances)).join(" | ");
+    for adjust in ["Games-Howell", "Dunnett T3", "Holm", "max-t"] {
+        let rest = format!("adjust = \"{adjust}\"");
+        assert!(of(&rest, &[5.0], Variances::Unequal).contains("level \"b\" has 1 observation"));
+        assert!(of(&rest, &[5.0, 5.0], Variances::Unequal).contains("level \"b\" has no variation"));
+        let pooled = if adjust.contains("T3") || adjust.contains("Howell") {
+            "adjust = \"Tukey\""
+        } else {
+            rest.as_str()
+        };
+        assert_eq!(of(pooled, &[5.0], Variances::Equal), "");
+        let flat = settled(pooled, study(&[5.0, 5.0], Variances::Equal));
+        assert!(
+            flat.answer.cautions.iter().any(|caution| caution.contains("far above that of \"b\"")),
+            "{:?}",
+            flat.answer.cautions
+        );
+    }
+    // Ranks need no variance of any level.
+    assert_eq!(of("basis = \"ranks\"", &[5.0], Variances::Unequal), "");
+    let tied = super::given::study(
+        &[("a", &[1.0, 1.0]), ("b", &[1.0, 1.0]), ("c", &[2.0, 3.0])],
+        Variances::Unequal,
+    );
+    assert!(
+        problems("basis = \"ranks\"", tied)[0]
+            .contains("comparison \"b - a\" cannot be ranked: all values of groups 1 and 2 are equal")
+    );
+}
+
+#[test]
+fn a_family_of_one_is_one_test_under_every_procedure_that_suits() {
+    let one = "family = \"contrasts\"\ncontrasts = { a = \"A - control\" }\n";
+    for adjust in [
+        "none",
+        "Bonferroni",
+        "Sidak",
+        "Holm",
+        "Hommel",
+        "max-t",
+        "step-down max-t",
+        "fixed sequence",
+        "graph",
+        "fallback",
+    ] {
+        let outcome = settled(&format!("{one}adjust = \"{adjust}\""), blood_counts(Variances::Equal));
+        near(&numbers(&outcome, "p_adjusted"), &[0.408217], 5e-7);
+    }
+}
+
+#[test]
+fn contrasts_that_depend_on_each_other_are_decided_all_the_same_and_said() {
+    let twice = "family = \"contrasts\"\ncontrasts = { a = \"A - control\", b = \"2*A - 2*control\", c = \"control - A\" }\n";
+    for adjust in ["max-t", "step-down max-t", "Holm"] {
+        let outcome = settled(&format!("{twice}adjust = \"{adjust}\""), blood_counts(Variances::Equal));
+        assert!(
+            shown(&outcome).contains("carry 1 independent questions")
+                || shown(&outcome).contains("carry 1 independent question"),
+            "{}",
+            shown(&outcome)
+        );
+        if adjust != "Holm" {
+            // One question asked three times is one test.
+            near(&numbers(&outcome, "p_adjusted"), &[0.408217; 3], 5e-6);
+        }
+    }
+}
+
+#[test]
+fn rearrangements_are_counted_or_drawn_from_their_seed() {
+    let outcome = settled("basis = \"permutation\"", blood_counts(Variances::Equal));
+    assert_eq!(outcome.results["adjust"], "step-down max-t");
+    assert_eq!(outcome.results["rearranged"]["counted"], true);
+    assert!(shown(&outcome).contains("were counted; the p-values are exact"), "{}", shown(&outcome));
+    assert!(
+        numbers(&outcome, "p_adjusted")
+            .iter()
+            .zip(numbers(&outcome, "p"))
+            .all(|(adjusted, raw)| *adjusted >= raw)
+    );
+    let holm = settled("basis = \"permutation\"\nadjust = \"Holm\"", blood_counts(Variances::Equal));
+    near(&numbers(&holm, "p"), &numbers(&outcome, "p"), 1e-15);
+    let values = |shift: f64| (0..14).map(|i| libm::sin(f64::from(i) * 7.3) + shift).collect::<Vec<f64>>();
+    let (a, b, c) = (values(0.0), values(0.3), values(0.9));
+    let many = || super::given::study(&[("a", &a), ("b", &b), ("c", &c)], Variances::Equal);
+    let drawn = settled("basis = \"permutation\"\nrepeats = 2000\nseed = 7", many());
+    assert!(shown(&drawn).contains("2000 drawn from seed 7"), "{}", shown(&drawn));
+    let again = settled("basis = \"permutation\"\nrepeats = 2000\nseed = 7", many());
+    assert_eq!(drawn.results, again.results);
+    let other = settled("basis = \"permutation\"\nrepeats = 2000\nseed = 8", many());
+    assert_ne!(drawn.results["rows"], other.results["rows"]);
+}
+
+#[test]
+fn more_partitions_than_can_be_gone_through_are_refused_with_holm() {
+    let names: Vec<String> = (0..9).map(|i| format!("g{i}")).collect();
+    let values: Vec<Vec<f64>> =
+        (0..9).map(|i| vec![f64::from(i), f64::from(i) + 1.5, f64::from(i) + 2.0]).collect();
+    let groups: Vec<(&str, &[f64])> =
+        names.iter().zip(&values).map(|(name, values)| (name.as_str(), values.as_slice())).collect();
+    let found = problems("basis = \"permutation\"", super::given::study(&groups, Variances::Equal));
+    assert!(
+        found[0].contains(
+            "Holm's adjustment of the permutation p-value of each comparison by itself holds for any family"
+        ),
+        "{found:?}"
+    );
+    let holm = settled(
+        "basis = \"permutation\"\nadjust = \"Holm\"\nrepeats = 200",
+        super::given::study(&groups, Variances::Equal),
+    );
+    assert_eq!(holm.results["rows"].as_array().unwrap().len(), 36);
+}
+
+#[test]
 fn ranks_and_rearrangements_of_a_summary_are_refused_with_what_suits() {
     for basis in ["ranks", "permutation"] {
         let found = problems(&format!("basis = \"{basis}\""), summarised(blood_counts(Variances::Equal)));
