@@ -305,6 +305,18 @@ proptest! {
     }
 
     #[test]
+    fn equal_shares_with_any_weights_are_a_graph((weights, _, p) in graphs(), alpha in 0.001..0.2_f64) {
+        let m = weights.len();
+        prop_assume!(m > 1);
+        let share = 1.0 / (m - 1) as f64;
+        let arrows = (0..m).map(|i| (0..m).map(|j| if i == j { 0.0 } else { share }).collect()).collect();
+        let (direct, written) = (Graph::even(weights.clone()).unwrap(), Graph::new(weights, arrows).unwrap());
+        let (direct, written) = (decided(&direct, &p, alpha), decided(&written, &p, alpha));
+        prop_assert!(close(&direct.adjusted, &written.adjusted, 1e-12), "{direct:?} {written:?}");
+        prop_assert!(close(&direct.final_weights, &written.final_weights, 1e-9));
+    }
+
+    #[test]
     fn the_fixed_sequence_is_a_graph(p in (1..40_usize).prop_flat_map(p_values), alpha in 0.001..0.2_f64) {
         let result = decided(&Graph::fixed_sequence(p.len()), &p, alpha);
         let failed = p.iter().position(|p| *p > alpha).unwrap_or(p.len());

@@ -41,8 +41,16 @@ pub struct Graph {
 enum Transitions {
     /// Row by row: g_ij at i m + j.
     Given(Vec<f64>),
-    /// Equal weights and equal shares for all that are left; it stays so whatever is rejected.
-    Even,
+    /// Equal shares for all that are left; it stays so whatever is rejected.
+    Even(Start),
+}
+
+/// What hypotheses that pass on equal shares start with.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+enum Start {
+    /// All the same: each is 1 over the number left, always.
+    Alike,
+    Weighted,
 }
 
 /// Why weights and transitions make no graph. Hypotheses are counted from 0 in the fields and from 1 in the text.
@@ -171,7 +179,22 @@ impl Graph {
     /// # Source
     /// \[2\]; \[1\], section 3.
     pub fn holm(hypotheses: usize) -> Self {
-        Self { weights: vec![1.0 / hypotheses as f64; hypotheses], transitions: Transitions::Even }
+        Self {
+            weights: vec![1.0 / hypotheses as f64; hypotheses],
+            transitions: Transitions::Even(Start::Alike),
+        }
+    }
+
+    /// Holm's method with weights: each hypothesis passes equal shares of its own to all others. Takes time in proportion to the
+    /// square of their number, where a graph of as many arrows takes its cube.
+    ///
+    /// # Errors
+    /// [`NoGraph`] for weights that are no numbers from 0 to 1 or sum to more than 1.
+    ///
+    /// # Source
+    /// \[1\], section 3.
+    pub fn even(weights: Vec<f64>) -> Result<Self, NoGraph> {
+        Ok(Self { weights: checked_weights(weights)?, transitions: Transitions::Even(Start::Weighted) })
     }
 
     /// Hypotheses in a declared order: each is tested at alpha, and the first that is not rejected ends it.
@@ -373,16 +396,16 @@ impl Running {
 
     fn ratio(&self, index: usize, p: f64) -> f64 {
         match self.transitions {
-            Transitions::Given(_) => p / self.weights[index],
             // The weight is 1 over the number left; not to divide by its rounded value keeps the last bit.
-            Transitions::Even => p * self.left.len() as f64,
+            Transitions::Even(Start::Alike) => p * self.left.len() as f64,
+            _ => p / self.weights[index],
         }
     }
 
     fn level(&self, index: usize, alpha: f64) -> f64 {
         match self.transitions {
-            Transitions::Given(_) => self.weights[index] * alpha,
-            Transitions::Even => alpha / self.left.len() as f64,
+            Transitions::Even(Start::Alike) => alpha / self.left.len() as f64,
+            _ => self.weights[index] * alpha,
         }
     }
 
@@ -392,9 +415,12 @@ impl Running {
         let m = self.weights.len();
         let weight = std::mem::take(&mut self.weights[j]);
         match &mut self.transitions {
-            Transitions::Even => {
+            Transitions::Even(start) => {
                 let share = 1.0 / self.left.len() as f64;
-                self.left.iter().for_each(|i| self.weights[*i] = share);
+                match start {
+                    Start::Alike => self.left.iter().for_each(|i| self.weights[*i] = share),
+                    Start::Weighted => self.left.iter().for_each(|i| self.weights[*i] += weight * share),
+                }
             }
             Transitions::Given(g) => {
                 let from_j: Vec<f64> = g[j * m..][..m].to_vec();
@@ -417,7 +443,7 @@ impl Running {
         match &self.transitions {
             // `chunks` refuses a width of 0, which only the empty graph has.
             Transitions::Given(g) => g.chunks(m.max(1)).map(<[f64]>::to_vec).collect(),
-            Transitions::Even => {
+            Transitions::Even(_) => {
                 let mut rows = vec![vec![0.0; m]; m];
                 let share = 1.0 / (self.left.len() as f64 - 1.0);
                 for l in &self.left {

@@ -19,7 +19,8 @@ pub fn order(reader: &mut Reader, adjust: Adjust, names: &[&str]) -> Option<Orde
             Graph::new(weights, transitions(reader, names, &places)?)
         }
         // A weight that nobody says where to send goes to all others equally; so passes Holm's procedure its weights on.
-        _ => Graph::new(weights(reader, names, &places, 1.0 / m as f64)?, equal_transitions(m)),
+        _ if reader.ask().given("weights") => Graph::even(weights(reader, names, &places, 0.0)?),
+        _ => Ok(Graph::holm(m)),
     };
     match graph {
         Ok(graph) => Some(Order { places, graph }),
@@ -122,11 +123,6 @@ fn transitions(reader: &mut Reader, names: &[&str], places: &[usize]) -> Option<
         rows[place_of(from, places)?][place_of(to, places)?] += share;
     }
     Some(rows)
-}
-
-fn equal_transitions(m: usize) -> Vec<Vec<f64>> {
-    let share = 1.0 / (m.max(2) - 1) as f64;
-    (0..m).map(|i| (0..m).map(|j| if i == j { 0.0 } else { share }).collect()).collect()
 }
 
 /// The field and the sentence for what is wrong with a graph.
