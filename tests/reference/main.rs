@@ -41,6 +41,7 @@ mod rank_properties;
 mod ratio;
 mod remembered;
 mod shapiro_wilk;
+mod shift;
 mod step_down;
 mod stepwise_ranges;
 mod studentized_families;

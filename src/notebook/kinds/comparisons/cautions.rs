@@ -6,7 +6,7 @@ use super::words;
 use crate::answer::number;
 use crate::methods::contrasts::Set;
 use crate::methods::multiplicity::{
-    Adjust, Basis, Claim, Family, IntervalKind, PValueMethod, Ranking, Sides,
+    Adjust, Basis, Claim, ComparisonRow, Family, IntervalKind, PValueMethod, Ranking, Sides, ranks,
 };
 use crate::notebook::kinds::wording::listed;
 use crate::study::Variances;
@@ -24,6 +24,7 @@ pub fn of(laid: &Laid) -> Vec<String> {
     let mut found = Vec::new();
     found.extend(pooled_spread(laid));
     found.extend(small_groups(laid));
+    found.extend(out_of_reach(laid));
     found.extend(of_ask(asked, laid.study.levels.count()));
     found.extend(unequal_steps(laid));
     found.extend(too_many_contrasts(laid));
@@ -177,6 +178,37 @@ fn small_groups(laid: &Laid) -> Option<String> {
         )),
         _ => None,
     }
+}
+
+/// Counted comparisons that could not be significant whatever the values: too few of them.
+fn out_of_reach(laid: &Laid) -> Option<String> {
+    let result = laid.comparisons;
+    let Basis::Ranks(Ranking::PairByPair) = result.basis else { return None };
+    let n = laid.n();
+    let mut worst: Option<(f64, f64, &ComparisonRow)> = None;
+    let mut count = 0;
+    for row in result.rows.iter().filter(|row| row.p_counted) {
+        let sizes: Vec<usize> = (0..n.len()).filter(|i| row.coefficients[*i] != 0.0).map(|i| n[i]).collect();
+        let (&[first, second], Some(alpha)) = (sizes.as_slice(), row.alpha) else { continue };
+        let Ok(smallest) = ranks::smallest_p(first, second, result.sides) else { continue };
+        if smallest > alpha {
+            count += 1;
+            if worst.is_none_or(|(known, ..)| smallest > known) {
+                worst = Some((smallest, alpha, row));
+            }
+        }
+    }
+    let (smallest, alpha, row) = worst?;
+    Some(format!(
+        "{} too few values to be significant whatever they are: the smallest p-value that the sizes of {} allow is {}, and its level is {}.",
+        match count {
+            1 => "One comparison has".to_string(),
+            many => format!("{many} comparisons have"),
+        },
+        laid.name(row),
+        number::p_value(smallest),
+        number::plain((alpha * 1e4).round() / 1e4),
+    ))
 }
 
 /// Stepwise ranges of ordered means rest on equal sizes.
