@@ -2,10 +2,10 @@
 
 use super::asked::Asked;
 use super::decided::Laid;
-use crate::methods::contrasts::{Contrast, Partition, in_words, rank};
+use crate::methods::contrasts::{Contrast, Partition, Set, in_words, rank};
 use crate::methods::multiplicity::{
-    Adjust, Basis, Claim, ComparisonRow, Disagreement, Explanation, GraphDecision, IntervalKind, Order,
-    PValueMethod, Ranking, Rearranged, Sized,
+    Adjust, Basis, Claim, ComparisonRow, Disagreement, Explanation, Family, GraphDecision, IntervalKind,
+    Order, PValueMethod, Ranking, Rearranged, Sized,
 };
 use crate::notebook::results::number;
 use serde_json::{Map, Value, json};
@@ -53,7 +53,7 @@ fn family(asked: &Asked, labels: &[String]) -> Map<String, Value> {
     object.insert("family".into(), json!(asked.family_name));
     object.insert("adjust".into(), json!(asked.adjust.name()));
     object.insert("family_size".into(), json!(asked.contrasts.len()));
-    object.insert("rank".into(), json!(rank(&coefficients(&asked.contrasts))));
+    object.insert("rank".into(), json!(independent(asked, labels.len())));
     object.insert("levels".into(), json!(labels));
     object.insert("sides".into(), json!(asked.sides));
     object.insert("basis".into(), json!(asked.basis.word()));
@@ -77,9 +77,13 @@ fn family(asked: &Asked, labels: &[String]) -> Map<String, Value> {
     object
 }
 
-/// The coefficients of several contrasts.
-pub fn coefficients(contrasts: &[Contrast]) -> Vec<Vec<f64>> {
-    contrasts.iter().map(|contrast| contrast.coefficients.clone()).collect()
+/// How many of the comparisons are linearly independent, of `levels` levels.
+pub fn independent(asked: &Asked, levels: usize) -> usize {
+    match asked.family {
+        // Each of the ready sets of differences spans all that the levels can differ in.
+        Family::Set(Set::AllPairs | Set::AgainstControl(_) | Set::Neighbours) => levels.saturating_sub(1),
+        _ => rank(&asked.contrasts.iter().map(|contrast| contrast.coefficients.clone()).collect::<Vec<_>>()),
+    }
 }
 
 fn named(contrast: &Contrast, labels: &[String]) -> Map<String, Value> {

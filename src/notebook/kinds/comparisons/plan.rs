@@ -5,7 +5,7 @@ use super::rows::{capital, level_cell};
 use super::shares::weight;
 use super::{cautions, json, words};
 use crate::answer::{Answer, Cell, Row, Table};
-use crate::methods::contrasts::{in_words, rank};
+use crate::methods::contrasts::in_words;
 use crate::methods::multiplicity::{Adjust, p_values};
 use crate::notebook::outcome::Outcome;
 use crate::study::Study;
@@ -44,7 +44,7 @@ fn table(asked: &Asked, study: &Study) -> Table {
         let weights = contrast.coefficients.iter().map(|c| weight(*c));
         table.push(Row::new(names.into_iter().chain(weights)));
     }
-    let rank = rank(&json::coefficients(&asked.contrasts));
+    let rank = json::independent(asked, labels.len());
     table = table.note(format!(
         "Coefficients by level; each row sums to 0. {} of the {} {} independent.",
         rank,

@@ -3,7 +3,6 @@
 use super::decided::Laid;
 use super::{json, words};
 use crate::answer::{Cell, Precision, Row, Table, number};
-use crate::methods::contrasts::rank;
 use crate::methods::multiplicity::{ComparisonRow, ErrorRate, Family, IntervalKind, Rearranged};
 use crate::notebook::kinds::wording::{left_out, outcome_with_unit, p_cell, sizes};
 
@@ -106,7 +105,7 @@ fn notes(laid: &Laid) -> Vec<String> {
     notes.extend(two_readings(laid));
     notes.extend(how_p(laid));
     if laid.asked.family == Family::Contrasts {
-        let rank = rank(&json::coefficients(&laid.asked.contrasts));
+        let rank = json::independent(laid.asked, laid.study.levels.count());
         if rank < result.family_size {
             notes.push(format!(
                 "The {} contrasts carry {rank} independent questions: some of them follow from others.",

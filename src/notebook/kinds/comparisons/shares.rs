@@ -2,20 +2,24 @@
 
 use super::decided::Laid;
 use crate::answer::{Cell, Precision, Row, Table, number};
-use crate::methods::contrasts::Partition;
+use crate::methods::contrasts::{Partition, Set};
 use crate::methods::multiplicity::Family;
 use crate::notebook::kinds::wording::listed;
 
 /// Overlaps that are named one by one.
 const NAMED: usize = 6;
 
+/// Most contrasts whose overlaps are looked at.
+const MOST: usize = 100;
+
+/// Whether it says something how the contrasts split the differences: the many pairs overlap by their nature.
+pub fn worth_splitting(family: Family, contrasts: usize) -> bool {
+    contrasts <= MOST && !matches!(family, Family::Set(Set::AllPairs | Set::AgainstControl(_)))
+}
+
 /// Coefficients, sums of squares and shares; for contrasts of means with one error term, and not for the many pairs.
 pub fn table(laid: &Laid) -> Option<Table> {
-    use crate::methods::contrasts::Set;
     let partition = laid.partition.as_ref()?;
-    if matches!(laid.asked.family, Family::Set(Set::AllPairs | Set::AgainstControl(_))) {
-        return None;
-    }
     let mut table =
         Table::new("Coefficients, and how the contrasts split the sum of squares between the groups")
             .text_column("Contrast");

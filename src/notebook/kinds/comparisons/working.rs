@@ -2,7 +2,7 @@
 
 use super::asked::Asked;
 use super::decided::{self, Laid};
-use super::in_force;
+use super::{in_force, shares};
 use crate::answer::{Precision, number};
 use crate::methods::contrasts::partition;
 use crate::methods::multiplicity::{
@@ -207,7 +207,9 @@ impl Decided {
             Some(Err(_)) | None => None,
         };
         let partition = match self.study.variances {
-            Variances::Equal if means => {
+            Variances::Equal
+                if means && shares::worth_splitting(self.asked.family, self.asked.contrasts.len()) =>
+            {
                 let groups = &self.summary.groups;
                 let n: Vec<usize> = groups.iter().map(|group| group.n).collect();
                 let means: Vec<f64> = groups.iter().map(|group| group.mean).collect();
