@@ -6,9 +6,10 @@ use levelwise::notebook::results;
 use serde_json::Value;
 
 /// The example notebooks of the page; `tests/coverage.rs` sees that none is left out.
-pub const EXAMPLES: [(&str, &str); 4] = [
+pub const EXAMPLES: [(&str, &str); 5] = [
     ("plan-before-data", include_str!("../../../../www/examples/plan-before-data.levelwise.toml")),
     ("published-summaries", include_str!("../../../../www/examples/published-summaries.levelwise.toml")),
+    ("relief-by-dose", include_str!("../../../../www/examples/relief-by-dose.levelwise.toml")),
     ("teaching-trial", include_str!("../../../../www/examples/teaching-trial.levelwise.toml")),
     ("ward-noise", include_str!("../../../../www/examples/ward-noise.levelwise.toml")),
 ];
