@@ -499,6 +499,8 @@ fn contrasts_show_how_they_split_the_sum_of_squares_for_these_sizes() {
     near(&[parts[0]["ss"].as_f64().unwrap(), parts[1]["ss"].as_f64().unwrap()], &[11.011004, 8.694409], 5e-7);
     assert_eq!(orthogonal.results["partition"]["complete"], true);
     assert!(shown(&orthogonal).contains("their sums of squares add up to that between the groups"));
+    let unequal = settled("family = \"neighbours\"", blood_counts(Variances::Unequal));
+    assert!(shown(&unequal).contains("Coefficients of the contrasts"), "{}", shown(&unequal));
     let three = of("a = \"A - control\", b = \"B - control\", c = \"B - A\"");
     assert!(
         three.answer.cautions.iter().any(|caution| caution

@@ -1,6 +1,7 @@
 //! How the contrasts split what lies between the groups, and which of them overlap.
 
 use super::decided::Laid;
+use super::words;
 use crate::answer::{Cell, Precision, Row, Table, number};
 use crate::methods::contrasts::{Partition, Set};
 use crate::methods::multiplicity::Family;
@@ -17,39 +18,46 @@ pub fn worth_splitting(family: Family, contrasts: usize) -> bool {
     contrasts <= MOST && !matches!(family, Family::Set(Set::AllPairs | Set::AgainstControl(_)))
 }
 
-/// Coefficients, sums of squares and shares; for contrasts of means with one error term, and not for the many pairs.
+/// The coefficients of the contrasts; for means with one error term also their sums of squares and shares.
 pub fn table(laid: &Laid) -> Option<Table> {
-    let partition = laid.partition.as_ref()?;
-    let mut table =
-        Table::new("Coefficients, and how the contrasts split the sum of squares between the groups")
-            .text_column("Contrast");
+    let asked = laid.asked;
+    if !worth_splitting(asked.family, asked.contrasts.len()) {
+        return None;
+    }
+    let split = laid.partition.as_ref();
+    let title = match split {
+        Some(_) => "Coefficients, and how the contrasts split the sum of squares between the groups",
+        None => "Coefficients of the contrasts",
+    };
+    let mut table = Table::new(title).text_column("Contrast");
     for level in &laid.study.levels.labels {
         table = table.number_column(level.clone());
     }
-    table = table.number_column("Sum of squares").number_column("Share of SS between");
-    let precision = Precision::from_spread(partition.ss_between / 100.0);
-    for (part, contrast) in partition.parts.iter().zip(&laid.asked.contrasts) {
-        let mut cells = vec![Cell::text(super::words::row_name(&part.name, laid.asked.family))];
+    if split.is_some() {
+        table = table.number_column("Sum of squares").number_column("Share of SS between");
+    }
+    for (i, contrast) in asked.contrasts.iter().enumerate() {
+        let mut cells = vec![Cell::text(words::row_name(&contrast.name, asked.family))];
         cells.extend(contrast.coefficients.iter().map(|c| weight(*c)));
-        cells.push(Cell::estimate(part.ss, precision));
-        cells.push(
-            part.share
-                .map_or_else(Cell::absent, |share| Cell::number(number::percent(share_shown(share)), share)),
-        );
+        cells.extend(split.into_iter().flat_map(|split| shares(split, i)));
         table.push(Row::new(cells));
     }
-    Some(table.note(adding_up(laid, partition)))
+    Some(match split {
+        Some(partition) => table.note(adding_up(laid, partition)),
+        None => table.note("Each row sums to 0."),
+    })
+}
+
+fn shares(partition: &Partition, i: usize) -> [Cell; 2] {
+    let (part, precision) = (&partition.parts[i], Precision::from_spread(partition.ss_between / 100.0));
+    let share = |share: f64| Cell::number(number::percent((share * 1000.0).round() / 1000.0), share);
+    [Cell::estimate(part.ss, precision), part.share.map_or_else(Cell::absent, share)]
 }
 
 /// A coefficient: whole, or with three decimals.
 pub fn weight(c: f64) -> Cell {
     let whole = (c - c.round()).abs() < 1e-12;
     Cell::estimate(c, Precision::decimals(if whole { 0 } else { 3 }))
-}
-
-/// A share to a tenth of a per cent.
-fn share_shown(share: f64) -> f64 {
-    (share * 1000.0).round() / 1000.0
 }
 
 fn adding_up(laid: &Laid, partition: &Partition) -> String {
@@ -66,7 +74,7 @@ fn adding_up(laid: &Laid, partition: &Partition) -> String {
             partition.rank, partition.df_between
         );
     }
-    let name = |i: usize| super::words::row_name(&partition.parts[i].name, laid.asked.family);
+    let name = |i: usize| words::row_name(&partition.parts[i].name, laid.asked.family);
     let mut named: Vec<String> = overlaps
         .iter()
         .take(NAMED)
