@@ -4,37 +4,17 @@
 //! `tests/reference/comparisons.rs`).
 
 use super::expect::{check, named, results};
-use super::given::{blood_counts, evaluated, shown, study, summarised};
+use super::given::{
+    ask, blood_counts, controlled, evaluated, near, numbers, settled, shown, study, summarised,
+};
 use levelwise::answer::Block;
 use levelwise::notebook::ask::Ask;
 use levelwise::notebook::kinds::Read;
-use levelwise::notebook::outcome::Outcome;
 use levelwise::study::{Observed, Study, Variances};
 use serde_json::Value;
 
-fn controlled(variances: Variances) -> Study {
-    let mut study = blood_counts(variances);
-    study.levels.control = Some(0);
-    study
-}
-
 fn planned() -> Study {
     Study { observed: Observed::Plan, account: Vec::new(), ..controlled(Variances::Equal) }
-}
-
-fn ask(rest: &str) -> String {
-    format!("kind = \"comparisons\"\nstudy = \"blood\"\n{rest}")
-}
-
-/// An answer without diagnostics.
-fn settled(rest: &str, study: Study) -> Outcome {
-    let outcome = evaluated(&ask(rest), study);
-    assert!(outcome.diagnostics.is_empty() && !outcome.waiting, "{:?}", outcome.diagnostics);
-    outcome
-}
-
-fn numbers(outcome: &Outcome, key: &str) -> Vec<f64> {
-    outcome.results["rows"].as_array().unwrap().iter().map(|row| row[key].as_f64().unwrap()).collect()
 }
 
 /// The one diagnostic, with the text that it stands on.
@@ -45,11 +25,6 @@ fn problem(rest: &str, study: Study) -> (String, String) {
         panic!("one diagnostic, not {:?}", outcome.diagnostics)
     };
     (only.message.clone(), text[only.span.clone()].to_string())
-}
-
-fn near(found: &[f64], expected: &[f64], tolerance: f64) {
-    let close = found.iter().zip(expected).all(|(f, e)| (f - e).abs() <= tolerance);
-    assert!(found.len() == expected.len() && close, "{found:?}, expected {expected:?}");
 }
 
 #[test]

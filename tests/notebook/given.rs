@@ -69,3 +69,33 @@ pub fn evaluated(text: &str, study: Study) -> Outcome {
 pub fn shown(outcome: &Outcome) -> String {
     levelwise::answer::text::answer(&outcome.answer, 160)
 }
+
+/// The blood counts with their control.
+pub fn controlled(variances: Variances) -> Study {
+    let mut study = blood_counts(variances);
+    study.levels.control = Some(0);
+    study
+}
+
+/// A comparisons cell with these lines.
+pub fn ask(rest: &str) -> String {
+    format!("kind = \"comparisons\"\nstudy = \"blood\"\n{rest}")
+}
+
+/// An answer without diagnostics.
+pub fn settled(rest: &str, study: Study) -> Outcome {
+    let outcome = evaluated(&ask(rest), study);
+    assert!(outcome.diagnostics.is_empty() && !outcome.waiting, "{:?}", outcome.diagnostics);
+    outcome
+}
+
+/// A number of every row of the results.
+pub fn numbers(outcome: &Outcome, key: &str) -> Vec<f64> {
+    outcome.results["rows"].as_array().unwrap().iter().map(|row| row[key].as_f64().unwrap()).collect()
+}
+
+/// Fails where a number is further from the expected one than the tolerance.
+pub fn near(found: &[f64], expected: &[f64], tolerance: f64) {
+    let close = found.iter().zip(expected).all(|(f, e)| (f - e).abs() <= tolerance);
+    assert!(found.len() == expected.len() && close, "{found:?}, expected {expected:?}");
+}

@@ -4,40 +4,13 @@
 //! The numbers are those of Dunnett's (1955) blood counts, worked independently for this project (see
 //! `tests/reference/comparisons.rs`).
 
-use super::given::{blood_counts, evaluated, shown, summarised};
-use levelwise::notebook::outcome::Outcome;
+use super::given::{ask, blood_counts, controlled, evaluated, near, numbers, settled, shown, summarised};
 use levelwise::study::{Better, Study, Variances};
 use serde_json::Value;
-
-fn controlled(variances: Variances) -> Study {
-    let mut study = blood_counts(variances);
-    study.levels.control = Some(0);
-    study
-}
-
-fn ask(rest: &str) -> String {
-    format!("kind = \"comparisons\"\nstudy = \"blood\"\n{rest}")
-}
-
-/// An answer without diagnostics.
-fn settled(rest: &str, study: Study) -> Outcome {
-    let outcome = evaluated(&ask(rest), study);
-    assert!(outcome.diagnostics.is_empty() && !outcome.waiting, "{:?}", outcome.diagnostics);
-    outcome
-}
-
-fn numbers(outcome: &Outcome, key: &str) -> Vec<f64> {
-    outcome.results["rows"].as_array().unwrap().iter().map(|row| row[key].as_f64().unwrap()).collect()
-}
 
 /// The messages of all diagnostics, in order.
 fn problems(rest: &str, study: Study) -> Vec<String> {
     evaluated(&ask(rest), study).diagnostics.into_iter().map(|problem| problem.message).collect()
-}
-
-fn near(found: &[f64], expected: &[f64], tolerance: f64) {
-    let close = found.iter().zip(expected).all(|(f, e)| (f - e).abs() <= tolerance);
-    assert!(found.len() == expected.len() && close, "{found:?}, expected {expected:?}");
 }
 
 #[test]
