@@ -1,5 +1,5 @@
 //! Measures in a browser: `cargo pack bench`. The measuring itself is in `tests/benches`: `page.mjs` for the built page,
-//! `numbers.mjs` for the numerics beside SciPy.
+//! `numbers.mjs` for the numerics beside SciPy. The error rates are simulated natively, by `error_rates`.
 
 use crate::engine::{self, NUMBERS};
 use crate::page::{self, Finish};
@@ -25,6 +25,16 @@ pub fn numbers(project: &Project) -> Result<bool> {
         command.env("LEVELWISE_SCIPY", python);
     }
     run(command.envs(NUMBERS.variables(project)))?;
+    Ok(true)
+}
+
+/// Simulates the error rates of the comparisons, which takes long and needs no browser.
+pub fn rates(project: &Project) -> Result<bool> {
+    let mut command = Command::new(toolchain::cargo());
+    command.current_dir(&project.root).args(["bench", "--bench", "error_rates"]);
+    // A benchmark unwinds. If the program beside it did not, there would be two libraries of one file name, and the
+    // benchmark could meet the wrong one.
+    run(command.env("CARGO_PROFILE_RELEASE_PANIC", "unwind"))?;
     Ok(true)
 }
 

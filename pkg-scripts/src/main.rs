@@ -24,7 +24,8 @@ const USAGE: &str = "cargo pack COMMAND
   test               run every check there is
   bench              measure in a browser: the built page's speed and sizes, and the numerics beside SciPy
   bench page         the first of the two alone
-  bench numbers      the second of the two alone";
+  bench numbers      the second of the two alone
+  bench rates        simulate the error rates of the comparisons (long; no part of the other two)";
 
 fn main() -> ExitCode {
     let arguments: Vec<String> = std::env::args().skip(1).collect();
@@ -54,6 +55,7 @@ fn carry_out(arguments: &[String]) -> Result<bool> {
         ["bench"] => Ok(bench::page(&project)? && bench::numbers(&project)?),
         ["bench", "page"] => bench::page(&project),
         ["bench", "numbers"] => bench::numbers(&project),
+        ["bench", "rates"] => bench::rates(&project),
         [] | ["help" | "--help" | "-h"] => {
             println!("{USAGE}");
             Ok(true)
