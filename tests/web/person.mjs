@@ -31,29 +31,41 @@ export async function paste(page, text) {
   await session.detach();
 }
 
-/** @param {string} kind */
-const cell = (kind) => `section[data-kind="${kind}"]`;
+/**
+ * A cell is meant by its kind, or where there are several of it, by "#" and its identity in the page.
+ * @param {string} which
+ */
+const cell = (which) => (which.startsWith('#') ? which : `section[data-kind="${which}"]`);
 
 /**
- * Chooses in a blank of a cell's sentence, or types into it.
+ * Chooses in a blank of a cell's sentence, or types into it, and goes on without waiting for the answer.
  * @param {Page} page
- * @param {string} kind
+ * @param {string} which
  * @param {string} field
  * @param {string} value
  */
-export function fill(page, kind, field, value) {
-  return settling(page, async () => {
-    const selector = `${cell(kind)} [data-field="${field}"]`;
-    const control = await page.waitForSelector(selector);
-    assert(control, selector);
-    if ((await control.evaluate((element) => element.tagName)) === 'SELECT') {
-      await control.select(value);
-      return;
-    }
-    await control.click({ count: 3 });
-    await control.type(value);
-    await page.keyboard.press('Tab');
-  });
+export async function fillIn(page, which, field, value) {
+  const selector = `${cell(which)} [data-field="${field}"]`;
+  const control = await page.waitForSelector(selector);
+  assert(control, selector);
+  if ((await control.evaluate((element) => element.tagName)) === 'SELECT') {
+    await control.select(value);
+    return;
+  }
+  await control.click({ count: 3 });
+  await control.type(value);
+  await page.keyboard.press('Tab');
+}
+
+/**
+ * Fills in a blank and waits until that has settled.
+ * @param {Page} page
+ * @param {string} which
+ * @param {string} field
+ * @param {string} value
+ */
+export function fill(page, which, field, value) {
+  return settling(page, () => fillIn(page, which, field, value));
 }
 
 /**
@@ -73,11 +85,11 @@ export function addCell(page, title) {
 /**
  * The tables of a cell's answer, each as its rows by column heading.
  * @param {Page} page
- * @param {string} kind
+ * @param {string} which
  * @returns {Promise<Record<string, string>[][]>}
  */
-export function tablesOf(page, kind) {
-  return page.$$eval(`${cell(kind)} .answer table`, (tables) =>
+export function tablesOf(page, which) {
+  return page.$$eval(`${cell(which)} .answer table`, (tables) =>
     tables.map((table) => {
       const texts = (/** @type {Element} */ row) => [...row.querySelectorAll('th, td')].map((value) => value.textContent?.trim() ?? '');
       const [heading, ...rows] = [...table.querySelectorAll('tr')].map(texts);
