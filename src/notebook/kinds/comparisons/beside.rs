@@ -24,8 +24,9 @@ pub fn table(laid: &Laid) -> Option<Table> {
     let result = laid.comparisons;
     let chosen = capital(words::procedure(result.adjust));
     let mut table = Table::new(format!(
-        "The same {} under other procedures: adjusted p-values. {chosen} decides, as chosen; the others are for comparison.",
+        "The same {} under other procedures: adjusted p-values. {} decides, as chosen; the others are for comparison.",
         words::comparisons(result.family_size),
+        words::procedure_as_subject(result.adjust),
     ))
     .text_column("Comparison")
     .number_column(format!("{chosen} (decides)"));

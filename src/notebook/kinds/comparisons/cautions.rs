@@ -247,7 +247,7 @@ fn disagreeing(laid: &Laid) -> Option<String> {
     } else {
         format!(
             "{} decides step by step and has no intervals of its own; those shown are each a {}. They disagree with the decision on {rows}: the decision is the one in words.",
-            words::procedure(result.adjust),
+            words::procedure_as_subject(result.adjust),
             words::interval(result)
         )
     })

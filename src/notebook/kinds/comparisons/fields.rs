@@ -5,11 +5,11 @@ use crate::notebook::kinds::Kind;
 
 const FAMILIES: &[Choice] = &[
     choice("all pairs"),
-    choice("each against control"),
+    Choice { value: "each against control", shown: "each against the control" },
     choice("neighbours"),
     choice("each against the rest"),
-    choice("each against the earlier"),
-    choice("polynomial"),
+    Choice { value: "each against the earlier", shown: "each against the earlier ones" },
+    Choice { value: "polynomial", shown: "polynomial trends" },
     choice("contrasts"),
     choice("given p-values"),
 ];
@@ -23,11 +23,15 @@ const OF_LEVELS: &[&str] = &[
     "polynomial",
     "contrasts",
 ];
+/// How a choice reads that the sentence also shows where it is not chosen but follows from the rest.
+pub const PAIR_BY_PAIR: &str = "each pair by itself";
+pub const JOINT: &str = "all levels together";
+pub const ALL_LEVELS: &str = "all levels";
+pub const LEVELS_COMPARED: &str = "the levels compared";
+
 const BASES: &[Choice] = &[choice("means"), choice("ranks"), choice("permutation")];
-const RANKINGS: &[Choice] = &[
-    Choice { value: "pair by pair", shown: "each pair by itself" },
-    Choice { value: "joint", shown: "all levels together" },
-];
+const RANKINGS: &[Choice] =
+    &[Choice { value: "pair by pair", shown: PAIR_BY_PAIR }, Choice { value: "joint", shown: JOINT }];
 const CLAIMS: &[Choice] = &[
     Choice { value: "difference", shown: "a difference" },
     Choice { value: "non-inferiority", shown: "no loss beyond a margin" },
@@ -68,8 +72,8 @@ const SIDES: &[Choice] = &[
     Choice { value: "less", shown: "only downwards" },
 ];
 const STANDARDS: &[Choice] = &[
-    Choice { value: "all levels", shown: "all levels" },
-    Choice { value: "levels compared", shown: "the levels compared" },
+    Choice { value: "all levels", shown: ALL_LEVELS },
+    Choice { value: "levels compared", shown: LEVELS_COMPARED },
 ];
 const TRANSITIONS: &[Part] = &[
     Part { name: "from", number: false },
@@ -182,6 +186,13 @@ const FIELDS: &[Field] = &[
         .or("1"),
 ];
 
+const CLAIM: &[Piece] = &[
+    Piece::Words("for"),
+    Piece::Blank("claim"),
+    Piece::When("claim", &["non-inferiority", "equivalence"], &[Piece::Words("of"), Piece::Blank("margin")]),
+];
+const LOOKING: &[Piece] = &[Piece::Words("and looking"), Piece::Blank("sides")];
+
 const SENTENCE: &[Piece] = &[
     Piece::Words("Compare"),
     Piece::Blank("family"),
@@ -205,18 +216,12 @@ const SENTENCE: &[Piece] = &[
                     Piece::Blank("seed"),
                 ],
             ),
+            Piece::When("basis", &["means"], CLAIM),
+            // A claim that the basis cannot make is said to be wrong, and can be changed where that is said.
             Piece::When(
                 "basis",
-                &["means"],
-                &[
-                    Piece::Words("for"),
-                    Piece::Blank("claim"),
-                    Piece::When(
-                        "claim",
-                        &["non-inferiority", "equivalence"],
-                        &[Piece::Words("of"), Piece::Blank("margin")],
-                    ),
-                ],
+                &["ranks", "permutation"],
+                &[Piece::When("claim", &["non-inferiority", "equivalence"], CLAIM)],
             ),
         ],
     ),
@@ -234,8 +239,16 @@ const SENTENCE: &[Piece] = &[
         &["fallback", "graph"],
         &[Piece::Words(", starting with"), Piece::Blank("weights")],
     ),
-    Piece::When("adjust", &["graph"], &[Piece::Words("and passing them on"), Piece::Blank("transitions")]),
-    Piece::When("family", OF_LEVELS, &[Piece::Words("and looking"), Piece::Blank("sides")]),
+    Piece::When("adjust", &["graph"], &[Piece::Words("and passing them on:"), Piece::Blank("transitions")]),
+    Piece::When(
+        "family",
+        OF_LEVELS,
+        &[
+            Piece::When("claim", &["difference", "non-inferiority"], LOOKING),
+            // Equivalence looks to both sides by itself; what was written before can still be taken back.
+            Piece::When("claim", &["equivalence"], &[Piece::When("sides", &["greater", "less"], LOOKING)]),
+        ],
+    ),
     Piece::Words("; beside it:"),
     Piece::Blank("also"),
     Piece::Words("."),

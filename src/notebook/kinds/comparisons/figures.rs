@@ -32,11 +32,11 @@ pub fn differences(laid: &Laid) -> Figure {
     };
     let shown = words::shown(result.claim);
     let unit = match result.basis {
-        Basis::Ranks(Ranking::Joint) => format!("ranks of {}", laid.study.outcome),
+        Basis::Ranks(Ranking::Joint) => laid.study.outcome.clone(),
         _ => outcome_with_unit(laid.study),
     };
     figure::intervals(&Intervals {
-        title: format!("{what}s of {}", laid.study.outcome),
+        title: format!("{} of {}", rows::capital(words::estimates(laid.estimate_word())), laid.study.outcome),
         axis: format!("{what} in {unit}"),
         bars,
         solid: format!("{shown} is shown"),
@@ -108,40 +108,65 @@ pub fn path(laid: &Laid) -> Vec<Figure> {
 /// the rejections left.
 pub fn graphs(names: &[String], order: &Order, path: &GraphDecision) -> Vec<Figure> {
     let rejected = |place: usize| path.rejected[place];
-    let nodes = |weight: &dyn Fn(usize) -> Option<f64>| -> Vec<NetworkNode> {
-        let node = |(place, row): (usize, &usize)| NetworkNode {
-            label: names[*row].clone(),
-            weight: weight(place),
-            mark: if rejected(place) { Mark::Solid } else { Mark::Hollow },
-        };
-        order.places.iter().enumerate().map(node).collect()
-    };
-    let draw = |title: &str, words: &str, nodes: Vec<NetworkNode>, transitions: &[Vec<f64>]| {
-        figure::network(&Network {
-            title: title.to_string(),
-            words: words.to_string(),
-            solid: "rejected".to_string(),
-            hollow: "not rejected".to_string(),
-            nodes,
-            arrows: arrows(transitions),
-        })
-    };
-    let declared = draw(
-        "The graph as declared",
-        "Weights: each comparison's share of the error rate. Arrows: where it goes on rejection.",
-        nodes(&|place| Some(order.graph.weights()[place])),
+    let declared = graph(
+        DECLARED,
+        &nodes(names, order, &|place| Some(order.graph.weights()[place]), &rejected),
         &order.graph.transitions(),
+        true,
     );
     let Some(last) = path.steps.last().filter(|_| path.steps.len() < names.len()) else {
         return vec![declared];
     };
-    let left = draw(
-        "The graph after the rejections",
-        "What is left: the weights at which the others were judged.",
-        nodes(&|place| (!rejected(place)).then(|| path.final_weights[place])),
+    let left = graph(
+        ("The graph after the rejections", "What is left: the weights at which the others were judged."),
+        &nodes(names, order, &|place| (!rejected(place)).then(|| path.final_weights[place]), &rejected),
         &last.transitions_after,
+        true,
     );
     vec![declared, left]
+}
+
+/// The declared graph while nothing is decided yet.
+pub fn planned_graph(names: &[String], order: &Order) -> Figure {
+    let nodes = nodes(names, order, &|place| Some(order.graph.weights()[place]), &|_| false);
+    graph(DECLARED, &nodes, &order.graph.transitions(), false)
+}
+
+/// Title and words of a graph before its first rejection.
+const DECLARED: (&str, &str) = (
+    "The graph as declared",
+    "Weights: each comparison's share of the error rate. Arrows: where it goes on rejection.",
+);
+
+fn nodes(
+    names: &[String],
+    order: &Order,
+    weight: &dyn Fn(usize) -> Option<f64>,
+    rejected: &dyn Fn(usize) -> bool,
+) -> Vec<NetworkNode> {
+    let node = |(place, row): (usize, &usize)| NetworkNode {
+        label: names[*row].clone(),
+        weight: weight(place),
+        mark: if rejected(place) { Mark::Solid } else { Mark::Hollow },
+    };
+    order.places.iter().enumerate().map(node).collect()
+}
+
+fn graph(
+    (title, words): (&str, &str),
+    nodes: &[NetworkNode],
+    transitions: &[Vec<f64>],
+    decided: bool,
+) -> Figure {
+    let meaning = |words: &str| if decided { words.to_string() } else { String::new() };
+    figure::network(&Network {
+        title: title.to_string(),
+        words: words.to_string(),
+        solid: meaning("rejected"),
+        hollow: meaning("not rejected"),
+        nodes: nodes.to_vec(),
+        arrows: arrows(transitions),
+    })
 }
 
 fn arrows(transitions: &[Vec<f64>]) -> Vec<NetworkArrow> {

@@ -26,9 +26,11 @@ mod writeup;
 pub use fields::TABLE;
 
 use super::Read;
+use crate::methods::multiplicity::{Basis, Ranking};
 use crate::notebook::ask::Ask;
 use crate::notebook::outcome::Outcome;
 use crate::notebook::work::Evaluation;
+use crate::study::Variances;
 use asked::Asked;
 
 /// The decision on every comparison of the family, or the plan, or what to mend.
@@ -38,9 +40,9 @@ pub fn evaluate(ask: &Ask, read: &Read) -> Evaluation {
         Err(problems) => return Outcome::mend(problems).into(),
     };
     match (&asked.given, read.shared_study()) {
-        (Some(given), _) => in_force(given::outcome(&asked, given), &asked).into(),
+        (Some(given), _) => in_force(given::outcome(&asked, given), &asked, None).into(),
         (None, Some(study)) if study.summary().is_none() => {
-            in_force(plan::outcome(&asked, study), &asked).into()
+            in_force(plan::outcome(&asked, study), &asked, Some(study.variances)).into()
         }
         (None, Some(study)) => working::start(ask, asked, study.clone()),
         (None, None) => Outcome::mend(Vec::new()).into(),
@@ -48,7 +50,18 @@ pub fn evaluate(ask: &Ask, read: &Read) -> Evaluation {
 }
 
 /// What the sentence shows for fields that are not given.
-fn in_force(outcome: Outcome, asked: &Asked) -> Outcome {
+fn in_force(outcome: Outcome, asked: &Asked, variances: Option<Variances>) -> Outcome {
     let alpha = crate::answer::number::plain(asked.alpha);
-    outcome.with_in_force("adjust", words::procedure(asked.adjust)).with_in_force("alpha", alpha)
+    let outcome =
+        outcome.with_in_force("adjust", words::procedure(asked.adjust)).with_in_force("alpha", alpha);
+    let outcome = match asked.basis {
+        Basis::Ranks(Ranking::Joint) => outcome.with_in_force("ranking", fields::JOINT),
+        Basis::Ranks(Ranking::PairByPair) => outcome.with_in_force("ranking", fields::PAIR_BY_PAIR),
+        Basis::Means | Basis::Permutation => outcome,
+    };
+    match variances {
+        Some(Variances::Equal) => outcome.with_in_force("standardise", fields::ALL_LEVELS),
+        Some(Variances::Unequal) => outcome.with_in_force("standardise", fields::LEVELS_COMPARED),
+        None => outcome,
+    }
 }

@@ -3,7 +3,7 @@
 use super::asked::Asked;
 use super::rows::{capital, level_cell};
 use super::shares::weight;
-use super::{cautions, json, words};
+use super::{cautions, figures, json, words};
 use crate::answer::{Answer, Cell, Row, Table};
 use crate::methods::contrasts::in_words;
 use crate::methods::multiplicity::{Adjust, p_values};
@@ -24,6 +24,10 @@ pub fn outcome(asked: &Asked, study: &Study) -> Outcome {
     let headline = format!("Planned: {size} ({}), {method}; waiting for data", words::family(asked, study));
     let mut answer =
         Answer::new(headline).with_table(table(asked, study)).with_writeup(writeup(asked, study));
+    if let Some(order) = &asked.order {
+        let names = asked.contrasts.iter().map(|contrast| words::row_name(&contrast.name, asked.family));
+        answer = answer.with_figure(figures::planned_graph(&names.collect::<Vec<_>>(), order));
+    }
     answer.cautions = cautions::of_ask(asked, study.levels.count());
     Outcome::plan(answer, json::planned(asked, labels))
 }

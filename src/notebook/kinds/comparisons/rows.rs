@@ -3,7 +3,7 @@
 use super::decided::Laid;
 use super::{json, words};
 use crate::answer::{Cell, Precision, Row, Table, number};
-use crate::methods::multiplicity::{ComparisonRow, ErrorRate, Family, IntervalKind, Rearranged};
+use crate::methods::multiplicity::{Claim, ComparisonRow, ErrorRate, Family, IntervalKind, Rearranged};
 use crate::notebook::kinds::wording::{left_out, outcome_with_unit, p_cell, sizes};
 
 /// Names the method in full: tests, error term and df, side, adjustment, family and its size.
@@ -102,6 +102,7 @@ fn notes(laid: &Laid) -> Vec<String> {
                 .to_string(),
         );
     }
+    notes.extend(against_margin(laid));
     notes.extend(two_readings(laid));
     notes.extend(how_p(laid));
     if laid.asked.family == Family::Contrasts {
@@ -116,6 +117,22 @@ fn notes(laid: &Laid) -> Vec<String> {
         notes.push(format!("In words: {}.", each.collect::<Vec<_>>().join("; ")));
     }
     notes
+}
+
+/// What t and p are of, where it is not a difference of zero.
+fn against_margin(laid: &Laid) -> Option<String> {
+    let result = laid.comparisons;
+    match result.claim {
+        Claim::Difference => None,
+        Claim::NonInferiority { .. } => Some(format!(
+            "t and p test the difference against the margin, {}, instead of zero.",
+            number::plain(result.claim.null(result.sides))
+        )),
+        Claim::Equivalence { .. } => Some(
+            "Each difference is tested against both margins; t and p are those of the test with the larger p."
+                .to_string(),
+        ),
+    }
 }
 
 fn two_readings(laid: &Laid) -> Option<String> {
@@ -140,7 +157,7 @@ fn how_p(laid: &Laid) -> Vec<String> {
     let result = laid.comparisons;
     let mut notes = Vec::new();
     if let Some(rearranged) = &result.rearranged {
-        notes.push(figures_of(rearranged, laid));
+        notes.push(rearrangements(rearranged, laid));
     } else if let Some(most) = result.rows.iter().filter_map(|row| row.p_error).max_by(f64::total_cmp)
         && most > 1e-7
     {
@@ -165,7 +182,8 @@ fn how_p(laid: &Laid) -> Vec<String> {
     notes
 }
 
-fn figures_of(rearranged: &Rearranged, laid: &Laid) -> String {
+/// How many rearrangements the p-values rest on, and how sure that makes them.
+pub fn rearrangements(rearranged: &Rearranged, laid: &Laid) -> String {
     let sets = match rearranged.partitions {
         1 => "one set of levels".to_string(),
         many => format!("{} sets of levels", number::count(many)),

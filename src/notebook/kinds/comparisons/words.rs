@@ -22,6 +22,20 @@ pub fn procedure(adjust: Adjust) -> &'static str {
     }
 }
 
+/// The procedure at the head of a sentence: "Holm", "The graphical procedure".
+pub fn procedure_as_subject(adjust: Adjust) -> String {
+    match adjust {
+        Adjust::FixedSequence => "A fixed sequence".to_string(),
+        Adjust::Fallback | Adjust::Graph => format!("The {}", procedure(adjust)),
+        Adjust::LeastSignificantDifference => "The least significant difference".to_string(),
+        Adjust::MaxT | Adjust::StepDownMaxT | Adjust::StepDownDunnett => {
+            format!("The {} procedure", procedure(adjust))
+        }
+        Adjust::PValues(PValueMethod::None) => "No adjustment".to_string(),
+        other => procedure(other).to_string(),
+    }
+}
+
 /// The procedure with what it rests on: "Tukey-Kramer, unequal group sizes".
 pub fn procedure_in_full(adjust: Adjust, n: &[usize]) -> String {
     let same_size = n.windows(2).all(|pair| pair[0] == pair[1]);
@@ -205,5 +219,15 @@ pub fn estimate(basis: Basis, family: Family) -> &'static str {
         (Basis::Ranks(Ranking::PairByPair), _) => "shift",
         (_, Family::Contrasts | Family::Set(Set::Polynomial)) => "estimate",
         _ => "difference",
+    }
+}
+
+/// What several rows' estimates are.
+pub fn estimates(one: &'static str) -> &'static str {
+    match one {
+        "difference of mean ranks" => "differences of mean ranks",
+        "shift" => "shifts",
+        "estimate" => "estimates",
+        _ => "differences",
     }
 }

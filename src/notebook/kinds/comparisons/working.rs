@@ -76,7 +76,7 @@ fn line(progress: &Progress) -> String {
 
 fn lay_out(ask: &Ask, decided: Result<Decided, Refusal>) -> Outcome {
     match decided {
-        Ok(decided) => in_force(decided.outcome(), &decided.asked),
+        Ok(decided) => in_force(decided.outcome(), &decided.asked, Some(decided.study.variances)),
         Err(Refusal { message }) => refused(ask, format!("The comparisons cannot be made: {message}.")),
     }
 }

@@ -1,7 +1,7 @@
 //! The sentences for the report.
 
 use super::decided::Laid;
-use super::{effects, words};
+use super::{effects, rows, words};
 use crate::answer::number;
 use crate::methods::multiplicity::{
     Adjust, Basis, Claim, ComparisonRow, Comparisons, Family, PValueMethod, Sides,
@@ -19,7 +19,7 @@ pub fn writeup(laid: &Laid) -> String {
     let opening = format!(
         "{mean} {} {was} compared {} {} ({}; {}, {}; {} over {}, {}).",
         outcome_with_unit(study),
-        if laid.asked.family == Family::Contrasts { "by" } else { "over" },
+        if laid.asked.family == Family::Contrasts { "by" } else { "for" },
         words::family(laid.asked, study),
         sizes(&study.levels.labels, laid.n().into_iter()),
         words::tests(result.basis, study.variances, laid.estimates, study.levels.count()),
@@ -31,13 +31,18 @@ pub fn writeup(laid: &Laid) -> String {
     let all = result.rows.len() <= SAID_EACH;
     let said = result.rows.iter().filter(|row| all || row.rejected).take(SAID_EACH * 3);
     let mut sentences: Vec<String> = vec![opening];
+    sentences.extend(result.rearranged.as_ref().map(|rearranged| rows::rearrangements(rearranged, laid)));
     sentences.extend(said.map(|row| row_sentence(laid, row)));
     if !all {
         sentences.extend(others(laid));
     }
     if result.rows.iter().any(|row| row.effects.standardised.is_some()) {
+        let level = match result.rows.iter().any(|row| row.critical.is_some()) {
+            true => "at the level of the row's critical value".to_string(),
+            false => format!("of {} for the comparison alone", number::percent(result.confidence)),
+        };
         sentences.push(format!(
-            "d is the {} divided by {}, its interval at the level of the row's critical value; g is d without its small-sample bias.",
+            "d is the {} divided by {}, its interval {level}; g is d without its small-sample bias.",
             laid.estimate_word(),
             effects::standardiser(laid)
         ));
