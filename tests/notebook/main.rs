@@ -3,6 +3,7 @@
 
 mod bad_input;
 mod comparisons;
+mod comparisons_said;
 mod data;
 mod expect;
 mod extremes;

@@ -2,7 +2,7 @@
 
 use super::asked::Asked;
 use super::decided::Laid;
-use super::words;
+use super::{attainable, words};
 use crate::answer::number;
 use crate::methods::contrasts::Set;
 use crate::methods::multiplicity::{
@@ -22,12 +22,15 @@ const RATIO: f64 = 2.0;
 pub fn of(laid: &Laid) -> Vec<String> {
     let (result, asked) = (laid.comparisons, laid.asked);
     let mut found = Vec::new();
+    found.extend(borrowed_spread(laid));
     found.extend(pooled_spread(laid));
     found.extend(small_groups(laid));
     found.extend(out_of_reach(laid));
+    found.extend(attainable::caution(laid));
     found.extend(of_ask(asked, laid.study.levels.count()));
     found.extend(unequal_steps(laid));
     found.extend(too_many_contrasts(laid));
+    found.extend(same_question(laid));
     found.extend(disagreeing(laid));
     if result.interval_kind != IntervalKind::None && (result.confidence - (1.0 - result.alpha)).abs() > 1e-12
     {
@@ -128,13 +131,36 @@ pub fn unused(fields: &[(&'static str, String)]) -> Vec<String> {
         .collect()
 }
 
+/// Levels whose spread is that of the others, because their own values show none.
+fn borrowed_spread(laid: &Laid) -> Option<String> {
+    if laid.study.variances != Variances::Equal || laid.asked.basis != Basis::Means {
+        return None;
+    }
+    let groups = laid.summary.groups.iter().zip(&laid.study.levels.labels);
+    let names: Vec<String> = groups
+        .filter_map(|(group, level)| match group.sd() {
+            None => Some(format!("\"{level}\" (n = 1)")),
+            Some(0.0) => Some(format!("\"{level}\" (n = {}, all values equal)", group.n)),
+            Some(_) => None,
+        })
+        .collect();
+    let (have, own, them) = if names.len() == 1 { ("has", "its", "it") } else { ("have", "their", "them") };
+    (!names.is_empty()).then(|| {
+        format!(
+            "{} {have} no spread of {own} own: that of the other levels is taken for {them}.",
+            listed(names.into_iter())
+        )
+    })
+}
+
 fn pooled_spread(laid: &Laid) -> Option<String> {
     if laid.study.variances != Variances::Equal || matches!(laid.asked.basis, Basis::Ranks(_)) {
         return None;
     }
     let groups = laid.summary.groups.iter().zip(&laid.study.levels.labels);
+    // A level without any spread is spoken of by itself.
     let spreads: Vec<(f64, usize, &String)> =
-        groups.filter_map(|(g, level)| Some((g.sd()?, g.n, level))).collect();
+        groups.filter_map(|(g, level)| Some((g.sd().filter(|sd| *sd > 0.0)?, g.n, level))).collect();
     let largest = spreads.iter().max_by(|one, other| one.0.total_cmp(&other.0))?;
     let smallest = spreads.iter().min_by(|one, other| one.0.total_cmp(&other.0))?;
     if largest.0 <= RATIO * smallest.0 {
@@ -149,14 +175,11 @@ fn pooled_spread(laid: &Laid) -> Option<String> {
         }
         std::cmp::Ordering::Equal => "",
     };
-    let ratio = if smallest.0 > 0.0 {
-        format!("{} times", number::fixed(largest.0 / smallest.0, 1))
-    } else {
-        "far above".to_string()
-    };
     Some(format!(
-        "One standard deviation is assumed for all levels, but that of \"{}\" is {ratio} that of \"{}\".{sizes} The study can set variances = \"unequal\".",
-        largest.2, smallest.2
+        "One standard deviation is assumed for all levels, but that of \"{}\" is {} times that of \"{}\".{sizes} The study can set variances = \"unequal\".",
+        largest.2,
+        number::fixed(largest.0 / smallest.0, 1),
+        smallest.2
     ))
 }
 
@@ -234,9 +257,39 @@ fn too_many_contrasts(laid: &Laid) -> Option<String> {
     })
 }
 
+/// Contrasts that are multiples of one another.
+fn same_question(laid: &Laid) -> Option<String> {
+    let contrasts = &laid.asked.contrasts;
+    if laid.asked.family != Family::Contrasts {
+        return None;
+    }
+    let mut said = vec![false; contrasts.len()];
+    let mut sets = Vec::new();
+    for i in 0..contrasts.len() {
+        let same: Vec<usize> = (i..contrasts.len())
+            .filter(|j| !said[*j] && proportional(&contrasts[i].coefficients, &contrasts[*j].coefficients))
+            .collect();
+        same.iter().for_each(|j| said[*j] = true);
+        if same.len() > 1 {
+            let names = same.iter().map(|j| format!("\"{}\"", contrasts[*j].name));
+            sets.push(format!("{} are multiples of each other and ask the same", listed(names)));
+        }
+    }
+    (!sets.is_empty())
+        .then(|| format!("{}; each counts in the family of {}.", sets.join("; "), contrasts.len()))
+}
+
+/// Whether the one is the other times a number, up to rounding.
+fn proportional(one: &[f64], other: &[f64]) -> bool {
+    let product = |a: &[f64], b: &[f64]| a.iter().zip(b).map(|(x, y)| x * y).sum::<f64>();
+    let (lengths, inner) = (product(one, one) * product(other, other), product(one, other));
+    inner * inner >= lengths * (1.0 - 1e-12)
+}
+
 fn disagreeing(laid: &Laid) -> Option<String> {
     let result = laid.comparisons;
-    if result.disagreeing.is_empty() {
+    // A bound that goes with the decisions ends at the border itself where the hypothesis is rejected.
+    if result.disagreeing.is_empty() || result.interval_kind == IntervalKind::Compatible {
         return None;
     }
     let rows = listed(result.disagreeing.iter().map(|i| laid.name(&result.rows[*i])));

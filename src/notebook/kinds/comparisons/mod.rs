@@ -3,9 +3,10 @@
 //! `asked` reads the ask against its study, `plan` shows what can be said before there are data, `given` adjusts
 //! p-values from elsewhere, `working` does what takes long in slices, and `decided` lays out the result of
 //! `methods::multiplicity` from its views: `rows`, `effects`, `shares`, `letters`, `beside`, `differs`, `writeup`,
-//! `figures`, `cautions` and `json`; `words` says what things are called.
+//! `figures`, `cautions` (with `attainable`) and `json`; `words` says what things are called.
 
 mod asked;
+mod attainable;
 mod beside;
 mod cautions;
 mod decided;

@@ -109,8 +109,9 @@ fn notes(laid: &Laid) -> Vec<String> {
         let rank = json::independent(laid.asked, laid.study.levels.count());
         if rank < result.family_size {
             notes.push(format!(
-                "The {} contrasts carry {rank} independent questions: some of them follow from others.",
-                result.family_size
+                "The {} contrasts carry {rank} independent question{}: some of them follow from others.",
+                result.family_size,
+                if rank == 1 { "" } else { "s" }
             ));
         }
         let each = result.rows.iter().map(|row| format!("{}: {}", row.name, row.words));
