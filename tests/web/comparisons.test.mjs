@@ -30,7 +30,7 @@ const LEVELS = Object.keys(GROUPS);
 /** Rearrangements that keep any machine busy for minutes; what is stopped need not be finished. */
 const NEVER_DONE = '1000000';
 /** Rearrangements that take many slices, and a few seconds. */
-const SOME = '60000';
+const SOME = '100000';
 
 const folder = mkdtempSync(join(tmpdir(), 'levelwise-comparisons-'));
 after(() => rmSync(folder, { recursive: true, force: true }));
