@@ -125,7 +125,13 @@ fn levels_without_scores_have_no_trend_and_the_order_in_use_is_said() {
     assert_eq!(place, "\"doses\"");
     assert_eq!(
         message,
-        "A trend needs a number for each level (its dose, its minutes), and the study has no scores. The order in use is \"none\", \"10 mg\", \"30 mg\", \"100 mg\". Set scores in the study, or here, such as scores = [0, 15, 30]."
+        "A trend needs a number for each level (its dose, its minutes), and the study has no scores. The order in use is \"none\", \"10 mg\", \"30 mg\", \"100 mg\". Their names suggest scores = [0, 10, 30, 100]: set them in the study, or here, if they are right."
+    );
+    let mut nameless = doses(Variances::Equal);
+    nameless.levels.scores = None;
+    nameless.levels.labels = ["none", "low", "middle", "high"].map(String::from).to_vec();
+    assert!(
+        problem("", nameless).0.ends_with("Set scores in the study, or here, such as scores = [0, 15, 30].")
     );
 }
 

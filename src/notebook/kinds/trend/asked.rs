@@ -60,8 +60,15 @@ fn scores(reader: &mut Reader, study: &Study) -> Option<Vec<f64>> {
             let order = words::order(&levels.labels);
             let known =
                 if order.is_empty() { String::new() } else { format!(" The order in use is {order}.") };
+            let advice = match words::scores_in_names(&levels.labels) {
+                Some(scores) => format!(
+                    "Their names suggest scores = [{}]: set them in the study, or here, if they are right.",
+                    words::scores(&scores)
+                ),
+                None => "Set scores in the study, or here, such as scores = [0, 15, 30].".to_string(),
+            };
             let message = format!(
-                "A trend needs a number for each level (its dose, its minutes), and the study has no scores.{known} Set scores in the study, or here, such as scores = [0, 15, 30]."
+                "A trend needs a number for each level (its dose, its minutes), and the study has no scores.{known} {advice}"
             );
             reader.problem("study", message);
         }
