@@ -31,10 +31,7 @@ pub fn numbers(project: &Project) -> Result<bool> {
 /// Simulates the error rates of the comparisons, which takes long and needs no browser.
 pub fn rates(project: &Project) -> Result<bool> {
     let mut command = Command::new(toolchain::cargo());
-    command.current_dir(&project.root).args(["bench", "--bench", "error_rates"]);
-    // A benchmark unwinds. If the program beside it did not, there would be two libraries of one file name, and the
-    // benchmark could meet the wrong one.
-    run(command.env("CARGO_PROFILE_RELEASE_PANIC", "unwind"))?;
+    run(command.current_dir(&project.root).args(["bench", "--bench", "error_rates"]))?;
     Ok(true)
 }
 

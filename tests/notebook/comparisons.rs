@@ -276,7 +276,11 @@ fn cautions_stand_where_harm_is_possible() {
     };
     let spread = study(&[("a", &[0.0, 10.0, 20.0]), ("b", &[3.0, 3.5, 4.0, 3.2, 3.7])], Variances::Equal);
     caution("", spread, "The smaller group has the larger spread");
-    caution("", blood_counts(Variances::Unequal), "groups smaller than 6: \"A\" (n = 4) and \"B\" (n = 5)");
+    caution(
+        "",
+        blood_counts(Variances::Unequal),
+        "small groups have unequal sizes or spreads: \"A\" (n = 4) and \"B\" (n = 5)",
+    );
     caution("adjust = \"Hochberg\"", blood_counts(Variances::Equal), "For all pairs this is not guaranteed");
     caution("adjust = \"Benjamini-Hochberg\"", blood_counts(Variances::Equal), "exploratory screening");
     caution("adjust = \"none\"", blood_counts(Variances::Equal), "could reach 14.26\u{a0}%");
