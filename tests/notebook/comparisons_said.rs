@@ -203,3 +203,22 @@ fn rearrangements_that_cannot_show_anything_are_said_before_they_are_believed() 
     let said = cautions("basis = \"permutation\"\nadjust = \"Holm\"\nrepeats = 300", large);
     assert!(!said.contains("No values"), "{said}");
 }
+
+#[test]
+fn an_order_is_offered_by_name_and_a_comparison_that_no_share_can_reach_is_said() {
+    let text = ask("family = \"each against control\"\nadjust = \"graph\"");
+    let outcome = evaluated(&text, controlled());
+    assert_eq!(outcome.choices["order"], ["A - control", "B - control"]);
+    assert!(!outcome.answer.cautions.join(" ").contains("never tested"));
+    let text = format!("{text}\nweights = {{ \"B - control\" = 1 }}");
+    let lonely =
+        format!("{text}\ntransitions = [{{ from = \"A - control\", to = \"B - control\", share = 1 }}]");
+    let said = evaluated(&lonely, controlled()).answer.cautions.join(" ");
+    assert!(
+        said.contains("A \u{2212} control starts with no share of the error rate, and no transition can bring it one: never tested, whatever the others show."),
+        "{said}"
+    );
+    let passed =
+        format!("{text}\ntransitions = [{{ from = \"B - control\", to = \"A - control\", share = 0.5 }}]");
+    assert!(!evaluated(&passed, controlled()).answer.cautions.join(" ").contains("never tested"));
+}

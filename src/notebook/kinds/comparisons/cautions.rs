@@ -56,6 +56,7 @@ pub fn of_ask(asked: &Asked, levels: usize) -> Vec<String> {
     if asked.claim != Claim::Difference {
         found.push(MARGIN.to_string());
     }
+    found.extend(never_tested(asked));
     found.extend(unused(&asked.unused));
     found
 }
@@ -134,6 +135,43 @@ fn open_gate(levels: usize, alpha: f64) -> f64 {
     let q = normal::upper_quantile(alpha / 2.0).map(|z| z * std::f64::consts::SQRT_2);
     q.and_then(|q| studentized_range::sf(q, levels - 1, f64::INFINITY))
         .map_or(1.0, |chance| (chance * 1e3).round() / 1e3)
+}
+
+/// Comparisons that hold no weight and to which none can come.
+fn never_tested(asked: &Asked) -> Option<String> {
+    let order = asked.order.as_ref()?;
+    let mut reached: Vec<bool> = order.graph.weights().iter().map(|weight| *weight > 0.0).collect();
+    if reached.iter().all(|reached| *reached) {
+        return None;
+    }
+    let transitions = order.graph.transitions();
+    let mut waiting: Vec<usize> = (0..reached.len()).filter(|i| reached[*i]).collect();
+    while let Some(from) = waiting.pop() {
+        for (to, share) in transitions[from].iter().enumerate() {
+            if *share > 0.0 && !reached[to] {
+                reached[to] = true;
+                waiting.push(to);
+            }
+        }
+    }
+    let names = |row: &usize| match &asked.given {
+        Some(given) => given[*row].0.clone(),
+        None => words::row_name(&asked.contrasts[*row].name, asked.family),
+    };
+    let left: Vec<String> = order
+        .places
+        .iter()
+        .zip(&reached)
+        .filter(|(_, reached)| !**reached)
+        .map(|(row, _)| names(row))
+        .collect();
+    let (start, them) = if left.len() == 1 { ("starts", "it") } else { ("start", "them") };
+    (!left.is_empty()).then(|| {
+        format!(
+            "{} {start} with no share of the error rate, and no transition can bring {them} one: never tested, whatever the others show.",
+            listed(left.into_iter())
+        )
+    })
 }
 
 /// Fields that are written and not used.

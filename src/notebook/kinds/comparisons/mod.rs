@@ -50,7 +50,10 @@ pub fn evaluate(ask: &Ask, read: &Read) -> Evaluation {
     }
 }
 
-/// What the sentence shows for fields that are not given.
+/// Up to this many comparisons are offered by name where an order, weights or transitions are to be written.
+const OFFERED: usize = 24;
+
+/// What the sentence shows for fields that are not given, and what it offers.
 fn in_force(outcome: Outcome, asked: &Asked, variances: Option<Variances>) -> Outcome {
     let alpha = crate::answer::number::plain(asked.alpha);
     let outcome =
@@ -59,6 +62,13 @@ fn in_force(outcome: Outcome, asked: &Asked, variances: Option<Variances>) -> Ou
         Basis::Ranks(Ranking::Joint) => outcome.with_in_force("ranking", fields::JOINT),
         Basis::Ranks(Ranking::PairByPair) => outcome.with_in_force("ranking", fields::PAIR_BY_PAIR),
         Basis::Means | Basis::Permutation => outcome,
+    };
+    let outcome = match &asked.order {
+        Some(_) if asked.names().len() <= OFFERED => {
+            let fields = ["order", "weights", "transitions"];
+            fields.into_iter().fold(outcome, |outcome, field| outcome.with_choices(field, asked.names()))
+        }
+        _ => outcome,
     };
     match variances {
         Some(Variances::Equal) => outcome.with_in_force("standardise", fields::ALL_LEVELS),

@@ -44,6 +44,14 @@ pub struct Asked {
 }
 
 impl Asked {
+    /// What the comparisons, or the given p-values, are called.
+    pub fn names(&self) -> Vec<String> {
+        match &self.given {
+            Some(given) => given.iter().map(|(name, _)| name.clone()).collect(),
+            None => self.contrasts.iter().map(|contrast| contrast.name.clone()).collect(),
+        }
+    }
+
     /// The ask, with every default filled in.
     ///
     /// # Errors
