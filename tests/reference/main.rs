@@ -40,6 +40,8 @@ mod rank_counts;
 mod rank_properties;
 mod ratio;
 mod remembered;
+mod shape_fits;
+mod shapes;
 mod shapiro_wilk;
 mod shift;
 mod step_down;

@@ -1,6 +1,7 @@
 //! Trends over levels with numeric scores.
 
 mod polynomial;
+pub mod shapes;
 
 pub(in crate::methods) use polynomial::scaled;
 pub use polynomial::{
