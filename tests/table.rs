@@ -731,3 +731,15 @@ fn empty_columns_without_a_name_after_the_last_one_are_no_columns() {
         .expect_err("a value without a name");
     assert!(error.message.contains("column 3 has no name"), "{}", error.message);
 }
+
+#[test]
+fn a_label_with_and_without_spaces_around_it_is_one_value_and_said() {
+    let table = table("dose,y\nlow,1\n\"low \",2\n low,3\nhigh,4\n");
+    assert_eq!(
+        table.remarks,
+        [
+            "Column \"dose\": \"low\" stands with spaces around it in 2 rows and without in others; they count as the same value."
+        ]
+    );
+    assert_eq!(self::table("dose, y\nlow , 1\nhigh , 2\n").remarks, Vec::<String>::new());
+}

@@ -1,8 +1,8 @@
 //! A text becomes a table, or an error that says where and what to do.
 
-use super::column::{ColumnKind, shortened};
+use super::column::{Column, ColumnKind, shortened};
 use super::infer;
-use super::split::{Separator, Split, find_separator, split};
+use super::split::{Cells, Separator, Split, find_separator, split};
 use super::{Table, nearest};
 use crate::numerics::decimal::DecimalMark;
 use std::sync::Arc;
@@ -113,11 +113,12 @@ pub fn read(text: &str, options: &ReadOptions) -> Result<Table, ReadError> {
         }
     }
     let parts = header.iter().zip(sources).zip(tallies).zip(kinds);
-    let columns = parts
+    let columns: Vec<Column> = parts
         .map(|(((name, source), tally), kind)| infer::column(name, source, tally, kind))
         .collect::<Result<_, _>>()
         .map_err(|error: ReadError| error.on_its_line(&lines))?;
     let rows = lines.len();
+    remarks.extend(spaces(&columns, &cells));
     Ok(Table {
         columns,
         rows,
@@ -128,6 +129,20 @@ pub fn read(text: &str, options: &ReadOptions) -> Result<Table, ReadError> {
         exclusions: Vec::new(),
         excluded: Vec::new(),
     })
+}
+
+/// Labels that are the same only once the spaces around them are left out.
+fn spaces(columns: &[Column], cells: &Cells) -> Vec<String> {
+    let labels = columns.iter().enumerate().filter(|(_, column)| column.kind == ColumnKind::Label);
+    let found = labels.filter_map(|(at, column)| {
+        let (value, rows) = cells.spaced_and_bare(at)?;
+        let rows = if rows == 1 { "1 row".to_string() } else { format!("{rows} rows") };
+        let (name, value) = (&column.name, shortened(value));
+        Some(format!(
+            "Column \"{name}\": \"{value}\" stands with spaces around it in {rows} and without in others; they count as the same value."
+        ))
+    });
+    found.collect()
 }
 
 fn check_header(header: &[String], line: u32) -> Result<(), ReadError> {

@@ -2,6 +2,7 @@
 
 use super::ReadError;
 use csv_core::{ReadFieldResult, ReadRecordResult, Reader, ReaderBuilder};
+use std::collections::BTreeMap;
 use std::ops::Range;
 
 /// The character between the fields of a row.
@@ -40,6 +41,9 @@ impl Separator {
 /// read, and the page's engine has 4 GB.
 const MOST_FIELDS: usize = 100_000_000;
 
+/// Different values with spaces around them that are looked for without.
+const MOST_SPACED: usize = 200;
+
 /// The fields of a table, row by row, in one buffer: 4 bytes a field besides its text.
 #[derive(Debug)]
 pub(super) struct Cells {
@@ -50,11 +54,32 @@ pub(super) struct Cells {
 }
 
 impl Cells {
-    /// The field, with the spaces around it removed. Row 0 is the first row below the header.
-    pub fn get(&self, row: usize, column: usize) -> &str {
+    /// The field as it stands between its separators or quotes.
+    fn raw(&self, row: usize, column: usize) -> &str {
         let at = row * self.columns + column;
         let start = if at == 0 { 0 } else { self.ends[at - 1] as usize };
-        let field = &self.text[start..self.ends[at] as usize];
+        &self.text[start..self.ends[at] as usize]
+    }
+
+    /// A value of the column that is written with spaces around it in some rows (how many) and without in others.
+    pub fn spaced_and_bare(&self, column: usize) -> Option<(&str, usize)> {
+        let mut spaced: BTreeMap<&str, usize> = BTreeMap::new();
+        for row in 0..self.rows() {
+            let (raw, bare) = (self.raw(row, column), self.get(row, column));
+            if raw.len() != bare.len() && (spaced.len() < MOST_SPACED || spaced.contains_key(bare)) {
+                *spaced.entry(bare).or_default() += 1;
+            }
+        }
+        if spaced.is_empty() {
+            return None;
+        }
+        let bare = (0..self.rows()).map(|row| self.raw(row, column)).find(|raw| spaced.contains_key(raw))?;
+        Some((bare, spaced[bare]))
+    }
+
+    /// The field, with the spaces around it removed. Row 0 is the first row below the header.
+    pub fn get(&self, row: usize, column: usize) -> &str {
+        let field = self.raw(row, column);
         let bare = |byte: Option<&u8>| byte.is_none_or(u8::is_ascii_graphic);
         // Most fields have nothing to remove, and one look at both ends shows it.
         if bare(field.as_bytes().first()) && bare(field.as_bytes().last()) { field } else { field.trim() }
