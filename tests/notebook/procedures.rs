@@ -53,6 +53,13 @@ fn equivalence_is_two_one_sided_tests_with_the_interval_that_goes_with_them() {
 }
 
 #[test]
+fn bounds_of_an_ordered_procedure_agree_with_it() {
+    let text = "family = \"each against control\"\nadjust = \"fixed sequence\"\nsides = \"greater\"\norder = [\"B - control\", \"A - control\"]";
+    let outcome = settled(text, controlled(Variances::Equal));
+    assert_eq!(outcome.results["intervals_disagree"], serde_json::json!([]));
+}
+
+#[test]
 fn non_inferiority_takes_its_direction_from_the_study_and_its_bound_decides() {
     let mut study = controlled(Variances::Equal);
     study.better = Some(Better::Higher);
@@ -290,6 +297,37 @@ fn more_partitions_than_can_be_gone_through_are_refused_with_holm() {
         super::given::study(&groups, Variances::Equal),
     );
     assert_eq!(holm.results["rows"].as_array().unwrap().len(), 36);
+}
+
+#[test]
+fn stepping_down_through_very_many_pairs_is_refused_with_what_to_choose() {
+    let names: Vec<String> = (0..16).map(|i| format!("g{i}")).collect();
+    let values: Vec<Vec<f64>> =
+        (0..16).map(|i| vec![f64::from(i), f64::from(i) + 1.5, f64::from(i) + 2.0]).collect();
+    let groups: Vec<(&str, &[f64])> =
+        names.iter().zip(&values).map(|(name, values)| (name.as_str(), values.as_slice())).collect();
+    let study = || super::given::study(&groups, Variances::Equal);
+    let found = problems("adjust = \"step-down max-t\"", study());
+    assert!(found[0].contains("120 comparisons would take too long: at most 105 are gone through. Choose max-t, which takes one step, or Holm."), "{found:?}");
+    let single = settled("adjust = \"max-t\"", study());
+    assert_eq!(single.results["rows"].as_array().unwrap().len(), 120);
+    // Against a control every step is quick.
+    let mut controlled = study();
+    controlled.levels.control = Some(0);
+    settled("family = \"each against control\"\nadjust = \"step-down max-t\"", controlled);
+}
+
+#[test]
+fn two_contrasts_whose_names_differ_by_spaces_alone_are_said() {
+    let twice = "family = \"contrasts\"\ncontrasts = { a = \"A - control\", \"a \" = \"B - control\" }";
+    assert_eq!(
+        problems(twice, blood_counts(Variances::Equal)),
+        [
+            "contrasts: two have the name \"a\" once the spaces around it are left out. Give each a name of its own."
+        ]
+    );
+    let given = "family = \"given p-values\"\ngiven = { a = 0.1, \" a\" = 0.2 }";
+    assert!(problems(given, blood_counts(Variances::Equal))[0].starts_with("given: two have the name \"a\""));
 }
 
 #[test]

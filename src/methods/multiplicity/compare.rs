@@ -5,7 +5,7 @@ use super::detectable::Detectable;
 use super::letters::letters;
 use super::long::{Long, Worked};
 use super::ordered::Order;
-use super::result::{CannotCompare, ComparisonRow, Comparisons};
+use super::result::{CannotCompare, ComparisonRow, Comparisons, IntervalKind};
 use super::row_test::{self, Test};
 use super::setting::{Basis, Claim, Family, Resampling, Setting, Sides, Standardise};
 use super::{Adjust, range, row_effects};
@@ -204,7 +204,12 @@ impl Comparisons {
     }
 }
 
+/// Bounds that go with an ordered decision agree with it by their making: they are open where they end at the border of the
+/// hypothesis.
 fn disagrees(row: &ComparisonRow, request: &Request) -> bool {
+    if decision::interval_kind(request) == IntervalKind::Compatible {
+        return false;
+    }
     row.interval.is_some_and(|interval| interval.supports(request.claim, request.sides) != row.rejected)
 }
 

@@ -3,10 +3,15 @@
 use super::compare::Request;
 use super::joint::{Joint, JointWork, Procedure};
 use super::permutation::{Closure, PermutationComparisons, PermutationRequest, PermutationWork};
-use super::setting::Basis;
+use super::setting::{Basis, Family};
 use super::{Adjust, CannotCompare};
+use crate::methods::contrasts::Set;
 use crate::methods::slices::{Advance, InSlices};
 use crate::numerics::OutOfDomain;
+
+/// Most comparisons that max-t steps down through where what is left at a step has no quick distribution: all pairs of 15
+/// levels take about half a minute, and the time grows with more than the cube of their number.
+const MOST_STEPS: usize = 105;
 
 /// Work that a procedure needs before it can decide.
 #[derive(Debug)]
@@ -71,6 +76,10 @@ impl Long {
             Adjust::StepDownMaxT => Procedure::StepDown,
             _ => return Ok(None),
         };
+        let against_control = matches!(request.family, Family::Set(Set::AgainstControl(_)));
+        if procedure == Procedure::StepDown && rows.len() > MOST_STEPS && !against_control {
+            return Err(CannotCompare::TooManySteps { comparisons: rows.len(), most: MOST_STEPS });
+        }
         let (estimates, null) = (request.estimates()?, request.claim.null(request.sides));
         let at = |alpha| -> Result<Box<JointWork>, OutOfDomain> {
             Ok(Box::new(JointWork::new(estimates, &rows, null, request.sides, procedure, alpha)?))

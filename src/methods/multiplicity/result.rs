@@ -161,6 +161,10 @@ pub enum CannotCompare {
     NoRanks { name: String, reason: CannotRank },
     #[error("the values cannot be ranked: {0}")]
     NoJointRanks(CannotRank),
+    #[error(
+        "the step-down max-t procedure works out the joint distribution of what is left at every step, and {comparisons} comparisons would take too long: at most {most} are gone through. Choose max-t, which takes one step, or Holm"
+    )]
+    TooManySteps { comparisons: usize, most: usize },
     #[error("{0}")]
     NoPermutation(#[from] NoPermutation),
     #[error("the procedure needs an order, with weights where it has them, and none is given")]

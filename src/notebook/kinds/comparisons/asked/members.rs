@@ -94,7 +94,7 @@ fn given(reader: &mut Reader) -> Option<Vec<(String, f64)>> {
         reader.problem("given", "No p-value is given. Write a name and a p-value for each comparison.");
         return None;
     }
-    let mut fine = true;
+    let mut fine = !twice(reader, "given", entries.iter().map(|(name, _)| name));
     for (name, p) in &entries {
         if !(0.0..=1.0).contains(p) {
             let message = format!("\"{}\" has the p-value {p}; a p-value is from 0 to 1.", name.value);
@@ -124,9 +124,29 @@ fn contrasts(reader: &mut Reader, study: &Study) -> Option<Vec<Contrast>> {
         reader.problem("contrasts", "No contrast is written. Write a name and an expression for each.");
         return None;
     }
+    if twice(reader, "contrasts", entries.iter().map(|(name, _)| name)) {
+        return None;
+    }
     let read: Vec<Option<Contrast>> =
         entries.iter().map(|(name, value)| contrast(reader, name, value, &study.levels.labels)).collect();
     read.into_iter().collect()
+}
+
+/// Whether two of the names are the same without the spaces around them, which is noted.
+fn twice<'n>(reader: &mut Reader, field: &str, names: impl Iterator<Item = &'n At<String>>) -> bool {
+    let mut known: Vec<&str> = Vec::new();
+    for name in names {
+        let bare = name.value.trim();
+        if known.contains(&bare) {
+            let message = format!(
+                "{field}: two have the name \"{bare}\" once the spaces around it are left out. Give each a name of its own."
+            );
+            reader.problem_at(field, name.span.clone(), message);
+            return true;
+        }
+        known.push(bare);
+    }
+    false
 }
 
 fn example(labels: &[String]) -> String {
