@@ -255,12 +255,14 @@ impl<'a> Reader<'a> {
         for (key, value) in entries {
             match finite(value) {
                 Some(number) => numbers.push((key, number)),
-                None => self.wrong(
-                    name,
-                    value.span().unwrap_or(key.span),
-                    &describe_value(value),
-                    "a finite number",
-                ),
+                None => {
+                    let found = describe_value(value);
+                    let message = format!(
+                        "{name}, \"{}\": {found} was found, but a finite number is needed.",
+                        key.value
+                    );
+                    self.problem_at(name, value.span().unwrap_or(key.span), message);
+                }
             }
         }
         Some(numbers)
@@ -325,7 +327,7 @@ impl<'a> Reader<'a> {
                     name,
                     span.clone(),
                     format!(
-                        "{name}, entry {}: \"{}\" is missing. In the blank a line is \"{}\"; in the text, add {} to the entry.",
+                        "{name}, entry {}: \"{}\" is missing. In the blank a line is \"{}\"; in the text, add \"{}\" to the entry.",
                         index + 1,
                         part.name,
                         known().collect::<Vec<_>>().join("; "),
