@@ -12,6 +12,7 @@ use levelwise::methods::trend::shapes::{
 };
 use levelwise::methods::trend::{TrendRequest, Weights, polynomial};
 use levelwise::numerics::distributions::student_t;
+use levelwise::numerics::random::Streams;
 use levelwise::study::{Estimates, GroupSummary, Sample, Summary, Variances};
 use serde_json::Value;
 
@@ -379,4 +380,117 @@ fn replicates_that_do_not_reach_the_target_open_the_interval() {
     let few = "must be from 100 to 1000000, and at least 2 / (1 - confidence)";
     assert_eq!(refused(1.0, 0.95, 99), format!("number of replicates is 99, but {few}"));
     assert_eq!(refused(1.0, 0.999, 1000), format!("number of replicates is 1000, but {few}"));
+}
+
+/// Residual sum of squares of the means around the best curve of exactly this shape, by the textbook formula of a regression;
+/// infinite where the shape is flat to seven digits, too flat for that formula.
+fn left_by(shape: &Shape, doses: &[f64], n: &[f64], means: &[f64]) -> f64 {
+    let g: Vec<f64> = doses.iter().map(|x| shape.at(*x)).collect();
+    let weighted = |of: &dyn Fn(usize) -> f64| (0..n.len()).map(|i| n[i] * of(i)).sum::<f64>();
+    let total: f64 = n.iter().sum();
+    let (mg, mm) = (weighted(&|i| g[i]) / total, weighted(&|i| means[i]) / total);
+    let spread = weighted(&|i| (g[i] - mg) * (g[i] - mg));
+    if spread < 1e-14 * weighted(&|i| g[i] * g[i]) {
+        return f64::INFINITY;
+    }
+    let slope = weighted(&|i| (g[i] - mg) * (means[i] - mm)) / spread;
+    weighted(&|i| {
+        let left = means[i] - mm - slope * (g[i] - mg);
+        left * left
+    })
+}
+
+/// Noise of all sizes around curves of all kinds, and none: the sum of squares as a function of the parameters has several minima.
+#[test]
+fn no_random_parameters_fit_better_than_the_fit() {
+    let n: [f64; 8] = [4.0, 9.0, 6.0, 7.0, 3.0, 8.0, 5.0, 6.0];
+    let (mut fitted, mut at_bound) = (0, 0);
+    for run in 0..120 {
+        let mut stream = Streams::new(run, "many curves").stream(0);
+        let truth = &curves()[run as usize % 8];
+        let noise = [0.0, 0.1, 0.5, 2.0][run as usize % 4] * truth.above(60.0, 0.0).abs().max(0.5);
+        let means: Vec<f64> =
+            DOSES.iter().zip(n).map(|(x, n)| truth.at(*x) + noise * stream.normal() / n.sqrt()).collect();
+        let groups =
+            means.iter().zip(n).map(|(m, n)| GroupSummary { n: n as usize, mean: *m, variance: Some(1.0) });
+        let data = DoseResponse::new(&DOSES, &Summary { origin: 0.0, groups: groups.collect() }).unwrap();
+        let within = n.iter().sum::<f64>() - 8.0;
+        for name in ["Emax", "exponential", "sigmoid Emax", "logistic"] {
+            let fit = match data.fit(&shape(name, 100.0)) {
+                Ok(fit) => fit,
+                Err(NoFit::AtBound { .. }) => {
+                    at_bound += 1;
+                    continue;
+                }
+                Err(other) => panic!("{name} {run}: {other}"),
+            };
+            fitted += 1;
+            let around = fit.residual_ss - within;
+            for _ in 0..3000 {
+                let mut between = |low: f64, high: f64| low * libm::pow(high / low, stream.uniform());
+                let (e50, h) = (between(0.05, 1000.0), between(0.125, 32.0));
+                let tried = match name {
+                    "Emax" => Shape::Emax { e50 },
+                    "exponential" => Shape::Exponential { delta: between(4.4, 1000.0) },
+                    "sigmoid Emax" => Shape::SigmoidEmax { e50, h },
+                    _ => Shape::Logistic { e50: between(1.0, 201.0) - 51.0, delta: between(1.0, 200.0) },
+                };
+                let left = left_by(&tried, &DOSES, &n, &means);
+                // The sum of squares within, 40, takes digits from what the fit reports.
+                assert!(
+                    left > around - 1e-12 * within,
+                    "{name} {run}: {tried:?} {left} {:?} {around}",
+                    fit.curve
+                );
+            }
+        }
+    }
+    assert!(fitted > 100 && at_bound > 10, "{fitted} {at_bound}");
+}
+
+/// Numbers from the whole range, in every place: an answer has no NaN, and nothing panics.
+#[test]
+fn extreme_numbers_are_fitted_or_refused() {
+    const ODD: [f64; 12] =
+        [0.0, 1.0, -1.0, 3.5, 1e-300, 1e300, -1e300, 1e-9, 1e9, 5e-324, f64::NAN, f64::INFINITY];
+    let (mut fitted, mut refused) = (0, 0);
+    for run in 0..500 {
+        let mut stream = Streams::new(run, "extremes").stream(0);
+        let mut odd = |usual: f64| {
+            if stream.uniform() < 0.1 {
+                ODD[stream.below(12) as usize]
+            } else {
+                usual * (1.0 + stream.uniform())
+            }
+        };
+        let doses: Vec<f64> = (0..5).map(|i| odd(2.0 * f64::from(i))).collect();
+        let group = |_| GroupSummary { n: 3, mean: odd(1.0), variance: Some(odd(1.0)) };
+        let summary = Summary { origin: 0.0, groups: (0..5).map(group).collect() };
+        let Ok(data) = DoseResponse::new(&doses, &summary) else { continue };
+        let (a, b) = (odd(3.0), odd(1.0));
+        for shape in [
+            Shape::Linear,
+            Shape::LogLinear { offset: a },
+            Shape::Emax { e50: a },
+            Shape::Exponential { delta: a },
+            Shape::Quadratic { peak: a },
+            Shape::SigmoidEmax { e50: a, h: b },
+            Shape::Logistic { e50: a, delta: b },
+            Shape::Step { threshold: a },
+        ] {
+            let Ok(fit) = data.fit(&shape) else {
+                refused += 1;
+                continue;
+            };
+            fitted += 1;
+            let numbers = fit.parameters.iter().flat_map(|parameter| [parameter.value, parameter.se]);
+            assert!(numbers.clone().all(f64::is_finite), "{run} {fit:?}");
+            if let Ok(found) = target_dose(&fit, b, 0.95) {
+                let all = [found.dose, found.se, found.interval.map(|interval| interval.lower)];
+                assert!(all.into_iter().flatten().all(f64::is_finite), "{run} {found:?}");
+                BootstrapWork::new(&data, &fit, b, 0.95, 100, run).unwrap().finish();
+            }
+        }
+    }
+    assert!(fitted > 300 && refused > 300, "{fitted} {refused}");
 }

@@ -17,8 +17,8 @@ use crate::methods::slices::{Advance, InSlices, Progress};
 use crate::numerics::OutOfDomain;
 use crate::numerics::random::Streams;
 
-/// Replicates of one slice: some milliseconds.
-const PER_SLICE: u64 = 50;
+/// Replicates of one slice, for shapes with none, one and two nonlinear parameters: up to some milliseconds each.
+const PER_SLICE: [u64; 3] = [500, 100, 10];
 /// The fewest and the most replicates: below, an end of a 95 % interval would be among the two most extreme doses.
 const REPEATS: std::ops::RangeInclusive<u64> = 100..=1_000_000;
 
@@ -97,7 +97,7 @@ impl BootstrapWork {
             streams: Streams::new(seed, "curves over doses"),
             repeats,
             seed,
-            per_slice: PER_SLICE,
+            per_slice: PER_SLICE[fit.curve.shape.gradient(fit.highest).len().min(2)],
             at_bound: 0,
             found: Vec::new(),
         })

@@ -3,8 +3,9 @@
 //! For given θ the best e0 + e1 g(x; θ) is a straight line in g, so that the residual sum of squares is a function of θ alone.
 //! It is first looked at on a grid, which depends on the doses and weights only and is made once for all data. From the
 //! lowest of the grid's local minima Levenberg and Marquardt's steps lead to the minimum inside the bounds, with the derivatives of g
-//! freed of the parts along 1 and g (Golub and Pereyra 1973, in Kaufman's form); plain Gauss and Newton steps then go on while
-//! they shrink, so that the normal equations hold to rounding, not merely the sum of squares.
+//! freed of the parts along 1 and g (Golub and Pereyra 1973, in Kaufman's form). Newton's steps end it, with second derivatives
+//! from differences of the first, and go on while they shrink, so that the normal equations hold to rounding, not merely the
+//! sum of squares.
 //!
 //! Bounds are where the data no longer tell curves apart:
 //!
@@ -24,17 +25,24 @@ use super::least_squares::Orthogonal;
 use super::shape::{Doses, Shape};
 use crate::numerics::sums::sum;
 
-/// Points of the grid along a parameter: one, two parameters.
-const POINTS: [usize; 2] = [161, 33];
-/// The search begins at so many of the grid's local minima.
-const STARTS: usize = 3;
+/// Points of the grid along a parameter that is alone, and along the steepness of a curve with two.
+const ALONE: usize = 161;
+const STEEPNESS: usize = 17;
+/// Points of the grid for the place of a curve with two parameters: in each gap between doses, in all gaps at most, and beyond
+/// either end. A steep curve may have its place in any gap, and a sum of squares that rises towards the others.
+const IN_A_GAP: usize = 4;
+const IN_ALL_GAPS: usize = 64;
+const BEYOND: usize = 8;
+/// The search begins at so many of the grid's local minima, and goes so far from each before the best goes on alone.
+const STARTS: usize = 5;
+const FIRST_STEPS: usize = 12;
 /// Steps of each of the two kinds at most.
 const STEPS: usize = 100;
 /// A share of a column's length that is rounding.
 const ROUNDING: f64 = 1e-13;
 
 /// One nonlinear parameter as the search sees it.
-#[derive(Debug, Clone, Copy)]
+#[derive(Debug, Clone)]
 struct Axis {
     low: f64,
     high: f64,
@@ -42,11 +50,33 @@ struct Axis {
     log: bool,
     /// The bounds of the parameter itself.
     bounds: (f64, f64),
+    /// Of the grid, ascending from `low` to `high`.
+    points: Vec<f64>,
 }
 
 impl Axis {
-    fn logarithmic(low: f64, high: f64) -> Self {
-        Self { low: libm::log(low), high: libm::log(high), log: true, bounds: (low, high) }
+    /// Equally spaced points of the logarithm.
+    fn logarithmic(low: f64, high: f64, points: usize) -> Self {
+        let (from, to) = (libm::log(low), libm::log(high));
+        Self { low: from, high: to, log: true, bounds: (low, high), points: spaced(from, to, points) }
+    }
+
+    /// Points between and beyond the doses.
+    fn among(doses: &[f64], low: f64, high: f64, log: bool) -> Self {
+        let scale = |x: f64| if log { libm::log(x) } else { x };
+        let (from, to, doses) =
+            (scale(low), scale(high), doses.iter().map(|x| scale(*x)).collect::<Vec<_>>());
+        let mut points = spaced(from, doses[0], BEYOND);
+        let gaps = doses.len() - 1;
+        let inside = (IN_A_GAP * gaps).min(IN_ALL_GAPS);
+        points.extend((0..inside).map(|point| {
+            let place = (point as f64 + 0.5) / inside as f64 * gaps as f64;
+            let gap = (place as usize).min(gaps - 1);
+            let share = place - gap as f64;
+            doses[gap] * (1.0 - share) + doses[gap + 1] * share
+        }));
+        points.extend(spaced(doses[gaps], to, BEYOND));
+        Self { low: from, high: to, log, bounds: (low, high), points }
     }
 
     fn parameter(&self, u: f64) -> f64 {
@@ -83,7 +113,7 @@ pub struct Minimum {
 struct Point {
     u: Vec<f64>,
     rss: f64,
-    /// Residuals along the freed derivatives, and those derivatives' products.
+    /// Residuals along the freed derivatives, and those derivatives' products or what stands for them.
     gradient: Vec<f64>,
     products: Vec<Vec<f64>>,
 }
@@ -101,7 +131,7 @@ impl Search {
             grid: Vec::new(),
         };
         if !this.axes.is_empty() {
-            let all = this.per_axis().pow(this.axes.len() as u32);
+            let all = this.axes.iter().map(|axis| axis.points.len()).product();
             this.grid = (0..all).map(|place| this.direction(&this.place(place))).collect();
         }
         this
@@ -111,33 +141,26 @@ impl Search {
     pub fn minimum(&self, means: &[f64]) -> Minimum {
         let mut best: Option<Point> = None;
         for start in self.starts(means) {
-            let Some(found) = self.point(self.place(start), means).map(|point| self.descend(point, means))
-            else {
-                continue;
-            };
+            let from = self.point(self.place(start), means);
+            let Some(found) = from.map(|point| self.approach(point, means)) else { continue };
             if best.as_ref().is_none_or(|best| found.rss < best.rss) {
                 best = Some(found);
             }
         }
-        match best {
-            Some(found) => Minimum { shape: self.shape_at(&found.u), at_bound: self.at_bound(&found.u) },
-            None => Minimum { shape: self.shape, at_bound: None },
-        }
-    }
-
-    fn per_axis(&self) -> usize {
-        POINTS[self.axes.len().clamp(1, 2) - 1]
+        let Some(best) = best else { return Minimum { shape: self.shape, at_bound: None } };
+        let found = self.polish(self.descend(best, means), means);
+        Minimum { shape: self.shape_at(&found.u), at_bound: self.at_bound(&found.u) }
     }
 
     /// The point number `place` of the grid.
     fn place(&self, place: usize) -> Vec<f64> {
-        let per_axis = self.per_axis();
-        let at = |axis: &Axis, step: usize| {
-            let share = step as f64 / (per_axis - 1) as f64;
-            axis.low * (1.0 - share) + axis.high * share
+        let mut rest = place;
+        let mut along = |axis: &Axis| {
+            let step = rest % axis.points.len();
+            rest /= axis.points.len();
+            axis.points[step]
         };
-        let steps = [place % per_axis, place / per_axis];
-        self.axes.iter().zip(steps).map(|(axis, step)| at(axis, step)).collect()
+        self.axes.iter().map(&mut along).collect()
     }
 
     fn shape_at(&self, u: &[f64]) -> Shape {
@@ -168,16 +191,16 @@ impl Search {
             along * along
         };
         let values: Vec<f64> = self.grid.iter().map(explained).collect();
-        let per_axis = self.per_axis() as isize;
-        let rows = values.len() as isize / per_axis;
+        let per_row = self.axes.first().map_or(1, |axis| axis.points.len() as isize);
+        let rows = values.len() as isize / per_row;
         let is_top = |place: &usize| {
-            let (i, j) = (*place as isize % per_axis, *place as isize / per_axis);
+            let (i, j) = (*place as isize % per_row, *place as isize / per_row);
             values[*place] >= 0.0
                 && (-1..=1).all(|down| {
                     (-1..=1).all(|right| {
                         let (i, j) = (i + right, j + down);
-                        let inside = (0..per_axis).contains(&i) && (0..rows).contains(&j);
-                        !inside || values[(j * per_axis + i) as usize] <= values[*place]
+                        let inside = (0..per_row).contains(&i) && (0..rows).contains(&j);
+                        !inside || values[(j * per_row + i) as usize] <= values[*place]
                     })
                 })
         };
@@ -211,25 +234,44 @@ impl Search {
         (finite && point.rss.is_finite()).then_some(point)
     }
 
-    /// Down to the minimum inside the bounds.
-    fn descend(&self, start: Point, means: &[f64]) -> Point {
+    /// Some of Levenberg and Marquardt's steps towards the minimum inside the bounds.
+    fn approach(&self, start: Point, means: &[f64]) -> Point {
         let (mut here, mut damping) = (start, 1e-3);
+        for _ in 0..FIRST_STEPS {
+            self.advance(&mut here, &mut damping, means);
+        }
+        here
+    }
+
+    /// Newton's steps, damped, down to the minimum.
+    fn descend(&self, start: Point, means: &[f64]) -> Point {
+        let (mut here, mut damping) = (self.sharpened(start, means), 0.0);
         for _ in 0..STEPS {
-            let step = self.step(&here, damping);
-            let length = self.length(&step);
-            let there = self.point(self.moved(&here.u, &step), means);
-            match there.filter(|there| there.rss < here.rss) {
-                Some(there) => {
-                    here = there;
-                    damping *= 0.1;
-                }
-                None => damping = (10.0 * damping).max(1e-6),
+            let length = self.length(&self.step(&here, damping));
+            if self.advance(&mut here, &mut damping, means) {
+                here = self.sharpened(here, means);
             }
             if length < 1e-9 || damping > 1e12 {
                 break;
             }
         }
-        self.polish(here, means)
+        here
+    }
+
+    /// Takes the damped step if it leads down, and says whether it did; changes the damping accordingly.
+    fn advance(&self, here: &mut Point, damping: &mut f64, means: &[f64]) -> bool {
+        let step = self.step(here, *damping);
+        match self.point(self.moved(&here.u, &step), means).filter(|there| there.rss < here.rss) {
+            Some(there) => {
+                *here = there;
+                *damping *= 0.1;
+                true
+            }
+            None => {
+                *damping = (10.0 * *damping).max(1e-4);
+                false
+            }
+        }
     }
 
     /// Undamped steps while they shrink: they end where the normal equations hold as well as rounding allows.
@@ -244,10 +286,41 @@ impl Search {
                 break;
             }
             match self.point(self.moved(&here.u, &step), means).filter(|there| there.rss <= most) {
-                Some(there) => here = there,
+                Some(there) => here = self.sharpened(there, means),
                 None => break,
             }
             last = length;
+        }
+        here
+    }
+
+    /// The point with the second derivatives of half the sum of squares in place of the products, where they have a minimum: with
+    /// large residuals Gauss and Newton's steps, which leave a part of them out, hardly move.
+    fn sharpened(&self, mut here: Point, means: &[f64]) -> Point {
+        let count = here.u.len();
+        let mut second = vec![vec![0.0; count]; count];
+        for p in 0..count {
+            // Short beside the lengths over which a curve changes, long beside rounding.
+            let h = 1e-5 * (self.axes[p].high - self.axes[p].low);
+            let moved = |by: f64| {
+                let mut u = here.u.clone();
+                u[p] += by;
+                self.point(u, means)
+            };
+            let (Some(before), Some(after)) = (moved(-h), moved(h)) else { return here };
+            for (q, row) in second.iter_mut().enumerate() {
+                // The gradient points down.
+                row[p] = (before.gradient[q] - after.gradient[q]) / (2.0 * h);
+            }
+        }
+        if count == 2 {
+            let mean = 0.5 * (second[0][1] + second[1][0]);
+            (second[0][1], second[1][0]) = (mean, mean);
+        }
+        let convex = (0..count).all(|p| second[p][p] > 0.0);
+        let across = if count == 2 { second[0][1] * second[0][1] / second[0][0] / second[1][1] } else { 0.0 };
+        if convex && across < 1.0 {
+            here.products = second;
         }
         here
     }
@@ -305,23 +378,31 @@ fn axes(shape: &Shape, doses: &Doses) -> Vec<Axis> {
     let range = doses.highest() - doses.lowest();
     let mut gaps = values.windows(2).map(|pair| pair[1] - pair[0]);
     let least = gaps.clone().fold(range, f64::min);
-    let lowest_positive = values.iter().copied().find(|x| *x > 0.0).unwrap_or(1.0);
-    let half_effect = || Axis::logarithmic(0.01 * lowest_positive, 10.0 * doses.highest());
+    let positive = &values[values.iter().position(|x| *x > 0.0).unwrap_or(values.len() - 1)..];
+    let (least_effect, most_effect) = (0.01 * positive[0], 10.0 * doses.highest());
     match shape {
-        Shape::Emax { .. } => vec![half_effect()],
-        Shape::SigmoidEmax { .. } => vec![half_effect(), Axis::logarithmic(0.125, 32.0)],
+        Shape::Emax { .. } => vec![Axis::logarithmic(least_effect, most_effect, ALONE)],
+        Shape::SigmoidEmax { .. } => {
+            let e50 = Axis::among(positive, least_effect, most_effect, true);
+            vec![e50, Axis::logarithmic(0.125, 32.0, STEEPNESS)]
+        }
         Shape::Exponential { .. } => {
             let farthest = doses.lowest().abs().max(doses.highest().abs());
             let low = gaps.next_back().unwrap_or(range) / libm::log(100.0);
-            vec![Axis::logarithmic(low.max(farthest / 600.0), 10.0 * range.max(farthest / 600.0))]
+            let (low, high) = (low.max(farthest / 600.0), 10.0 * range.max(farthest / 600.0));
+            vec![Axis::logarithmic(low, high, ALONE)]
         }
         Shape::Logistic { .. } => {
             let (low, high) = (doses.lowest() - 0.5 * range, doses.highest() + 0.5 * range);
-            vec![
-                Axis { low, high, log: false, bounds: (low, high) },
-                Axis::logarithmic(0.2 * least, 2.0 * range),
-            ]
+            let e50 = Axis::among(values, low, high, false);
+            vec![e50, Axis::logarithmic(0.2 * least, 2.0 * range, STEEPNESS)]
         }
         _ => vec![],
     }
+}
+
+/// So many equally spaced points, the ends included.
+fn spaced(from: f64, to: f64, points: usize) -> Vec<f64> {
+    let share = |point: usize| point as f64 / (points - 1) as f64;
+    (0..points).map(|point| from * (1.0 - share(point)) + to * share(point)).collect()
 }
