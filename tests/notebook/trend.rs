@@ -209,3 +209,71 @@ fn a_curve_that_must_pass_through_every_mean_says_so() {
     assert!(text.contains("passes"), "{text}");
     assert!(!figure(&settled("degree = 1\n", exact)).contains("passes"));
 }
+
+#[test]
+fn ranks_against_the_order_need_no_scores_and_are_counted_where_they_can_be() {
+    let mut without = doses(Variances::Equal);
+    without.levels.scores = None;
+    let outcome = settled("method = \"ordered ranks\"", without);
+    // J, its expectation, variance and z: methods of Jonckheere (1954) with ties, worked independently for this project.
+    near(&outcome.results["J"], 137.0);
+    near(&outcome.results["mean"], 74.5);
+    near(&outcome.results["variance"], 217.439620);
+    near(&outcome.results["z"], 4.238485);
+    assert!(
+        outcome.answer.headline.starts_with("count rises with the order of drug (Jonckheere-Terpstra, p <"),
+        "{}",
+        outcome.answer.headline
+    );
+    let text = super::given::shown(&outcome);
+    for part in ["the order \"none\", \"10 mg\"", "two-sided", "Mean, monotone", "Place in the order of drug"]
+    {
+        assert!(text.contains(part), "{part} in {text}");
+    }
+    let falling = settled("method = \"ordered ranks\"\ndirection = \"falling\"", doses(Variances::Equal));
+    assert!(falling.answer.headline.starts_with("A trend of count with the order of drug is not shown"));
+    assert!(falling.results["p"].as_f64().unwrap() > 0.999);
+}
+
+#[test]
+fn rearranged_p_values_of_ranks_have_their_seed_and_error() {
+    let ask = "method = \"ordered ranks\"\np_values = \"rearranged\"\nrepeats = 2000\nseed = 5";
+    let outcome = settled(ask, doses(Variances::Equal));
+    assert!(super::given::shown(&outcome).contains("2000 random rearrangements from seed 5"));
+    let p = outcome.results["p"].as_f64().unwrap();
+    assert!((1.0 / 2001.0..0.01).contains(&p) && outcome.results["exact"] == false, "{p}");
+    assert_eq!(settled(ask, doses(Variances::Equal)).results, outcome.results);
+}
+
+#[test]
+fn ranks_of_a_summary_and_of_nothing_but_ties_are_refused() {
+    let (message, _) =
+        problem("method = \"ordered ranks\"", super::given::summarised(doses(Variances::Equal)));
+    assert_eq!(
+        message,
+        "Ranks need every single value, and the study has only sizes, means and standard deviations. Choose method = \"polynomial\"."
+    );
+    let tied = super::given::study(&[("low", &[1.0, 1.0]), ("high", &[1.0, 1.0])], Variances::Equal);
+    assert!(
+        problem("method = \"ordered ranks\"", tied)
+            .0
+            .starts_with("The order of the levels (\"low\", \"high\") cannot be tested by ranks: ")
+    );
+}
+
+#[test]
+fn an_order_that_nobody_confirmed_is_asked_about() {
+    let mut study = doses(Variances::Equal);
+    study.levels.order_of_appearance = true;
+    for method in ["polynomial", "ordered ranks"] {
+        let outcome = settled(&format!("method = \"{method}\""), study.clone());
+        assert!(
+            outcome
+                .answer
+                .cautions
+                .iter()
+                .any(|caution| caution.contains("confirm it by writing levels in the study")),
+            "{method}"
+        );
+    }
+}

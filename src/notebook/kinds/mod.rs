@@ -9,6 +9,7 @@ mod note;
 mod overall;
 mod power;
 mod profile;
+mod resampling;
 mod study;
 mod summary;
 mod trend;
@@ -92,7 +93,7 @@ impl Kind {
             Kind::Profile => profile::evaluate(ask, read).into(),
             Kind::Overall => overall::evaluate(ask, read).into(),
             Kind::Comparisons => comparisons::evaluate(ask, read),
-            Kind::Trend => trend::evaluate(ask, read).into(),
+            Kind::Trend => trend::evaluate(ask, read),
             Kind::Power => power::evaluate(ask).into(),
         }
     }

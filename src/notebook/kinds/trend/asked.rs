@@ -1,15 +1,30 @@
 //! Reads a trend ask against the study that it names.
 
 use super::words;
+use crate::methods::multiplicity::{Resampling, Sides};
 use crate::methods::trend::{Weights, highest_degree};
 use crate::notebook::ask::{Ask, Reader};
 use crate::notebook::diagnostics::Diagnostic;
+use crate::notebook::kinds::resampling::resampling;
 use crate::study::Study;
+
+/// How the trend is looked for.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Method {
+    Polynomial,
+    OrderedRanks,
+}
 
 /// A trend ask that can be answered.
 #[derive(Debug, Clone)]
 pub struct Asked {
-    /// One a level, strictly increasing.
+    pub method: Method,
+    /// Which direction counts, for the methods that have one.
+    pub sides: Sides,
+    /// Whether the p-values of ranks come from random rearrangements.
+    pub rearranged: bool,
+    pub resampling: Resampling,
+    /// One a level, strictly increasing; empty where a method can do without and there are none.
     pub scores: Vec<f64>,
     /// True when the cell gives its own scores instead of the study's.
     pub own_scores: bool,
@@ -27,7 +42,17 @@ impl Asked {
     /// What must be mended.
     pub fn of(ask: &Ask, study: &Study) -> Result<Self, Vec<Diagnostic>> {
         let mut reader = ask.reader();
-        let _ = reader.choice("method");
+        let method = match reader.choice("method") {
+            Some("ordered ranks") => Method::OrderedRanks,
+            _ => Method::Polynomial,
+        };
+        let sides = match reader.choice("direction") {
+            Some("rising") => Sides::Greater,
+            Some("falling") => Sides::Less,
+            _ => Sides::Both,
+        };
+        let rearranged = reader.choice("p_values") == Some("rearranged");
+        let resampling = resampling(&mut reader);
         let weights = match reader.choice("weights") {
             Some("equal") => Weights::Equal,
             _ => Weights::N,
@@ -38,10 +63,16 @@ impl Asked {
         } else {
             1.0 - alpha
         };
-        let scores = scores(&mut reader, study);
-        let degree = degree(&mut reader, study.levels.count());
+        let (scores, degree) = match method {
+            Method::Polynomial => (scores(&mut reader, study), degree(&mut reader, study.levels.count())),
+            Method::OrderedRanks => (study.levels.scores.clone(), 1),
+        };
         let own_scores = ask.given("scores");
         reader.finish(Self {
+            method,
+            sides,
+            rearranged,
+            resampling,
             scores: scores.unwrap_or_default(),
             own_scores,
             degree,

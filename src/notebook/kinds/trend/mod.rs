@@ -1,24 +1,32 @@
 //! Does the outcome follow the scores, and in what shape?
 //!
-//! `asked` reads the ask against its study, `plan` shows what can be said before there are data, `fitted` lays out
-//! the result of `methods::trend::polynomial`.
+//! `asked` reads the ask against its study; each method has a room that asks `methods::trend` and lays out the answer.
 
 mod asked;
-mod fitted;
-mod json;
-mod plan;
+mod ordered_ranks;
+mod polynomial;
 mod words;
 
-use super::wording::{refused, remedy, sentence};
 use super::{Kind, Read};
-use crate::methods::trend::{PolynomialTrend, TrendRequest, polynomial};
 use crate::notebook::ask::Ask;
-use crate::notebook::fields::{Choice, Field, Holds, KindTable, Piece, choice};
+use crate::notebook::fields::{Choice, Field, Holds, KindTable, Piece};
 use crate::notebook::outcome::Outcome;
-use crate::study::{Estimates, Study};
-use asked::Asked;
+use crate::notebook::work::Evaluation;
+use asked::{Asked, Method};
 
-const METHODS: &[Choice] = &[choice("polynomial")];
+const METHODS: &[Choice] = &[
+    Choice { value: "polynomial", shown: "polynomial trends" },
+    Choice { value: "ordered ranks", shown: "ranks against the order of the levels" },
+];
+const DIRECTIONS: &[Choice] = &[
+    Choice { value: "either", shown: "in either direction" },
+    Choice { value: "rising", shown: "only upwards" },
+    Choice { value: "falling", shown: "only downwards" },
+];
+const P_VALUES: &[Choice] = &[
+    Choice { value: "counted", shown: "counted, or else from the normal distribution" },
+    Choice { value: "rearranged", shown: "from random rearrangements" },
+];
 const WEIGHTS: &[Choice] =
     &[Choice { value: "n", shown: "by their size" }, Choice { value: "equal", shown: "equally" }];
 
@@ -27,8 +35,8 @@ pub const TABLE: KindTable = KindTable {
     fields: &[
         Field::new("study", Holds::Cell(&[Kind::Study]), "study", "The study whose levels have scores")
             .required(),
-        Field::new("method", Holds::Choice(METHODS), "method", "How the trend is taken apart")
-            .or("polynomial"),
+        Field::new("method", Holds::Choice(METHODS), "method", "How the trend is looked for")
+            .or("polynomial trends"),
         Field::new(
             "degree",
             Holds::Whole(1, 4),
@@ -45,20 +53,53 @@ pub const TABLE: KindTable = KindTable {
             "By size: the sums of squares add up. Equally: the textbook coefficients",
         )
         .or("by their size"),
+        Field::new("direction", Holds::Choice(DIRECTIONS), "direction", "Which direction of a trend counts")
+            .or("in either direction"),
+        Field::new("p_values", Holds::Choice(P_VALUES), "p-values", "Where the p-values of ranks come from")
+            .or("counted, or else from the normal distribution"),
+        Field::new("repeats", Holds::Whole(100, 1_000_000), "repeats", "Random rearrangements").or("10000"),
+        Field::new("seed", Holds::Whole(0, 4_294_967_295), "seed", "Where the random rearrangements start")
+            .or("1"),
         Field::new("alpha", Holds::Between(0.0, 1.0), "error rate", "The error rate of each test")
             .or("the study"),
     ],
     sentence: &[
         Piece::Words("Does the outcome of"),
         Piece::Blank("study"),
-        Piece::Words("follow the scores"),
-        Piece::Blank("scores"),
-        Piece::Words("? Take it apart by"),
+        Piece::Words("follow the levels? Look for it by"),
         Piece::Blank("method"),
-        Piece::Words("trends (highest degree:"),
-        Piece::Blank("degree"),
-        Piece::Words("), weighting the levels"),
-        Piece::Blank("weights"),
+        Piece::When(
+            "method",
+            &["polynomial"],
+            &[
+                Piece::Words("over the scores"),
+                Piece::Blank("scores"),
+                Piece::Words("up to degree"),
+                Piece::Blank("degree"),
+                Piece::Words(", weighting the levels"),
+                Piece::Blank("weights"),
+            ],
+        ),
+        Piece::When(
+            "method",
+            &["ordered ranks"],
+            &[
+                Piece::Words(","),
+                Piece::Blank("direction"),
+                Piece::Words(", with p-values"),
+                Piece::Blank("p_values"),
+                Piece::When(
+                    "p_values",
+                    &["rearranged"],
+                    &[
+                        Piece::Words(":"),
+                        Piece::Blank("repeats"),
+                        Piece::Words("of them from seed"),
+                        Piece::Blank("seed"),
+                    ],
+                ),
+            ],
+        ),
         Piece::Words(", each at an error rate of"),
         Piece::Blank("alpha"),
         Piece::Words("."),
@@ -67,48 +108,26 @@ pub const TABLE: KindTable = KindTable {
 };
 
 /// The trend, or the plan for it, or what to mend.
-pub fn evaluate(ask: &Ask, read: &Read) -> Outcome {
-    let Some(study) = read.study() else {
+pub fn evaluate(ask: &Ask, read: &Read) -> Evaluation {
+    let Some(study) = read.shared_study() else {
         let mut reader = ask.reader();
         let _ = reader.text("study");
-        return Outcome::mend(reader.finish(()).err().unwrap_or_default());
+        return Outcome::mend(reader.finish(()).err().unwrap_or_default()).into();
     };
     let asked = match Asked::of(ask, study) {
         Ok(asked) => asked,
-        Err(problems) => return Outcome::mend(problems),
+        Err(problems) => return Outcome::mend(problems).into(),
     };
-    outcome(ask, &asked, study)
-        .with_in_force("degree", asked.degree.to_string())
-        .with_in_force("scores", words::scores(&asked.scores))
-        .with_in_force("alpha", crate::answer::number::plain(asked.alpha))
-}
-
-fn outcome(ask: &Ask, asked: &Asked, study: &Study) -> Outcome {
-    let Some(summary) = study.summary() else {
-        return plan::outcome(asked, study);
-    };
-    let estimates = match Estimates::one_way(&study.levels.labels, &summary, study.variances) {
-        Ok(estimates) => estimates,
-        Err(error) => return refused(ask, format!("The trend cannot be given: {error}.{}", remedy(&error))),
-    };
-    let request = TrendRequest {
-        estimates: &estimates,
-        summary: Some(&summary),
-        scores: &asked.scores,
-        degree: asked.degree,
-        weights: asked.weights,
-        confidence: asked.confidence,
-    };
-    match polynomial(&request) {
-        Ok(trend) => fitted::outcome(&Laid { asked, study, estimates: &estimates, trend }),
-        Err(error) => refused(ask, sentence(&error.to_string())),
+    match asked.method {
+        Method::Polynomial => in_force(polynomial::outcome(ask, &asked, study), &asked).into(),
+        Method::OrderedRanks => ordered_ranks::start(ask, &asked, study),
     }
 }
 
-/// Everything from which the answer is laid out.
-struct Laid<'a> {
-    asked: &'a Asked,
-    study: &'a Study,
-    estimates: &'a Estimates,
-    trend: PolynomialTrend,
+/// What the sentence shows for fields that are not given.
+fn in_force(outcome: Outcome, asked: &Asked) -> Outcome {
+    outcome
+        .with_in_force("degree", asked.degree.to_string())
+        .with_in_force("scores", words::scores(&asked.scores))
+        .with_in_force("alpha", crate::answer::number::plain(asked.alpha))
 }

@@ -2,6 +2,7 @@
 
 use crate::answer::number;
 use crate::methods::trend::{TrendRow, Weights};
+use crate::study::Levels;
 
 /// "none, 15 min, 30 min", in order; empty without levels.
 pub fn order(labels: &[String]) -> String {
@@ -13,6 +14,16 @@ pub fn order(labels: &[String]) -> String {
 /// "0, 15, 30".
 pub fn scores(scores: &[f64]) -> String {
     scores.iter().map(|score| number::plain(*score)).collect::<Vec<_>>().join(", ")
+}
+
+/// An order that was taken from the data and that nobody has confirmed.
+pub fn unconfirmed_order(levels: &Levels) -> Option<String> {
+    levels.order_of_appearance.then(|| {
+        format!(
+            "The levels stand in the order of their first appearance in the data: {}. A trend depends on it; confirm it by writing levels in the study.",
+            order(&levels.labels)
+        )
+    })
 }
 
 /// The scores that the levels' names suggest: the first number in each, 0 for a single first level without any, where that makes

@@ -11,6 +11,7 @@ use crate::methods::multiplicity::{
 };
 use crate::notebook::ask::{Ask, Reader};
 use crate::notebook::diagnostics::Diagnostic;
+use crate::notebook::kinds::resampling::resampling;
 use crate::study::{Study, Variances};
 use members::{Members, members};
 
@@ -86,7 +87,7 @@ impl Asked {
             Some(_) => Some(Standardise::LevelsCompared),
             None => None,
         };
-        let resampling = procedure::resampling(&mut reader);
+        let resampling = resampling(&mut reader);
         let unused = unused(ask, family_name, &setting, adjust);
         reader.finish(Self {
             family,

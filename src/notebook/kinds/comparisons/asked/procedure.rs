@@ -3,7 +3,7 @@
 use super::all_pairs_of_levels;
 use crate::methods::contrasts::Contrast;
 use crate::methods::multiplicity::{
-    Adjust, Basis, Claim, Family, Ranking, Resampling, Setting, default_adjust, suitable,
+    Adjust, Basis, Claim, Family, Ranking, Setting, default_adjust, suitable,
 };
 use crate::notebook::ask::Reader;
 use crate::notebook::diagnostics::quoted_choices;
@@ -88,14 +88,4 @@ fn objection(adjust: Adjust, setting: &Setting) -> Option<String> {
     let mut letters = reason.chars();
     let first = letters.next().map(|letter| letter.to_uppercase().to_string()).unwrap_or_default();
     Some(format!("{first}{}. Suitable here: {names}.", letters.as_str()))
-}
-
-/// How often values are rearranged at random where not all rearrangements can be counted.
-pub fn resampling(reader: &mut Reader) -> Resampling {
-    let default = Resampling::default();
-    let whole = |number: Option<f64>| number.map(|number| number as u64);
-    Resampling {
-        repeats: whole(reader.number("repeats")).unwrap_or(default.repeats),
-        seed: whole(reader.number("seed")).unwrap_or(default.seed),
-    }
 }

@@ -1,19 +1,56 @@
-//! Lays out a fitted trend: headline, tables, figure, write-up, cautions.
+//! The polynomial trend: asked of the methods, and laid out as headline, tables, figure, write-up and cautions.
 
-use super::{Laid, json, plan, words};
+mod json;
+mod plan;
+
+use super::asked::Asked;
+use super::words;
 use crate::answer::figure::{self, Point, Span, Trend, TrendPoint};
 use crate::answer::{Answer, Cell, Figure, Precision, Row, Table, number};
-use crate::methods::trend::{LackOfFit, TrendRow, Weights};
-use crate::notebook::kinds::wording::{left_out, listed, outcome_with_unit, p_cell, p_statement, sizes};
+use crate::methods::trend::{LackOfFit, PolynomialTrend, TrendRequest, TrendRow, Weights, polynomial};
+use crate::notebook::ask::Ask;
+use crate::notebook::kinds::wording::{
+    left_out, listed, outcome_with_unit, p_cell, p_statement, refused, remedy, sentence, sizes,
+};
 use crate::notebook::outcome::Outcome;
 use crate::numerics::distributions::student_t;
-use crate::study::{DegreesOfFreedom, Variances};
+use crate::study::{DegreesOfFreedom, Estimates, Study, Variances};
 
 /// Points of the drawn curve.
 const CURVE: usize = 120;
 
-/// The settled answer.
-pub fn outcome(laid: &Laid) -> Outcome {
+/// Everything from which the answer is laid out.
+struct Laid<'a> {
+    asked: &'a Asked,
+    study: &'a Study,
+    estimates: &'a Estimates,
+    trend: PolynomialTrend,
+}
+
+/// The trend, or the plan for it, or why there is none.
+pub fn outcome(ask: &Ask, asked: &Asked, study: &Study) -> Outcome {
+    let Some(summary) = study.summary() else {
+        return plan::outcome(asked, study);
+    };
+    let estimates = match Estimates::one_way(&study.levels.labels, &summary, study.variances) {
+        Ok(estimates) => estimates,
+        Err(error) => return refused(ask, format!("The trend cannot be given: {error}.{}", remedy(&error))),
+    };
+    let request = TrendRequest {
+        estimates: &estimates,
+        summary: Some(&summary),
+        scores: &asked.scores,
+        degree: asked.degree,
+        weights: asked.weights,
+        confidence: asked.confidence,
+    };
+    match polynomial(&request) {
+        Ok(trend) => settled(&Laid { asked, study, estimates: &estimates, trend }),
+        Err(error) => refused(ask, sentence(&error.to_string())),
+    }
+}
+
+fn settled(laid: &Laid) -> Outcome {
     let mut answer = Answer::new(headline(laid)).with_table(table(laid));
     if !laid.trend.lack_of_fit.is_empty() {
         answer = answer.with_table(lack_of_fit(laid));
@@ -365,8 +402,6 @@ fn cautions(laid: &Laid) -> Vec<String> {
             p_statement(left.test.p, laid.asked.alpha)
         ));
     }
-    if laid.study.levels.order_of_appearance {
-        found.push("The levels stand in the order of their first appearance in the data; the scores are matched to that order.".to_string());
-    }
+    found.extend(words::unconfirmed_order(&laid.study.levels));
     found
 }

@@ -1,8 +1,8 @@
 //! What can be said before there are data: the order, the scores and the contrasts.
 
-use super::asked::Asked;
+use super::super::asked::Asked;
+use super::super::words;
 use super::json::by_level;
-use super::words;
 use crate::answer::{Answer, Cell, Precision, Row, Table, number};
 use crate::methods::trend::{Weights, coefficients, degree_name};
 use crate::notebook::outcome::Outcome;
