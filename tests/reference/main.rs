@@ -13,6 +13,7 @@ mod continuous;
 mod contrasts;
 mod detectable;
 mod distribution_properties;
+mod dose_tests;
 mod effect_size;
 mod glass;
 mod graph;
