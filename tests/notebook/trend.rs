@@ -277,3 +277,85 @@ fn an_order_that_nobody_confirmed_is_asked_about() {
         );
     }
 }
+
+#[test]
+fn three_scales_of_dose_are_one_family() {
+    let outcome = settled("method = \"dose scales\"", doses(Variances::Equal));
+    let rows = &outcome.results["rows"];
+    // t and joint p: worked independently for this project (tests/reference/dose_tests.rs has the digits).
+    near(&rows[0]["statistic"], 6.774243);
+    near(&rows[1]["statistic"], 7.109834);
+    near(&rows[2]["statistic"], 7.107742);
+    assert!((rows[1]["p_adjusted"].as_f64().unwrap() - 4.0712e-6).abs() < 6e-11);
+    near(&rows[2]["scores"]["none"], 1.753279);
+    assert_eq!(outcome.results["strongest"], "ranks of the scores");
+    let text = shown(&outcome);
+    assert!(text.contains("A score of 0 has no logarithm: it stands at 1.7533 on that scale"), "{text}");
+    assert!(
+        outcome.answer.headline.contains("rising: most clearly in the ranks of the scores"),
+        "{}",
+        outcome.answer.headline
+    );
+    let mut below = doses(Variances::Equal);
+    below.levels.scores = Some(vec![-1.0, 10.0, 30.0, 100.0]);
+    assert!(
+        problem("method = \"dose scales\"", below)
+            .0
+            .contains("The score -1 is negative and has no logarithm")
+    );
+}
+
+#[test]
+fn williams_finds_the_lowest_dose_that_differs_for_a_direction_that_is_said() {
+    let outcome = settled("method = \"step contrasts\"\ndirection = \"rising\"", doses(Variances::Equal));
+    // The means rise, so nothing is pooled and t is the plain one of each dose.
+    let rows = &outcome.results["rows"];
+    near(&rows[0]["statistic"], 2.088932);
+    near(&rows[2]["statistic"], 6.858571);
+    assert_eq!(outcome.results["lowest_effective"], "10 mg");
+    assert!(
+        outcome
+            .answer
+            .headline
+            .starts_with("The lowest level of drug at which count differs from none is 10 mg (Williams"),
+        "{}",
+        outcome.answer.headline
+    );
+    let falling = settled("method = \"step contrasts\"\ndirection = \"falling\"", doses(Variances::Equal));
+    assert!(
+        falling.answer.headline.starts_with("No level of drug is shown to differ from none"),
+        "{}",
+        falling.answer.headline
+    );
+    assert!(
+        problem("method = \"step contrasts\"", doses(Variances::Equal))
+            .0
+            .contains("Set direction = \"rising\" or \"falling\".")
+    );
+    let unequal = problem("method = \"step contrasts\"\ndirection = \"rising\"", doses(Variances::Unequal)).0;
+    assert!(unequal.contains("the study says unequal variances"), "{unequal}");
+    let mut last = doses(Variances::Equal);
+    last.levels.control = Some(3);
+    assert!(
+        problem("method = \"step contrasts\"\ndirection = \"rising\"", last)
+            .0
+            .contains("Put the control first in the study's levels.")
+    );
+}
+
+#[test]
+fn scales_and_steps_have_plans() {
+    for rest in [
+        "method = \"dose scales\"",
+        "method = \"step contrasts\"\ndirection = \"rising\"",
+        "method = \"ordered ranks\"",
+    ] {
+        let plan = Study { observed: Observed::Plan, account: Vec::new(), ..doses(Variances::Equal) };
+        let outcome = evaluated(&ask(rest), plan);
+        assert!(
+            outcome.waiting && outcome.answer.headline.starts_with("Planned: "),
+            "{rest}: {}",
+            outcome.answer.headline
+        );
+    }
+}

@@ -12,7 +12,9 @@ use crate::study::Study;
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Method {
     Polynomial,
+    DoseScales,
     OrderedRanks,
+    StepContrasts,
 }
 
 /// A trend ask that can be answered.
@@ -43,7 +45,9 @@ impl Asked {
     pub fn of(ask: &Ask, study: &Study) -> Result<Self, Vec<Diagnostic>> {
         let mut reader = ask.reader();
         let method = match reader.choice("method") {
+            Some("dose scales") => Method::DoseScales,
             Some("ordered ranks") => Method::OrderedRanks,
+            Some("step contrasts") => Method::StepContrasts,
             _ => Method::Polynomial,
         };
         let sides = match reader.choice("direction") {
@@ -65,7 +69,8 @@ impl Asked {
         };
         let (scores, degree) = match method {
             Method::Polynomial => (scores(&mut reader, study), degree(&mut reader, study.levels.count())),
-            Method::OrderedRanks => (study.levels.scores.clone(), 1),
+            Method::DoseScales => (scores(&mut reader, study), 1),
+            Method::OrderedRanks | Method::StepContrasts => (study.levels.scores.clone(), 1),
         };
         let own_scores = ask.given("scores");
         reader.finish(Self {

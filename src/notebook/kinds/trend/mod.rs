@@ -5,6 +5,8 @@
 mod asked;
 mod ordered_ranks;
 mod polynomial;
+mod scales;
+mod steps;
 mod words;
 
 use super::{Kind, Read};
@@ -16,7 +18,9 @@ use asked::{Asked, Method};
 
 const METHODS: &[Choice] = &[
     Choice { value: "polynomial", shown: "polynomial trends" },
+    Choice { value: "dose scales", shown: "linear trends in three scales of dose" },
     Choice { value: "ordered ranks", shown: "ranks against the order of the levels" },
+    Choice { value: "step contrasts", shown: "steps from the control (Williams)" },
 ];
 const DIRECTIONS: &[Choice] = &[
     Choice { value: "either", shown: "in either direction" },
@@ -82,6 +86,17 @@ pub const TABLE: KindTable = KindTable {
         ),
         Piece::When(
             "method",
+            &["dose scales"],
+            &[
+                Piece::Words("over the scores"),
+                Piece::Blank("scores"),
+                Piece::Words(","),
+                Piece::Blank("direction"),
+            ],
+        ),
+        Piece::When("method", &["step contrasts"], &[Piece::Words(","), Piece::Blank("direction")]),
+        Piece::When(
+            "method",
             &["ordered ranks"],
             &[
                 Piece::Words(","),
@@ -120,7 +135,9 @@ pub fn evaluate(ask: &Ask, read: &Read) -> Evaluation {
     };
     match asked.method {
         Method::Polynomial => in_force(polynomial::outcome(ask, &asked, study), &asked).into(),
+        Method::DoseScales => in_force(scales::outcome(ask, &asked, study), &asked).into(),
         Method::OrderedRanks => ordered_ranks::start(ask, &asked, study),
+        Method::StepContrasts => in_force(steps::outcome(ask, &asked, study), &asked).into(),
     }
 }
 
