@@ -86,6 +86,26 @@ pub fn increasing_secant(mut f: impl FnMut(f64) -> f64, start: f64, scale: f64) 
     )
 }
 
+/// The root of the increasing function `f`, known by its values, with its `slope` at the start about known: one evaluation fewer than
+/// [`increasing_secant`].
+pub fn increasing_secant_from(mut f: impl FnMut(f64) -> f64, start: f64, scale: f64, slope: f64) -> f64 {
+    let mut last: Option<(f64, f64)> = None;
+    increasing(
+        |x| {
+            let value = f(x);
+            let (slope, chord) = match last {
+                Some((x0, value0)) => ((value - value0) / (x - x0), (x - x0).abs()),
+                // As good as a chord of the whole scale: it never ends the iteration.
+                None => (slope, scale),
+            };
+            last = Some((x, value));
+            Value { value, slope, chord }
+        },
+        start,
+        scale,
+    )
+}
+
 /// The root of log(tail(x)) = log(`target`) for a tail that rises with x or, `falling`, falls; `tail` gives its value and the
 /// derivative of its logarithm, or NaN where that is not known.
 pub fn log_tail(mut tail: impl FnMut(f64) -> (f64, f64), target: f64, falling: bool, start: f64) -> f64 {

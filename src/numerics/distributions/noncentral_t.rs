@@ -105,8 +105,10 @@ pub fn noncentrality(t: f64, df: f64, lower_p: f64) -> Result<f64, OutOfDomain> 
 /// it.
 fn noncentrality_at_lower(t: f64, df: f64, p: f64) -> f64 {
     let deviate = normal::upper_quantile_unchecked(p);
-    let start = t + deviate * (1.0 + 0.5 * t * t / df).sqrt();
-    roots::increasing_secant(|ncp| normal::upper_quantile_unchecked(lower(t, df, ncp)) - deviate, start, 1.0)
+    // T is about normal with this standard deviation, relative to its noncentrality.
+    let spread = (1.0 + 0.5 * t * t / df).sqrt();
+    let excess = |ncp| normal::upper_quantile_unchecked(lower(t, df, ncp)) - deviate;
+    roots::increasing_secant_from(excess, t + deviate * spread, 1.0, 1.0 / spread)
 }
 
 /// The t at which the lower tail is `p`, at most 1/2, solved in arsinh t because the tails may be heavy.

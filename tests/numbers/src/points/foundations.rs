@@ -108,6 +108,8 @@ fn add_roots(table: &mut Table) {
         table.add("roots::increasing", &[&target], roots::increasing(newton, 0.5, 1.0));
         let secant = roots::increasing_secant(|x| libm::sinh(x) - target, 0.5, 1.0);
         table.add("roots::increasing_secant", &[&target], secant);
+        let guided = roots::increasing_secant_from(|x| libm::sinh(x) - target, 0.5, 1.0, 1.1);
+        table.add("roots::increasing_secant_from", &[&target], guided);
     }
     for target in [1e-200, 0.02, 0.7] {
         // The tail exp(-x), with and without its slope.
